@@ -1,0 +1,44 @@
+// Astro: server output behind our own entry (src/server.ts), React islands, Tailwind, a strict content security policy.
+import node from '@astrojs/node';
+import react from '@astrojs/react';
+import tailwind from '@astrojs/tailwind';
+import { defineConfig } from 'astro/config';
+import { buretteServer } from './astro.integration.mjs';
+
+export default defineConfig({
+  output: 'server',
+  outDir: process.env.BURETTE_OUT_DIR ?? './dist',
+  adapter: buretteServer(node({ mode: 'standalone' })),
+  integrations: [react(), tailwind({ applyBaseStyles: false })],
+  // Sessions are lucia's, in our database; the framework's own are never used.
+  session: { driver: 'memory' },
+  // Our middleware checks Origin on every unsafe method, JSON included (src/server/http/check-origin.ts).
+  security: { checkOrigin: false },
+  devToolbar: { enabled: false },
+  server: { port: Number(process.env.PORT ?? 4321), host: process.env.HOST ?? '127.0.0.1' },
+  vite: {
+    ssr: {
+      noExternal: ['echarts-for-react'],
+      external: ['sequelize', 'sqlite3', 'umzug', 'piscina', 'pdfkit', 'pino'],
+    },
+    optimizeDeps: { exclude: ['sqlite3', 'sequelize'] },
+    build: { chunkSizeWarningLimit: 900 },
+  },
+  experimental: {
+    csp: {
+      scriptDirective: { resources: ["'self'", "'wasm-unsafe-eval'"] },
+      styleDirective: { resources: ["'self'"] },
+      directives: [
+        "default-src 'self'",
+        "img-src 'self' data: blob:",
+        "font-src 'self'",
+        "connect-src 'self'",
+        "worker-src 'self' blob:",
+        "object-src 'none'",
+        "base-uri 'none'",
+        "form-action 'self'",
+        "frame-ancestors 'none'",
+      ],
+    },
+  },
+});

@@ -1,0 +1,49 @@
+/** Every maximum of the system in one place, with the relations between them asserted at the end. */
+
+export const limits = {
+  /** Networks. */
+  speciesPerNetwork: 5_000,
+  reactionsPerNetwork: 20_000,
+  parametersPerNetwork: 20_000,
+  expressionCharacters: 4_000,
+  expressionDepth: 100,
+  stoichiometry: 1_000,
+  initialCount: 2 ** 31 - 1,
+  identifierCharacters: 100,
+  nameCharacters: 200,
+  /** Requests. */
+  bodyBytes: 1_000_000,
+  modelBodyBytes: 10_000_000,
+  xmlDepth: 200,
+  idempotencyKeyCharacters: 200,
+  listPage: 200,
+  listPageDefault: 50,
+  /** Jobs. */
+  replicatesPerJob: 10_000_000,
+  gridIntervals: 10_000,
+  /** Grid points × observables × points of a job. */
+  resultCells: 2_000_000,
+  keptTraces: 1_000,
+  sweepPoints: 1_000,
+  capReplicatesMinimum: 30,
+  eventsPerReplicate: 2 ** 40,
+  batchesPerJob: 20_000,
+  openJobsPerTeam: 50,
+  /** Pilots. */
+  pilotReplicatesMinimum: 200,
+  pilotEvents: 20_000_000,
+  pilotSeconds: 20,
+  pilotsPerMemberAndHour: 240,
+  quoteMinutes: 60,
+  /** Money: every integer of credits or money stays within this. */
+  integer: Number.MAX_SAFE_INTEGER,
+} as const;
+
+const relations: [string, boolean][] = [
+  ['a page fits its maximum', limits.listPageDefault <= limits.listPage],
+  ['a model body is at least an ordinary body', limits.modelBodyBytes >= limits.bodyBytes],
+  ['replicates are below the stream key limit of 2^40', limits.replicatesPerJob < 2 ** 40],
+  ['points are below the stream key limit of 2^24', limits.sweepPoints < 2 ** 24],
+  ['the least pilot can support the least cap', limits.pilotReplicatesMinimum >= limits.capReplicatesMinimum],
+];
+for (const [relation, holds] of relations) if (!holds) throw new Error(`limits.ts: ${relation} does not hold`);

@@ -1,0 +1,44 @@
+/** The network as the engine runs it: checked, indexed, with every value a number. Built by `resolve-network.ts`. */
+import type { Expression } from './expression.ts';
+
+export interface ResolvedSpecies {
+  id: string;
+  initialCount: number;
+  boundary: boolean;
+}
+
+/** `count` items of the species at `species` (an index into `species`). */
+export interface Stoichiometry {
+  species: number;
+  count: number;
+}
+
+export type ResolvedLaw =
+  /** propensity = constant · Π binomial(count, stoichiometry) over `reactants`. */
+  | { kind: 'massAction'; constant: Expression }
+  | { kind: 'expression'; expression: Expression };
+
+export interface ResolvedReaction {
+  id: string;
+  /** What must be present for the reaction to fire, each species once. */
+  reactants: Stoichiometry[];
+  /** Net change of each non-boundary species per firing; entries of zero are left out. */
+  changes: Stoichiometry[];
+  law: ResolvedLaw;
+}
+
+/**
+ * Symbols inside expressions are resolved to `{ kind: 'species' | 'parameter', index }`; a species that means a
+ * concentration has become count / compartment size. Compartments and local parameters have been appended to
+ * `parameters`, so that overrides change values and never the code made from them.
+ */
+export interface ResolvedNetwork {
+  species: ResolvedSpecies[];
+  /** In order: global parameters, compartment sizes, local parameters. */
+  parameters: { id: string; value: number }[];
+  /** Parameters recomputed from others and from species after each change of state, in dependency order. */
+  assignments: { parameter: number; expression: Expression }[];
+  reactions: ResolvedReaction[];
+  /** What is reported: each species, then each named observable. */
+  observables: { id: string; expression: Expression }[];
+}

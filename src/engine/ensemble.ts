@@ -1,0 +1,98 @@
+/**
+ * The engine's interface: what a batch is asked, what it answers, and how answers join into an ensemble.
+ *
+ * A batch is a contiguous range of seeded replicates of one point. Its answer depends only on the task: not on the
+ * machine, the number of threads, the batch's size or the clock. Jobs, the browser's preview and `verify` use this
+ * interface alone.
+ */
+import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
+
+export type StreamPurpose = 'job' | 'pilot' | 'preview';
+export type KernelName = 'direct-scalar' | 'direct-simd' | 'composition-rejection' | 'tau-leaping' | 'reference';
+
+export interface BatchTask {
+  network: ResolvedNetwork;
+  /** Simulated time at the end of each replicate, in the network's unit of time; above 0. */
+  horizon: number;
+  /** Grid time i is i · horizon / gridIntervals, i = 0 … gridIntervals. */
+  gridIntervals: number;
+  /** u64 as a decimal string. */
+  seed: string;
+  purpose: StreamPurpose;
+  point: number;
+  firstReplicate: number;
+  replicateCount: number;
+  /** Replicates 0 … keptTraces − 1 of the point are kept whole on the grid (those that fall inside this batch). */
+  keptTraces: number;
+  /** Fails the replicate that would exceed it; null for none. A property of the job, never of the batch. */
+  eventBudgetPerReplicate: number | null;
+  /** Stops the batch early after this many events in all, keeping complete replicates (pilots); null for none. */
+  eventBudgetPerBatch: number | null;
+  /** For tests; normally a fixed, versioned function of the network decides. */
+  kernel?: KernelName;
+}
+
+/** The model's own failure: the ensemble is the prefix before `replicate`, conditional on no failure. */
+export interface ModelFailure {
+  kind: 'negative_propensity' | 'not_a_number' | 'count_overflow' | 'event_budget';
+  replicate: number;
+  reaction: string | null;
+  time: number;
+  state: Record<string, number>;
+}
+
+export interface BatchResult {
+  firstReplicate: number;
+  /** Complete replicates, from `firstReplicate`: less than asked after a failure or when the batch budget ran out. */
+  replicateCount: number;
+  /** Events of each complete replicate, in order: what the meter charges. */
+  eventsPerReplicate: Float64Array;
+  /** The mergeable accumulators of the complete replicates. */
+  summary: EnsembleSummary;
+  /** Kept traces that fell in this batch. */
+  traces: Trace[];
+  failure: ModelFailure | null;
+  kernel: KernelName;
+}
+
+export interface Trace {
+  replicate: number;
+  /** observables × (gridIntervals + 1), observable by observable. */
+  values: Float64Array;
+}
+
+/**
+ * Order-independent, exactly mergeable statistics of a set of replicates of one point.
+ * `statistics/summary.ts` implements it: create, add, merge, encode to bytes, decode.
+ * Merging the same replicates in any grouping and order gives the same encoded bytes.
+ */
+export interface EnsembleSummary {
+  readonly replicates: number;
+  readonly observables: string[];
+  readonly gridPoints: number;
+  merge(other: EnsembleSummary): void;
+  encode(): Uint8Array;
+}
+
+/** Estimates with their errors, at every grid time: what `results/summary.csv` and the job page show. */
+export interface EnsembleStatistics {
+  replicates: number;
+  times: number[];
+  observables: {
+    id: string;
+    mean: number[];
+    sd: number[];
+    meanStandardError: number[];
+    sdStandardError: number[];
+    /** By probability as a decimal string: "0.05", "0.25", "0.5", "0.75", "0.95". Type 1 (inverse of the distribution). */
+    quantiles: Record<string, number[]>;
+  }[];
+  events: { total: number; meanPerReplicate: number; sdPerReplicate: number };
+}
+
+/** The distribution of one observable at one grid time. `widths[i]` is 1 where the count is exact. */
+export interface Distribution {
+  values: number[];
+  widths: number[];
+  counts: number[];
+}

@@ -1,0 +1,28 @@
+/** Opaque identifiers: a prefix that tells the kind, then a ULID, so that rows sort by creation. */
+import { ulid } from 'ulid';
+
+export type IdKind =
+  | 'user'
+  | 'team'
+  | 'membership'
+  | 'link'
+  | 'token'
+  | 'model'
+  | 'version'
+  | 'quote'
+  | 'job'
+  | 'segment'
+  | 'batch'
+  | 'project'
+  | 'transaction'
+  | 'lot'
+  | 'topup'
+  | 'invoice'
+  | 'proforma'
+  | 'mail'
+  | 'payment'
+  | 'request'
+  | 'pricebook'
+  | 'webhook';
+
+export const newId = (kind: IdKind): string => `${kind}_${ulid()}`;

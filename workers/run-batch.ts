@@ -1,0 +1,3 @@
+export default async (): Promise<never> => {
+  throw new Error('The engine is not here yet.');
+};
