@@ -1,5 +1,10 @@
 /** Every migration, oldest first. */
 import type { Migration } from '../migrate.ts';
 import { people } from './0001-people.ts';
+import { teams } from './0002-teams.ts';
+import { ledger } from './0003-ledger.ts';
+import { billing } from './0004-billing.ts';
+import { models } from './0005-models.ts';
+import { jobs } from './0006-jobs.ts';
 
-export const migrations: Migration[] = [people];
+export const migrations: Migration[] = [people, teams, ledger, billing, models, jobs];

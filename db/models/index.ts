@@ -1,7 +1,17 @@
 /** Defines every model on the connection. A model class is usable once `openDatabase` has run. */
 import type { Sequelize } from 'sequelize';
+import { defineBilling } from './billing.ts';
+import { defineJobs } from './jobs.ts';
+import { defineLedger } from './ledger.ts';
+import { defineNetworkModels } from './models.ts';
 import { definePeople } from './people.ts';
+import { defineTeams } from './teams.ts';
 
 export function defineModels(sequelize: Sequelize): void {
   definePeople(sequelize);
+  defineTeams(sequelize);
+  defineLedger(sequelize);
+  defineBilling(sequelize);
+  defineNetworkModels(sequelize);
+  defineJobs(sequelize);
 }

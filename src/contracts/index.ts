@@ -1,5 +1,21 @@
 /** Every contract of the API. The OpenAPI document and the walk over the routes are made from this list. */
+import { archiveContracts } from './archives.ts';
+import { authContracts } from './auth.ts';
+import { billingContracts } from './billing.ts';
 import type { Contract } from './contract.ts';
+import { jobContracts } from './jobs.ts';
+import { ledgerContracts } from './ledger.ts';
+import { networkContracts } from './network.ts';
 import { systemContracts } from './system.ts';
+import { teamContracts } from './teams.ts';
 
-export const contracts: Contract[] = [...systemContracts];
+export const contracts: Contract[] = [
+  ...systemContracts,
+  ...authContracts,
+  ...teamContracts,
+  ...networkContracts,
+  ...jobContracts,
+  ...archiveContracts,
+  ...ledgerContracts,
+  ...billingContracts,
+];

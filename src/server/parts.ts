@@ -1,9 +1,7 @@
 /** What runs beside the requests: each part starts at boot, in this order, and stops in the reverse one. */
+import { billingPart } from './billing/billing-part.ts';
+import { jobsPart } from './jobs/jobs-part.ts';
+import { mailPart } from './mail/mail-part.ts';
+import type { Part } from './part.ts';
 
-export interface Part {
-  name: string;
-  /** Resolves to the function that stops it. */
-  start(): Promise<() => Promise<void>>;
-}
-
-export const parts: Part[] = [];
+export const parts: Part[] = [mailPart, billingPart, jobsPart];

@@ -1,0 +1,4 @@
+/** Credits and the ledger. */
+import type { Contract } from './contract.ts';
+
+export const ledgerContracts: Contract[] = [];
