@@ -1,4 +1,4 @@
-/** Makes an Astro endpoint from a contract and one service call: parse, authorise nothing (the service does), respond. */
+/** Makes an Astro endpoint from a contract and one service call: turn strangers away, parse, call, respond. */
 import type { APIContext, APIRoute } from 'astro';
 import type { z } from 'zod';
 import type { Contract } from '@/contracts/contract.ts';
@@ -6,6 +6,7 @@ import type { Actor } from '@/domain/teams/actor.ts';
 import { principalName } from '@/domain/teams/actor.ts';
 import { limits } from '@/domain/limits.ts';
 import { accept, refuse, type Result } from '@/domain/refusals.ts';
+import { admit } from './admit.ts';
 import { answerOnce, hashBody, type Idempotency } from './answer-once.ts';
 import { outageResponse, problemResponse } from './problem.ts';
 import { readBody } from './read-body.ts';
@@ -34,6 +35,12 @@ export function endpoint<const C extends Contract>(
   return async (context) => {
     const { requestId } = context.locals;
     try {
+      const admitted = await admit({
+        access: contract.access,
+        actor: context.locals.actor,
+        team: context.params['team'],
+      });
+      if (!admitted.ok) return problemResponse(admitted, requestId);
       const request = await parseRequest(contract, context);
       if (!request.ok) return problemResponse(request, requestId);
       const handled =
