@@ -34,6 +34,7 @@ export const refusalCodes = [
   // money
   'unknown_pack',
   'payment_service_unavailable',
+  'billing_details_missing',
   'bad_signature',
   // requests in general
   'idempotency_key_reused',

@@ -2,9 +2,19 @@
 
 export type UnaryOperator = 'negate' | 'not';
 export type BinaryOperator =
-  | 'add' | 'subtract' | 'multiply' | 'divide' | 'power'
-  | 'equal' | 'notEqual' | 'less' | 'lessOrEqual' | 'greater' | 'greaterOrEqual'
-  | 'and' | 'or';
+  | 'add'
+  | 'subtract'
+  | 'multiply'
+  | 'divide'
+  | 'power'
+  | 'equal'
+  | 'notEqual'
+  | 'less'
+  | 'lessOrEqual'
+  | 'greater'
+  | 'greaterOrEqual'
+  | 'and'
+  | 'or';
 export type FunctionName = 'exp' | 'ln' | 'log10' | 'sqrt' | 'abs' | 'floor' | 'ceil' | 'min' | 'max';
 
 /** Truth values are 1 and 0; any number but 0 counts as true. */

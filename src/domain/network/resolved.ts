@@ -15,8 +15,7 @@ export interface Stoichiometry {
 
 export type ResolvedLaw =
   /** propensity = constant · Π binomial(count, stoichiometry) over `reactants`. */
-  | { kind: 'massAction'; constant: Expression }
-  | { kind: 'expression'; expression: Expression };
+  { kind: 'massAction'; constant: Expression } | { kind: 'expression'; expression: Expression };
 
 export interface ResolvedReaction {
   id: string;
