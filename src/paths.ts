@@ -5,6 +5,7 @@ export const paths = {
   signUp: '/sign-up',
   verify: '/verify',
   reset: '/reset',
+  invitation: '/invitation',
   account: '/account',
   pricing: '/pricing',
   team: (team: string) => `/t/${team}/overview`,
@@ -19,6 +20,7 @@ export const paths = {
   invoice: (team: string, invoice: string) => `/t/${team}/billing/invoices/${invoice}`,
   members: (team: string) => `/t/${team}/team/members`,
   projectCodes: (team: string) => `/t/${team}/team/project-codes`,
+  tokens: (team: string) => `/t/${team}/team/tokens`,
   api: (path: string) => `/api/v1/${path}`,
   teamApi: (team: string, path: string) => `/api/v1/teams/${team}/${path}`,
 } as const;

@@ -50,12 +50,15 @@ export const people: Migration = {
       teamId TEXT REFERENCES teams (id),
       email TEXT NOT NULL,
       roles TEXT CHECK (roles IS NULL OR json_valid(roles)),
+      details TEXT CHECK (details IS NULL OR json_valid(details)),
       invitedBy TEXT REFERENCES users (id),
       createdAt TEXT NOT NULL,
       expiresAt TEXT NOT NULL,
       usedAt TEXT,
       revokedAt TEXT
     )`,
+    `CREATE INDEX oneTimeLinksByTeam ON oneTimeLinks (teamId) WHERE teamId IS NOT NULL`,
+    `CREATE INDEX oneTimeLinksByEmail ON oneTimeLinks (email, purpose)`,
     `CREATE TABLE apiTokens (
       id TEXT PRIMARY KEY,
       tokenHash TEXT NOT NULL UNIQUE,
@@ -68,6 +71,7 @@ export const people: Migration = {
       lastUsedAt TEXT,
       revokedAt TEXT
     )`,
+    `CREATE INDEX apiTokensByTeam ON apiTokens (teamId)`,
     `CREATE TABLE idempotencyKeys (
       scope TEXT NOT NULL,
       idempotencyKey TEXT NOT NULL,

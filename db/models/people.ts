@@ -50,6 +50,12 @@ export class Session extends Model<InferAttributes<Session>, InferCreationAttrib
   declare address: CreationOptional<string | null>;
 }
 
+export interface SignUpDetails {
+  name: string;
+  teamName: string;
+  passwordHash: string;
+}
+
 export class OneTimeLink extends Model<InferAttributes<OneTimeLink>, InferCreationAttributes<OneTimeLink>> {
   declare id: string;
   declare tokenHash: string;
@@ -58,6 +64,8 @@ export class OneTimeLink extends Model<InferAttributes<OneTimeLink>, InferCreati
   declare teamId: CreationOptional<string | null>;
   declare email: string;
   declare roles: CreationOptional<Role[] | null>;
+  /** A sign-up's wishes until the address is verified; erased when the link is used. */
+  declare details: CreationOptional<SignUpDetails | null>;
   declare invitedBy: CreationOptional<string | null>;
   declare createdAt: string;
   declare expiresAt: string;
@@ -144,6 +152,7 @@ export function definePeople(sequelize: Sequelize): void {
       teamId: column.optionalText(),
       email: column.text(),
       roles: column.optionalJson('roles'),
+      details: column.optionalJson('details'),
       invitedBy: column.optionalText(),
       createdAt: column.text(),
       expiresAt: column.text(),

@@ -15,6 +15,7 @@ export const errorTable: Record<RefusalCode, { status: number; title: string }> 
   password_too_weak: { status: 422, title: 'Password too weak' },
   already_a_member: { status: 409, title: 'Already a member' },
   last_owner: { status: 409, title: 'A team needs an owner' },
+  limit_reached: { status: 409, title: 'Limit reached' },
   invalid_network: { status: 422, title: 'The model has problems' },
   unreadable_file: { status: 422, title: 'The file cannot be read' },
   too_large: { status: 413, title: 'Too large' },

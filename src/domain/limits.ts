@@ -18,6 +18,19 @@ export const limits = {
   idempotencyKeyCharacters: 200,
   listPage: 200,
   listPageDefault: 50,
+  /** People. */
+  passwordCharactersMinimum: 12,
+  passwordCharacters: 200,
+  linkHours: 24,
+  resetMinutes: 60,
+  invitationDays: 7,
+  sessionDays: 30,
+  sessionIdleDays: 14,
+  membersPerTeam: 200,
+  openInvitationsPerTeam: 100,
+  tokensPerMember: 50,
+  tokenDays: 3_650,
+  projectCodesPerTeam: 1_000,
   /** Jobs. */
   replicatesPerJob: 10_000_000,
   gridIntervals: 10_000,
@@ -42,6 +55,7 @@ export const limits = {
 const relations: [string, boolean][] = [
   ['a page fits its maximum', limits.listPageDefault <= limits.listPage],
   ['a model body is at least an ordinary body', limits.modelBodyBytes >= limits.bodyBytes],
+  ['an idle session ends before the longest one', limits.sessionIdleDays <= limits.sessionDays],
   ['replicates are below the stream key limit of 2^40', limits.replicatesPerJob < 2 ** 40],
   ['points are below the stream key limit of 2^24', limits.sweepPoints < 2 ** 24],
   ['the least pilot can support the least cap', limits.pilotReplicatesMinimum >= limits.capReplicatesMinimum],

@@ -15,6 +15,7 @@ export const refusalCodes = [
   'password_too_weak',
   'already_a_member',
   'last_owner',
+  'limit_reached',
   // models
   'invalid_network',
   'unreadable_file',
