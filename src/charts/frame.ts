@@ -79,6 +79,7 @@ export function labelSeries(labels: DirectLabel[], theme: ChartTheme): object {
     name: 'labels',
     silent: true,
     symbolSize: 0.01,
+    itemStyle: { opacity: 1 },
     tooltip: { show: false },
     clip: false,
     z: 10,
