@@ -11,9 +11,9 @@ import { appendOnly, whole } from './guards.ts';
 const holdings = `'available', 'held', 'frozen', 'spent', 'returned'`;
 const sources = `'bought', 'granted', 'earned'`;
 
-/** Σ of one JSON list of the new transaction for the team at hand. */
-const sumOf = (list: string, where = '1') => `(
-  SELECT coalesce(sum(item.value ->> 'amountMicrocredits'), 0) FROM json_each(NEW.${list}) AS item
+/** Σ of one field of a JSON list of the new transaction for the team at hand. */
+const sumOf = (list: string, where = '1', field = 'amountMicrocredits') => `(
+  SELECT coalesce(sum(item.value ->> '${field}'), 0) FROM json_each(NEW.${list}) AS item
   WHERE item.value ->> 'teamId' = team.id AND ${where})`;
 
 export const ledger: Migration = {
@@ -46,6 +46,7 @@ export const ledger: Migration = {
     )`,
     `CREATE INDEX ledgerTransactionsBySegment ON ledgerTransactions (segmentId, sequence) WHERE segmentId IS NOT NULL`,
     `CREATE INDEX ledgerTransactionsByJob ON ledgerTransactions (jobId, sequence) WHERE jobId IS NOT NULL`,
+    `CREATE INDEX ledgerTransactionsByTime ON ledgerTransactions (teamId, occurredAt, sequence)`,
     `CREATE INDEX ledgerTransactionsByTeam ON ledgerTransactions (teamId, sequence)`,
 
     `CREATE TABLE ledgerPostings (
@@ -76,12 +77,16 @@ export const ledger: Migration = {
     `CREATE INDEX lotsByTeam ON lots (teamId, transactionSequence)`,
     `CREATE UNIQUE INDEX lotsByPurchase ON lots (purchaseId) WHERE purchaseId IS NOT NULL`,
 
+    // What transactions took from lots, froze of them or set free.
     `CREATE TABLE lotDraws (
       lotId TEXT NOT NULL REFERENCES lots (id),
       transactionSequence INTEGER NOT NULL REFERENCES ledgerTransactions (sequence),
-      amountMicrocredits INTEGER NOT NULL CHECK (${whole('amountMicrocredits')} AND amountMicrocredits > 0),
+      amountMicrocredits INTEGER NOT NULL CHECK (${whole('amountMicrocredits')} AND amountMicrocredits >= 0),
       -- Of the lot, after this draw.
       remainingMicrocredits INTEGER NOT NULL CHECK (${whole('remainingMicrocredits')} AND remainingMicrocredits >= 0),
+      frozenChangeMicrocredits INTEGER NOT NULL CHECK (${whole('frozenChangeMicrocredits')}),
+      -- What of the rest is frozen, after this draw.
+      frozenMicrocredits INTEGER NOT NULL CHECK (${whole('frozenMicrocredits')} AND frozenMicrocredits BETWEEN 0 AND remainingMicrocredits),
       PRIMARY KEY (lotId, transactionSequence)
     ) WITHOUT ROWID`,
 
@@ -108,7 +113,9 @@ export const ledger: Migration = {
        SELECT RAISE(ABORT, 'ledger: every posting, lot and draw is an integer amount')
        WHERE EXISTS (SELECT 1 FROM json_each(NEW.postings) AS item WHERE json_type(item.value, '$.amountMicrocredits') IS NOT 'integer')
           OR EXISTS (SELECT 1 FROM json_each(NEW.draws) AS item WHERE json_type(item.value, '$.amountMicrocredits') IS NOT 'integer'
-               OR json_type(item.value, '$.remainingMicrocredits') IS NOT 'integer')
+               OR json_type(item.value, '$.remainingMicrocredits') IS NOT 'integer'
+               OR json_type(item.value, '$.frozenChangeMicrocredits') IS NOT 'integer'
+               OR json_type(item.value, '$.frozenMicrocredits') IS NOT 'integer')
           OR EXISTS (SELECT 1 FROM json_each(NEW.lots) AS item WHERE json_type(item.value, '$.creditsMicrocredits') IS NOT 'integer'
                OR json_type(item.value, '$.netMinor') IS NOT 'integer');
        SELECT RAISE(ABORT, 'ledger: the postings of a team must sum to zero')
@@ -120,10 +127,11 @@ export const ledger: Migration = {
        WHERE -${sumOf('postings', `item.value ->> 'account' IN (${sources})`)} <> (
          SELECT coalesce(sum(item.value ->> 'creditsMicrocredits'), 0) FROM json_each(NEW.lots) AS item
          WHERE item.value ->> 'teamId' = team.id);
-       SELECT RAISE(ABORT, 'ledger: lots must be drawn for exactly what is spent or returned')
+       SELECT RAISE(ABORT, 'ledger: lots must be drawn or frozen for exactly what is spent, returned or frozen')
        FROM (SELECT item.value ->> 'teamId' AS id FROM json_each(NEW.postings) AS item
              UNION SELECT item.value ->> 'teamId' FROM json_each(NEW.draws) AS item) AS team
-       WHERE ${sumOf('postings', `item.value ->> 'account' IN ('spent', 'returned')`)} <> ${sumOf('draws')};
+       WHERE ${sumOf('postings', `item.value ->> 'account' IN ('spent', 'returned')`)} <> ${sumOf('draws')}
+          OR ${sumOf('postings', `item.value ->> 'account' = 'frozen'`)} <> ${sumOf('draws', '1', 'frozenChangeMicrocredits')};
        INSERT INTO ledgerPostings (transactionSequence, teamId, account, amountMicrocredits, balanceMicrocredits)
        SELECT NEW.sequence, item.value ->> 'teamId', item.value ->> 'account', item.value ->> 'amountMicrocredits',
          (item.value ->> 'amountMicrocredits') + coalesce((
@@ -135,8 +143,9 @@ export const ledger: Migration = {
        SELECT item.value ->> 'id', NEW.sequence, item.value ->> 'teamId', item.value ->> 'source',
          item.value ->> 'creditsMicrocredits', item.value ->> 'netMinor', item.value ->> 'currency', item.value ->> 'purchaseId'
        FROM json_each(NEW.lots) AS item;
-       INSERT INTO lotDraws (lotId, transactionSequence, amountMicrocredits, remainingMicrocredits)
-       SELECT item.value ->> 'lotId', NEW.sequence, item.value ->> 'amountMicrocredits', item.value ->> 'remainingMicrocredits'
+       INSERT INTO lotDraws (lotId, transactionSequence, amountMicrocredits, remainingMicrocredits, frozenChangeMicrocredits, frozenMicrocredits)
+       SELECT item.value ->> 'lotId', NEW.sequence, item.value ->> 'amountMicrocredits', item.value ->> 'remainingMicrocredits',
+         item.value ->> 'frozenChangeMicrocredits', item.value ->> 'frozenMicrocredits'
        FROM json_each(NEW.draws) AS item;
      END`,
 
@@ -159,10 +168,13 @@ export const ledger: Migration = {
      WHEN NOT EXISTS (
          SELECT 1 FROM ledgerTransactions AS own, json_each(own.draws) AS item JOIN lots ON lots.id = NEW.lotId
          WHERE own.sequence = NEW.transactionSequence AND item.value ->> 'lotId' = NEW.lotId
-           AND item.value ->> 'teamId' = lots.teamId AND item.value ->> 'amountMicrocredits' = NEW.amountMicrocredits)
+           AND item.value ->> 'teamId' = lots.teamId AND item.value ->> 'amountMicrocredits' = NEW.amountMicrocredits
+           AND item.value ->> 'frozenChangeMicrocredits' = NEW.frozenChangeMicrocredits)
        OR NEW.remainingMicrocredits IS NOT coalesce(
          (SELECT remainingMicrocredits FROM lotDraws WHERE lotId = NEW.lotId ORDER BY transactionSequence DESC LIMIT 1),
          (SELECT creditsMicrocredits FROM lots WHERE id = NEW.lotId)) - NEW.amountMicrocredits
+       OR NEW.frozenMicrocredits IS NOT NEW.frozenChangeMicrocredits + coalesce(
+         (SELECT frozenMicrocredits FROM lotDraws WHERE lotId = NEW.lotId ORDER BY transactionSequence DESC LIMIT 1), 0)
      BEGIN SELECT RAISE(ABORT, 'ledger: draws come only from their transaction and leave what they say'); END`,
     ...['ledgerTransactions', 'ledgerPostings', 'lots', 'lotDraws'].flatMap(appendOnly),
 

@@ -56,6 +56,8 @@ export class LotDrawRow extends Model<InferAttributes<LotDrawRow>, InferCreation
   declare transactionSequence: number;
   declare amountMicrocredits: number;
   declare remainingMicrocredits: number;
+  declare frozenChangeMicrocredits: number;
+  declare frozenMicrocredits: number;
 }
 
 export class LedgerCheckpoint extends Model<
@@ -130,6 +132,8 @@ export function defineLedger(sequelize: Sequelize): void {
       transactionSequence: { ...column.integer(), ...primary },
       amountMicrocredits: column.integer(),
       remainingMicrocredits: column.integer(),
+      frozenChangeMicrocredits: column.integer(),
+      frozenMicrocredits: column.integer(),
     },
     { sequelize, tableName: 'lotDraws', timestamps: false },
   );

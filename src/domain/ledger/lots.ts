@@ -20,24 +20,54 @@ export interface OpenLot {
   id: string;
   source: LotSource;
   remainingMicrocredits: number;
+  /** The part of what remains that a dispute has frozen: it cannot be drawn until the dispute is decided. */
+  frozenMicrocredits: number;
   /** Order of issue. */
   sequence: number;
 }
 
+/** What a transaction does to a lot: takes from it, freezes a part of it, or sets it free. */
 export interface LotDraw {
   lotId: string;
   teamId: string;
+  /** Taken out; never negative. */
   amountMicrocredits: number;
-  /** What the lot has left after this draw. */
+  /** What the lot has left after it. */
   remainingMicrocredits: number;
+  frozenChangeMicrocredits: number;
+  /** What of the rest is frozen after it. */
+  frozenMicrocredits: number;
+}
+
+type LotState = Pick<OpenLot, 'id' | 'remainingMicrocredits' | 'frozenMicrocredits'>;
+
+/** One movement of one lot. Throws when the lot cannot give or freeze that much. */
+export function moveLot(
+  teamId: string,
+  lot: LotState,
+  change: { takenMicrocredits?: number; frozenMicrocredits?: number },
+): LotDraw {
+  const { takenMicrocredits = 0, frozenMicrocredits: frozenChange = 0 } = change;
+  const remaining = lot.remainingMicrocredits - takenMicrocredits;
+  const frozen = lot.frozenMicrocredits + frozenChange;
+  if (takenMicrocredits < 0 || frozen < 0 || frozen > remaining)
+    throw new Error(`Lot ${lot.id} cannot give ${takenMicrocredits} and have ${frozen} of ${remaining} frozen.`);
+  return {
+    lotId: lot.id,
+    teamId,
+    amountMicrocredits: takenMicrocredits,
+    remainingMicrocredits: remaining,
+    frozenChangeMicrocredits: frozenChange,
+    frozenMicrocredits: frozen,
+  };
 }
 
 /** Grants are used first, so that paid credits, which alone can be refunded, last longest. */
 const drawOrder: Record<LotSource, number> = { grant: 0, royalty: 1, bought: 2 };
 
 /**
- * Draws `amountMicrocredits` from lots: grants, then royalties, then bought ones, oldest first.
- * Throws when the lots hold less, which would mean that the ledger's invariant is broken.
+ * Draws `amountMicrocredits` from lots: grants, then royalties, then bought ones, oldest first;
+ * frozen credits stay. Throws when the lots hold less, which would mean that the ledger's invariant is broken.
  */
 export function drawFromLots(teamId: string, lots: readonly OpenLot[], amountMicrocredits: number): LotDraw[] {
   const ordered = [...lots].sort((a, b) => drawOrder[a.source] - drawOrder[b.source] || a.sequence - b.sequence);
@@ -45,14 +75,9 @@ export function drawFromLots(teamId: string, lots: readonly OpenLot[], amountMic
   let left = amountMicrocredits;
   for (const lot of ordered) {
     if (left === 0) break;
-    const amount = Math.min(left, lot.remainingMicrocredits);
+    const amount = Math.min(left, lot.remainingMicrocredits - lot.frozenMicrocredits);
     if (amount === 0) continue;
-    draws.push({
-      lotId: lot.id,
-      teamId,
-      amountMicrocredits: amount,
-      remainingMicrocredits: lot.remainingMicrocredits - amount,
-    });
+    draws.push(moveLot(teamId, lot, { takenMicrocredits: amount }));
     left -= amount;
   }
   if (left > 0) throw new Error(`The lots of ${teamId} hold ${left} microcredits less than its accounts.`);

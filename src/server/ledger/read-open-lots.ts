@@ -15,7 +15,9 @@ export async function readOpenLots(teamId: string): Promise<OpenLotRow[]> {
     `SELECT * FROM (
        SELECT id, source, creditsMicrocredits, netMinor, currency, purchaseId, transactionSequence AS sequence,
          coalesce((SELECT remainingMicrocredits FROM lotDraws WHERE lotId = lots.id
-                   ORDER BY transactionSequence DESC LIMIT 1), creditsMicrocredits) AS remainingMicrocredits
+                   ORDER BY transactionSequence DESC LIMIT 1), creditsMicrocredits) AS remainingMicrocredits,
+         coalesce((SELECT frozenMicrocredits FROM lotDraws WHERE lotId = lots.id
+                   ORDER BY transactionSequence DESC LIMIT 1), 0) AS frozenMicrocredits
        FROM lots WHERE teamId = $teamId)
      WHERE remainingMicrocredits > 0 ORDER BY sequence`,
     { type: QueryTypes.SELECT, bind: { teamId } },
