@@ -9,7 +9,7 @@ export interface Visitor {
   sessionId: string | null;
 }
 
-export function visitorOf(context: APIContext): Visitor {
+export function visitorOf(context: Pick<APIContext, 'locals' | 'clientAddress' | 'request'>): Visitor {
   const { actor } = context.locals;
   return {
     address: context.clientAddress,
