@@ -13,6 +13,8 @@ export interface CallOptions<C extends Contract> {
   path?: Record<string, string>;
   query?: Record<string, string | number | undefined>;
   body?: BodyOf<C>;
+  /** Instead of `body`, for contracts that take text: SBML. */
+  textBody?: { contentType: string; text: string };
   /** Sends one when the contract remembers answers; made once per intent, kept over retries of the same intent. */
   idempotencyKey?: string;
   signal?: AbortSignal;
@@ -34,14 +36,16 @@ export async function callApi<const C extends Contract>(
   options: CallOptions<C> = {},
 ): Promise<Called<AnswerOf<C>>> {
   const headers: Record<string, string> = { Accept: 'application/json' };
-  if (options.body !== undefined) headers['Content-Type'] = 'application/json';
+  const { body, textBody } = options;
+  if (textBody) headers['Content-Type'] = textBody.contentType;
+  else if (body !== undefined) headers['Content-Type'] = 'application/json';
   if (options.idempotencyKey) headers['Idempotency-Key'] = options.idempotencyKey;
   let response: Response;
   try {
     response = await fetch(urlOf(contract, options.path, options.query), {
       method: contract.method,
       headers,
-      body: options.body === undefined ? null : JSON.stringify(options.body),
+      body: textBody ? textBody.text : body === undefined ? null : JSON.stringify(body),
       credentials: 'same-origin',
       signal: options.signal ?? null,
     });
