@@ -8,7 +8,7 @@ import { exponentialFunction } from './elementary/exponential.ts';
 import { logarithmFunction } from './elementary/logarithm.ts';
 import { emitWholePower, largestWholeExponent, powerFunction } from './elementary/power.ts';
 import type { Lanes, Real, Truth, Width } from './lanes.ts';
-import { largestHoistedOrder, type PreparedReaction, type Term } from './prepare-network.ts';
+import { largestHoistedOrder, type PreparedReaction, type Term } from './prepared-network.ts';
 import type { FunctionBuilder, ModuleBuilder } from './wasm/module-builder.ts';
 import { call, get, lane, op, set, type Local, type Node } from './wasm/node.ts';
 

@@ -7,8 +7,7 @@ import { decimalLogarithm } from './elementary/decimal-logarithm.ts';
 import { exponential } from './elementary/exponential.ts';
 import { logarithm } from './elementary/logarithm.ts';
 import { power } from './elementary/power.ts';
-import type { PreparedReaction, Term } from './prepare-network.ts';
-import { largestHoistedOrder } from './prepare-network.ts';
+import { largestHoistedOrder, type PreparedReaction, type Term } from './prepared-network.ts';
 
 const truth = (condition: boolean): number => (condition ? 1 : 0);
 

@@ -1,49 +1,11 @@
 /**
- * The network as code is made from it: everything that no firing can change is taken out into numbered constants, worked out
- * once per point and kept in the kernel's memory, so that one module serves every sweep point.
+ * Takes everything that no firing can change out of a network into numbered constants, worked out once per point and kept in
+ * the kernel's memory, so that one module serves every sweep point.
  */
-import type { BinaryOperator, Expression, FunctionName, UnaryOperator } from '@/domain/network/expression.ts';
-import type { ResolvedNetwork, ResolvedReaction, Stoichiometry } from '@/domain/network/resolved.ts';
+import type { Expression } from '@/domain/network/expression.ts';
+import type { ResolvedNetwork, ResolvedReaction } from '@/domain/network/resolved.ts';
 import { evaluateConstant } from './evaluate.ts';
-
-/** What is worked out anew after a firing. */
-export type Term =
-  | { kind: 'number'; value: number }
-  | { kind: 'constant'; slot: number }
-  | { kind: 'species'; index: number }
-  /** The value of `PreparedNetwork.assigned[index]`. */
-  | { kind: 'assigned'; index: number }
-  | { kind: 'unary'; operator: UnaryOperator; operand: Term }
-  | { kind: 'binary'; operator: BinaryOperator; left: Term; right: Term }
-  | { kind: 'call'; name: FunctionName; arguments: Term[] }
-  | { kind: 'piecewise'; pieces: { value: Term; condition: Term }[]; otherwise: Term };
-
-export interface PreparedReaction {
-  changes: Stoichiometry[];
-  law:
-    /** factor · Π x(x−1)…(x−order+1), from left to right; the factorials are already in `factor`. */
-    | { kind: 'massAction'; factor: Term; orders: { species: number; order: number }[] }
-    /** `value` where every guard holds (x ≥ atLeast), else 0. */
-    | { kind: 'expression'; value: Term; guards: { species: number; atLeast: number }[] };
-}
-
-export interface PreparedNetwork {
-  speciesCount: number;
-  /** Species that some reaction changes; only they can overflow. */
-  changing: number[];
-  constants: Expression[];
-  /** Parameters that follow the state, in dependency order. */
-  assigned: Term[];
-  reactions: PreparedReaction[];
-  /** Observables that are counts of species, by species; then those that are other numbers. */
-  countObservables: number[];
-  realObservables: Term[];
-  /** For each observable of the network: which of the two lists, and where in it. */
-  observablePlaces: { kind: 'count' | 'real'; position: number }[];
-}
-
-/** Up to this order the factorial is taken into the constant; above it each factor is divided by its own number. */
-export const largestHoistedOrder = 10;
+import { largestHoistedOrder, type PreparedNetwork, type PreparedReaction, type Term } from './prepared-network.ts';
 
 class Preparation {
   readonly constants: Expression[] = [];

@@ -1,0 +1,93 @@
+/** The direct method in plain TypeScript: the oracle that the generated kernels are held against, and the finder of causes. */
+import { logarithm } from '../kernel/elementary/logarithm.ts';
+import { evaluatePropensity, evaluateTerm, type StateValues } from '../kernel/evaluate.ts';
+import { largestCount, largestTotal } from '../kernel/memory-layout.ts';
+import type { PreparedNetwork } from '../kernel/prepared-network.ts';
+import { uniform52, Xoshiro256, type Xoshiro256State } from '../random/xoshiro256.ts';
+
+export interface ReferenceTask {
+  prepared: PreparedNetwork;
+  constants: Float64Array;
+  initialCounts: ArrayLike<number>;
+  gridTimes: Float64Array;
+  generator: Xoshiro256State;
+  /** Firings allowed. */
+  eventLimit: number;
+}
+
+/** Why a replicate could not go on. `reaction` is an index, null where no single reaction is the cause. */
+export interface Cause {
+  kind: 'negative_propensity' | 'not_a_number' | 'count_overflow' | 'event_limit';
+  reaction: number | null;
+  time: number;
+  counts: number[];
+}
+
+export interface ReferenceReplicate {
+  firings: number;
+  /** One row per grid point: the count observables. Not complete when there is a cause. */
+  counts: number[][];
+  /** One row per grid point: the other observables. */
+  reals: number[][];
+  cause: Cause | null;
+}
+
+/** The values of assigned parameters in the given state, in their order. */
+export function stateValues(prepared: PreparedNetwork, constants: Float64Array, counts: number[]): StateValues {
+  const state: StateValues = { counts, constants, assigned: [] };
+  for (const term of prepared.assigned) state.assigned.push(evaluateTerm(term, state));
+  return state;
+}
+
+/** Prefix sums of the propensities, or the first reaction (null: their sum) that spoils them. */
+export function prefixSums(
+  prepared: PreparedNetwork,
+  state: StateValues,
+): number[] | { kind: 'negative_propensity' | 'not_a_number'; reaction: number | null } {
+  const prefixes: number[] = [];
+  let total = 0;
+  for (const [index, reaction] of prepared.reactions.entries()) {
+    const propensity = evaluatePropensity(reaction, state);
+    if (propensity < 0) return { kind: 'negative_propensity', reaction: index };
+    if (!(propensity < Infinity)) return { kind: 'not_a_number', reaction: index };
+    total = index === 0 ? propensity : total + propensity;
+    prefixes.push(total);
+  }
+  return total <= largestTotal ? prefixes : { kind: 'not_a_number', reaction: null };
+}
+
+/** One replicate. */
+export function runReferenceReplicate(task: ReferenceTask): ReferenceReplicate {
+  const { prepared, constants, gridTimes } = task;
+  const generator = new Xoshiro256(task.generator);
+  const counts = Array.from(task.initialCounts);
+  const replicate: ReferenceReplicate = { firings: 0, counts: [], reals: [], cause: null };
+  const fail = (kind: Cause['kind'], reaction: number | null, at: number): ReferenceReplicate => ({
+    ...replicate,
+    cause: { kind, reaction, time: at, counts: [...counts] },
+  });
+  let time = 0;
+  for (;;) {
+    const state = stateValues(prepared, constants, counts);
+    const prefixes = prefixSums(prepared, state);
+    if (!Array.isArray(prefixes)) return fail(prefixes.kind, prefixes.reaction, time);
+    const total = prefixes.at(-1) ?? 0;
+    const waitingDraw = uniform52(generator.next());
+    const choiceDraw = uniform52(generator.next());
+    const newTime = total === 0 ? Infinity : time - logarithm(1 - waitingDraw) / total;
+    while (gridTimes[replicate.counts.length]! < newTime) {
+      replicate.counts.push(prepared.countObservables.map((species) => counts[species]!));
+      replicate.reals.push(prepared.realObservables.map((term) => evaluateTerm(term, state)));
+      if (replicate.counts.length === gridTimes.length) return replicate;
+    }
+    if (replicate.firings >= task.eventLimit) return fail('event_limit', null, newTime);
+    const threshold = choiceDraw * total;
+    const chosen = prefixes.findIndex((prefix) => prefix > threshold);
+    const { changes } = prepared.reactions[chosen]!;
+    if (changes.some(({ species, count }) => counts[species]! + count > largestCount))
+      return fail('count_overflow', chosen, newTime);
+    for (const { species, count } of changes) counts[species]! += count;
+    time = newTime;
+    replicate.firings++;
+  }
+}

@@ -1,0 +1,351 @@
+/**
+ * Generates the scalar kernel of the direct method: one WebAssembly module per network structure, one replicate at a time.
+ * What it computes, operation by operation, is written in exact/direct-method.ts.
+ */
+import { emitLogarithmOfNormal } from './elementary/logarithm.ts';
+import { ExpressionEmitter } from './emit-expression.ts';
+import { emitNext, emitSeeding, generatorLocals, onePlusUniform } from './emit-random.ts';
+import { scalarLanes as lanes } from './lanes.ts';
+import { control, largestCount, largestTotal, status, structureLayout } from './memory-layout.ts';
+import type { PreparedNetwork } from './prepared-network.ts';
+import { ModuleBuilder, type FunctionBuilder } from './wasm/module-builder.ts';
+import {
+  block,
+  branch,
+  branchIf,
+  branchTable,
+  f64,
+  get,
+  giveBack,
+  i32,
+  label,
+  loop,
+  memory,
+  op,
+  select,
+  set,
+  when,
+  type Local,
+  type Node,
+} from './wasm/node.ts';
+
+/** Above this many species the state stays in memory, so that functions keep a moderate number of locals. */
+const largestStateInLocals = 200;
+
+const address = i32(0);
+
+/** The state, in locals or in memory. */
+class State {
+  readonly #locals: Local<'f64'>[] | null;
+
+  constructor(
+    fn: FunctionBuilder,
+    readonly speciesCount: number,
+    readonly savedCounts: number,
+    readonly initialCounts: number,
+  ) {
+    this.#locals =
+      speciesCount <= largestStateInLocals
+        ? Array.from({ length: speciesCount }, (_, index) => fn.local('f64', `x${index}`))
+        : null;
+  }
+
+  get(species: number): Node<'f64'> {
+    return this.#locals ? get(this.#locals[species]!) : memory('f64.load', this.savedCounts + 8 * species, address);
+  }
+
+  set(species: number, value: Node<'f64'>): Node {
+    return this.#locals
+      ? set(this.#locals[species]!, value)
+      : memory('f64.store', this.savedCounts + 8 * species, address, value);
+  }
+
+  all(change: (species: number) => Node): Node[] {
+    return Array.from({ length: this.speciesCount }, (_, species) => change(species));
+  }
+
+  reset(): Node[] {
+    return this.all((species) => this.set(species, memory('f64.load', this.initialCounts + 8 * species, address)));
+  }
+
+  load(): Node[] {
+    if (!this.#locals) return [];
+    return this.all((species) => this.set(species, memory('f64.load', this.savedCounts + 8 * species, address)));
+  }
+
+  save(): Node[] {
+    if (!this.#locals) return [];
+    return this.all((species) => memory('f64.store', this.savedCounts + 8 * species, address, this.get(species)));
+  }
+}
+
+/**
+ * `run(events: i32): i32` goes on for at most so many firings and answers a `status`. Called in chunks, so that the
+ * runtime can change to optimised code between calls and the host can look at its budgets.
+ */
+export function directScalarModule(prepared: PreparedNetwork): ModuleBuilder {
+  const layout = structureLayout(prepared);
+  const module = new ModuleBuilder();
+  const fn = module.function('run', [['chunk', 'i32']], 'i32', { exported: true });
+  const chunk = fn.parameter(0, 'i32');
+  const time = fn.local('f64', 'time');
+  const newTime = fn.local('f64', 'newTime');
+  const nextGridTime = fn.local('f64', 'nextGridTime');
+  const gridIndex = fn.local('i32', 'gridIndex');
+  const firings = fn.local('f64', 'firings');
+  const eventLimit = fn.local('f64', 'eventLimit');
+  const slot = fn.local('i32', 'slot');
+  const total = fn.local('f64', 'total');
+  const threshold = fn.local('f64', 'threshold');
+  const drawn = fn.local('f64', 'drawn');
+  const chosen = fn.local('i32', 'chosen');
+  const generator = generatorLocals(lanes, fn);
+  const state = new State(fn, prepared.speciesCount, layout.savedCounts, layout.initialCounts);
+  const assigned = prepared.assigned.map((_, index) => fn.local('f64', `assigned${index}`));
+  const expressions = new ExpressionEmitter(lanes, module, fn, {
+    species: (index) => state.get(index),
+    constant: (slotIndex) => memory('f64.load', layout.constants + 8 * slotIndex, address),
+    assigned: (index) => get(assigned[index]!),
+  });
+  const field = (at: number): Node<'i32'> => memory('i32.load', at, address);
+  const gridTime = (): Node<'f64'> =>
+    memory('f64.load', 0, op('i32.add', field(control.gridTimes), op('i32.shl', get(gridIndex), i32(3))));
+
+  const save = (): Node[] => [
+    memory('f64.store', control.time, address, get(time)),
+    memory('i32.store', control.gridIndex, address, get(gridIndex)),
+    memory('f64.store', control.firings, address, get(firings)),
+    memory('i32.store', control.slot, address, get(slot)),
+    ...generator.state.map((word, i) => memory('i64.store', control.generator + 8 * i, address, get(word))),
+    ...state.save(),
+  ];
+  const stop = (answer: number, at: Local<'f64'> = time): Node[] => [
+    memory('f64.store', control.failureTime, address, get(at)),
+    ...save(),
+    giveBack(i32(answer)),
+  ];
+
+  const nextReplicate = label('nextReplicate');
+  const nextEvent = label('nextEvent');
+  const begin: Node[] = [
+    when(op('i32.eq', get(slot), field(control.slotCount)), [...save(), giveBack(i32(status.finished))]),
+    ...emitSeeding(
+      module,
+      fn,
+      generator.state,
+      op(
+        'i64.add',
+        op(
+          'i64.add',
+          memory('i64.load', control.streamBase, address),
+          memory('i64.load', control.firstReplicate, address),
+        ),
+        op('i64.extend_i32_u', get(slot)),
+      ),
+    ),
+    ...state.reset(),
+    set(time, f64(0)),
+    set(firings, f64(0)),
+    set(gridIndex, i32(0)),
+    memory('i32.store', control.active, address, i32(1)),
+  ];
+
+  const logarithm = emitLogarithmOfNormal(
+    lanes,
+    fn,
+    op('f64.sub', f64(2), onePlusUniform(lanes, get(generator.output))),
+  );
+  const advance: Node[] = [
+    ...emitNext(lanes, generator),
+    ...logarithm.statements,
+    set(newTime, op('f64.sub', get(time), op('f64.div', logarithm.value, get(total)))),
+    set(newTime, select(f64(Infinity), get(newTime), op('f64.eq', get(total), f64(0)))),
+    ...emitNext(lanes, generator),
+    set(drawn, op('f64.sub', onePlusUniform(lanes, get(generator.output)), f64(1))),
+  ];
+
+  const { statements: propensities, prefixes } = emitPropensities(prepared, fn, expressions, total, assigned, stop);
+  fn.emit(
+    set(slot, field(control.slot)),
+    set(eventLimit, memory('f64.load', control.eventLimit, address)),
+    ...state.load(),
+    set(time, memory('f64.load', control.time, address)),
+    set(gridIndex, field(control.gridIndex)),
+    set(firings, memory('f64.load', control.firings, address)),
+    ...generator.state.map((word, i) => set(word, memory('i64.load', control.generator + 8 * i, address))),
+    loop(
+      nextReplicate,
+      when(op('i32.eqz', field(control.active)), begin),
+      set(nextGridTime, gridTime()),
+      loop(
+        nextEvent,
+        ...propensities,
+        ...advance,
+        when(op('i32.eqz', op('f64.le', get(newTime), get(nextGridTime))), [
+          ...emitRecording(prepared, fn, expressions, {
+            newTime,
+            nextGridTime,
+            gridIndex,
+            slot,
+            gridTime,
+            species: (index) => state.get(index),
+            finish: [
+              memory(
+                'f64.store',
+                0,
+                op('i32.add', field(control.events), op('i32.shl', get(slot), i32(3))),
+                get(firings),
+              ),
+              set(slot, op('i32.add', get(slot), i32(1))),
+              memory('i32.store', control.active, address, i32(0)),
+              branch(nextReplicate),
+            ],
+          }),
+        ]),
+        when(op('f64.ge', get(firings), get(eventLimit)), stop(status.eventLimit, newTime)),
+        set(threshold, op('f64.mul', get(drawn), get(total))),
+        set(
+          chosen,
+          prefixes
+            .slice(0, -1)
+            .map((prefix) => op('f64.le', get(prefix), get(threshold)))
+            .reduce<Node<'i32'>>((sum, one) => op('i32.add', sum, one), i32(0)),
+        ),
+        emitFiring(prepared, state, chosen, (reaction) => [
+          memory('i32.store', control.failedReaction, address, i32(reaction)),
+          ...stop(status.countOverflow, newTime),
+        ]),
+        set(time, get(newTime)),
+        set(firings, op('f64.add', get(firings), f64(1))),
+        set(chunk, op('i32.sub', get(chunk), i32(1))),
+        branchIf(nextEvent, get(chunk)),
+        ...save(),
+        giveBack(i32(status.paused)),
+      ),
+    ),
+    giveBack(i32(status.finished)),
+  );
+  return module;
+}
+
+/** Propensities, their prefix sums in the order of the reactions, and the check of both. */
+function emitPropensities(
+  prepared: PreparedNetwork,
+  fn: FunctionBuilder,
+  expressions: ExpressionEmitter<'scalar'>,
+  total: Local<'f64'>,
+  assigned: Local<'f64'>[],
+  stop: (answer: number) => Node[],
+): { statements: Node[]; prefixes: Local<'f64'>[] } {
+  const statements: Node[] = [];
+  const prefixes: Local<'f64'>[] = [];
+  const propensity = fn.local('f64', 'propensity');
+  const bad = fn.local('i32', 'bad');
+  statements.push(set(bad, i32(0)));
+  prepared.assigned.forEach((term, index) => statements.push(...expressions.assign(assigned[index]!, term)));
+  prepared.reactions.forEach((reaction, index) => {
+    const prefix = fn.local('f64', `prefix${index}`);
+    const previous = prefixes.at(-1);
+    statements.push(
+      ...expressions.assignPropensity(propensity, reaction),
+      set(bad, op('i32.or', get(bad), op('f64.lt', get(propensity), f64(0)))),
+      set(prefix, previous ? op('f64.add', get(previous), get(propensity)) : get(propensity)),
+    );
+    prefixes.push(prefix);
+  });
+  const last = prefixes.at(-1);
+  statements.push(
+    set(total, last ? get(last) : f64(0)),
+    when(
+      op('i32.or', get(bad), op('i32.eqz', op('f64.le', get(total), f64(largestTotal)))),
+      stop(status.badPropensity),
+    ),
+  );
+  return { statements, prefixes };
+}
+
+interface Recording {
+  newTime: Local<'f64'>;
+  nextGridTime: Local<'f64'>;
+  gridIndex: Local<'i32'>;
+  slot: Local<'i32'>;
+  gridTime: () => Node<'f64'>;
+  species: (index: number) => Node<'f64'>;
+  /** What happens after the last grid time; must leave the loop. */
+  finish: Node[];
+}
+
+/** Writes the state at every grid time that lies before the new time. */
+function emitRecording(
+  prepared: PreparedNetwork,
+  fn: FunctionBuilder,
+  expressions: ExpressionEmitter<'scalar'>,
+  recording: Recording,
+): Node[] {
+  const { newTime, nextGridTime, gridIndex, slot } = recording;
+  const place = fn.local('i32', 'place');
+  const value = fn.local('f64', 'value');
+  const again = label('nextGridPoint');
+  const field = (at: number): Node<'i32'> => memory('i32.load', at, address);
+  /** Address of this slot in the first cell of the grid point; `scale` is 1 for counts and 2 for reals. */
+  const firstCell = (table: number, cells: number, shift: number): Node<'i32'> =>
+    op(
+      'i32.add',
+      op('i32.add', field(table), op('i32.shl', get(slot), i32(2 + shift))),
+      op('i32.mul', op('i32.mul', get(gridIndex), i32(cells)), op('i32.shl', field(control.cellBytes), i32(shift))),
+    );
+  const counts = prepared.countObservables.flatMap((species) => [
+    memory('i32.store', 0, get(place), op('i32.trunc_sat_f64_s', recording.species(species))),
+    set(place, op('i32.add', get(place), field(control.cellBytes))),
+  ]);
+  const reals = prepared.realObservables.flatMap((term) => [
+    ...expressions.assign(value, term),
+    memory('f64.store', 0, get(place), get(value)),
+    set(place, op('i32.add', get(place), op('i32.shl', field(control.cellBytes), i32(1)))),
+  ]);
+  return [
+    loop(
+      again,
+      ...(counts.length > 0
+        ? [set(place, firstCell(control.counts, prepared.countObservables.length, 0)), ...counts]
+        : []),
+      ...(reals.length > 0 ? [set(place, firstCell(control.reals, prepared.realObservables.length, 1)), ...reals] : []),
+      set(gridIndex, op('i32.add', get(gridIndex), i32(1))),
+      when(op('i32.gt_s', get(gridIndex), field(control.gridIntervals)), recording.finish),
+      set(nextGridTime, recording.gridTime()),
+      branchIf(again, op('f64.gt', get(newTime), get(nextGridTime))),
+    ),
+  ];
+}
+
+/** Applies the chosen reaction's changes; a count above the largest leaves through `overflow` with the state as before. */
+function emitFiring(
+  prepared: PreparedNetwork,
+  state: State,
+  chosen: Local<'i32'>,
+  overflow: (reaction: number) => Node[],
+): Node {
+  const fired = label('fired');
+  const cases = prepared.reactions.map((_, index) => label(`reaction${index}`));
+  if (cases.length === 0) return block(fired);
+  let inner: Node[] = [branchTable(cases.slice(0, -1), cases.at(-1)!, get(chosen))];
+  prepared.reactions.forEach(({ changes }, index) => {
+    const tooLarge = changes
+      .filter(({ count }) => count > 0)
+      .map(({ species, count }) => op('f64.gt', op('f64.add', state.get(species), f64(count)), f64(largestCount)));
+    inner = [
+      block(cases[index]!, ...inner),
+      ...(tooLarge.length > 0
+        ? [
+            when(
+              tooLarge.reduce((any, one) => op('i32.or', any, one)),
+              overflow(index),
+            ),
+          ]
+        : []),
+      ...changes.map(({ species, count }) => state.set(species, op('f64.add', state.get(species), f64(count)))),
+      branch(fired),
+    ];
+  });
+  return block(fired, ...inner);
+}

@@ -1,0 +1,52 @@
+/** The generated kernels against the readable reference: the same bytes on randomly generated networks. */
+import fc from 'fast-check';
+import { describe, expect, it } from 'vitest';
+import type { BatchTask, KernelName } from '@/engine/ensemble.ts';
+import { runBatch } from '@/engine/run-batch.ts';
+import { batchTask } from '@tests/factories/batch-tasks.ts';
+import { networks } from '@tests/factories/random-networks.ts';
+
+/** Everything of a batch's answer that is part of results. */
+async function outcome(task: BatchTask, kernel: KernelName): Promise<unknown> {
+  const { summary, eventsPerReplicate, traces, failure } = await runBatch({ ...task, kernel });
+  return {
+    summary: Buffer.from(summary.encode()).toString('base64'),
+    events: [...eventsPerReplicate],
+    traces: traces.map(({ replicate, values }) => ({ replicate, values: [...values] })),
+    failure,
+  };
+}
+
+const generatedKernels: KernelName[] = ['direct-scalar'];
+
+describe.each(generatedKernels)('%s', (kernel) => {
+  for (const tame of [true, false]) {
+    it(`agrees with the reference bit for bit on 150 ${tame ? 'networks whose laws stay positive' : 'networks with any laws, failures included'}`, async () => {
+      let replicates = 0;
+      let failures = 0;
+      const agrees = fc.asyncProperty(
+        networks({ tame }),
+        fc.constantFrom(0.01, 1, 30),
+        fc.bigInt({ min: 0n, max: 2n ** 64n - 1n }),
+        async (network, horizon, seed) => {
+          const task = batchTask(network, {
+            horizon,
+            seed: seed.toString(),
+            gridIntervals: 7,
+            replicateCount: 9,
+            keptTraces: 2,
+            eventBudgetPerReplicate: 120,
+          });
+          const expected = await outcome(task, 'reference');
+          expect(await outcome(task, kernel)).toEqual(expected);
+          replicates += (expected as { events: number[] }).events.length;
+          failures += (expected as { failure: unknown }).failure ? 1 : 0;
+        },
+      );
+      await fc.assert(agrees, { seed: 20261201, numRuns: 150 });
+      // The comparison means something only where replicates complete, and where some fail.
+      expect(replicates).toBeGreaterThan(200);
+      expect(failures).toBeGreaterThan(10);
+    });
+  }
+});

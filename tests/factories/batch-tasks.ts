@@ -1,0 +1,18 @@
+/** Batch tasks for tests, with everything but the network defaulted. */
+import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
+import type { BatchTask } from '@/engine/ensemble.ts';
+
+export const batchTask = (network: ResolvedNetwork, given: Partial<BatchTask> = {}): BatchTask => ({
+  network,
+  horizon: 10,
+  gridIntervals: 10,
+  seed: '20261201',
+  purpose: 'job',
+  point: 0,
+  firstReplicate: 0,
+  replicateCount: 100,
+  keptTraces: 0,
+  eventBudgetPerReplicate: null,
+  eventBudgetPerBatch: null,
+  ...given,
+});
