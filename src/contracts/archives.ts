@@ -1,4 +1,19 @@
 /** Archives of finished jobs. */
-import type { Contract } from './contract.ts';
+import { contract } from './contract.ts';
 
-export const archiveContracts: Contract[] = [];
+export const downloadArchive = contract({
+  id: 'downloadArchive',
+  feature: 'archives',
+  method: 'GET',
+  path: '/api/v1/teams/{team}/jobs/{job}/archive',
+  summary: 'The archive as a zip (a valid COMBINE archive); ETag is its SHA-256, ranges are served',
+  access: { kind: 'team', permission: 'results:read' },
+  answers: [
+    { status: 200, description: 'The whole archive', contentType: 'application/zip' },
+    { status: 206, description: 'The range asked for', contentType: 'application/zip' },
+    { status: 304, description: 'Unchanged' },
+  ],
+  refusals: ['not_signed_in', 'not_found', 'forbidden', 'results_not_ready', 'range_not_satisfiable'],
+});
+
+export const archiveContracts = [downloadArchive];

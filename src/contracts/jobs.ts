@@ -1,4 +1,406 @@
 /** Quotes, jobs, progress, statistics. */
-import type { Contract } from './contract.ts';
+import { z } from 'zod';
+import { jobStates } from '@/domain/jobs/job-state.ts';
+import { limits } from '@/domain/limits.ts';
+import { lanes } from '@/domain/pricing/price-book.ts';
+import { contract } from './contract.ts';
+import { problem } from './network.ts';
 
-export const jobContracts: Contract[] = [];
+const id = z.string().min(1).max(100);
+const microcredits = z.number().int();
+const count = z.number().int().min(0);
+
+/** u64 as a decimal string; a request may also give a small number. */
+const seed = z.union([
+  z
+    .string()
+    .regex(/^\d{1,20}$/, 'A seed is a whole number from 0 to 2^64 − 1, written in digits.')
+    .refine((text) => BigInt(text) < 2n ** 64n, 'A seed is below 2^64.'),
+  z.number().int().min(0),
+]);
+
+const overrides = z.strictObject({
+  parameters: z.record(z.string().max(limits.identifierCharacters * 2 + 1), z.number()).optional(),
+  initialCounts: z.record(z.string().max(limits.identifierCharacters), z.number()).optional(),
+});
+
+export const quoteRequest = z.strictObject({
+  modelVersionId: id,
+  replicates: z.number().int().min(1, 'At least one replicate.').max(limits.replicatesPerJob),
+  /** Simulated time, in the model's unit of time. */
+  horizon: z.number().positive('A horizon is above 0.'),
+  gridIntervals: z.number().int().min(1).max(limits.gridIntervals),
+  method: z.enum(['exact', 'leap']),
+  epsilon: z.number().positive().max(0.5).optional(),
+  seed: seed.optional(),
+  lane: z.enum(lanes),
+  overrides: overrides.optional(),
+  /** Refused for now, with a sentence. */
+  sweep: z.unknown().optional(),
+  stopping: z.looseObject({ kind: z.string() }).optional(),
+  outputs: z.strictObject({ keptTraces: z.number().int().min(0).max(limits.keptTraces).optional() }).optional(),
+});
+
+export const quoteDocument = z.object({
+  id: z.string(),
+  eventsPerReplicate: z.object({ mean: z.number(), sd: z.number() }),
+  /** `high` is the default cap. */
+  microcredits: z.object({ expected: microcredits, low: microcredits, high: microcredits }),
+  /** True when a pilot replicate was cut at the pilot's event budget: `high` is then no upper bound. */
+  oneSided: z.boolean(),
+  /** The least cap with which this quote can be launched. */
+  leastCapMicrocredits: microcredits,
+  /** Seconds to finish at the present queue. */
+  secondsByLane: z.object({ steady: z.number(), express: z.number(), overnight: z.number() }),
+  archiveBytes: count,
+  expiresAt: z.string(),
+  pilot: z.object({ replicates: count, events: count, cutReplicates: count, cached: z.boolean() }),
+  lane: z.enum(lanes),
+  microcreditsPerMillionEvents: z.number().int(),
+  priceBookVersion: z.number().int(),
+  replicates: count,
+  seed: z.string(),
+  kernel: z.string(),
+  engineVersion: z.string(),
+  usedByJobId: z.string().nullable(),
+  problems: z.array(problem),
+});
+export type QuoteDocument = z.infer<typeof quoteDocument>;
+
+export const modelFailure = z.object({
+  kind: z.enum(['negative_propensity', 'not_a_number', 'count_overflow', 'event_budget']),
+  replicate: count,
+  reaction: z.string().nullable(),
+  time: z.number(),
+  state: z.record(z.string(), z.number()),
+});
+
+export const stopReasons = [
+  'replicates_reached',
+  'cap_reached',
+  'cancelled',
+  'negative_propensity',
+  'not_a_number',
+  'count_overflow',
+  'event_budget',
+  'our_failure',
+] as const;
+
+export const jobDocument = z.object({
+  id: z.string(),
+  name: z.string(),
+  state: z.enum(jobStates),
+  /** While running: `computing`, then `finishing` (statistics and archive); null before and after. */
+  phase: z.enum(['computing', 'finishing']).nullable(),
+  model: z.object({ id: z.string(), name: z.string(), versionId: z.string(), versionNumber: z.number().int() }),
+  launchedBy: z.object({ id: z.string(), name: z.string() }),
+  projectCode: z.object({ id: z.string(), code: z.string() }).nullable(),
+  lane: z.enum(lanes),
+  method: z.enum(['exact', 'leap']),
+  horizon: z.number(),
+  timeUnit: z.string().nullable(),
+  gridIntervals: z.number().int(),
+  observables: z.array(z.string()),
+  overrides,
+  keptTraces: count,
+  points: z.number().int(),
+  replicatesPlanned: count,
+  /** Always the complete prefix of replicates by index. */
+  replicatesDone: count,
+  events: count,
+  expectedMicrocredits: microcredits,
+  chargedMicrocredits: microcredits,
+  heldMicrocredits: microcredits,
+  capMicrocredits: microcredits,
+  stopReason: z.enum(stopReasons).nullable(),
+  /** A sentence for a person. */
+  stopDetail: z.string().nullable(),
+  failure: modelFailure.nullable(),
+  precisionReached: z.boolean().nullable(),
+  seed: z.string(),
+  kernel: z.string().nullable(),
+  engineVersion: z.string(),
+  resultsDigest: z.string().nullable(),
+  archive: z.object({ sha256: z.string(), bytes: count, revision: z.number().int() }).nullable(),
+  /** Estimated at the present rate; null when nothing is left or nothing is known yet. */
+  secondsLeft: z.number().nullable(),
+  createdAt: z.string(),
+  startedAt: z.string().nullable(),
+  finishedAt: z.string().nullable(),
+});
+export type JobDocument = z.infer<typeof jobDocument>;
+
+const oneJob = z.object({ job: jobDocument });
+const jobPath = '/api/v1/teams/{team}/jobs';
+const reading = ['not_signed_in', 'not_found', 'forbidden'] as const;
+const launching = [...reading, 'team_suspended', 'invalid_input', 'unsupported_media_type'] as const;
+
+export const createQuote = contract({
+  id: 'createQuote',
+  feature: 'jobs',
+  method: 'POST',
+  path: '/api/v1/teams/{team}/quotes',
+  summary: 'Run a pilot and quote a job: cost with a 95 % range, time by lane, archive size',
+  access: { kind: 'team', permission: 'jobs:launch' },
+  body: quoteRequest,
+  answers: [{ status: 201, description: 'The quote', schema: z.object({ quote: quoteDocument }) }],
+  refusals: [...launching, 'invalid_network', 'pilot_failed', 'rate_limited', 'idempotency_key_reused', 'too_large'],
+  idempotency: 'service',
+});
+
+export const readQuote = contract({
+  id: 'readQuote',
+  feature: 'jobs',
+  method: 'GET',
+  path: '/api/v1/teams/{team}/quotes/{quote}',
+  summary: 'One quote, as it was given',
+  access: { kind: 'team', permission: 'jobs:read' },
+  answers: [{ status: 200, description: 'The quote', schema: z.object({ quote: quoteDocument }) }],
+  refusals: [...reading],
+});
+
+export const launchJob = contract({
+  id: 'launchJob',
+  feature: 'jobs',
+  method: 'POST',
+  path: jobPath,
+  summary: 'Launch a quoted job: holds the cap and queues the work',
+  access: { kind: 'team', permission: 'jobs:launch' },
+  body: z.strictObject({
+    quoteId: id,
+    name: z.string().trim().min(1).max(limits.nameCharacters),
+    /** Default: the quote's `high`. */
+    capMicrocredits: z.number().int().min(0).optional(),
+    /** Id or code of one of the team's open project codes. */
+    projectCode: z.string().min(1).max(100).optional(),
+  }),
+  answers: [{ status: 201, description: 'Queued', schema: oneJob }],
+  refusals: [
+    ...launching,
+    'quote_expired',
+    'quote_used',
+    'cap_too_low',
+    'insufficient_credits',
+    'too_many_jobs',
+    'project_code_closed',
+    'idempotency_key_reused',
+    'too_large',
+  ],
+  idempotency: 'transaction',
+});
+
+export const listJobs = contract({
+  id: 'listJobs',
+  feature: 'jobs',
+  method: 'GET',
+  path: jobPath,
+  summary: 'Jobs of the team, newest first',
+  access: { kind: 'team', permission: 'jobs:read' },
+  query: z.object({
+    limit: z.coerce.number().int().min(1).max(limits.listPage).optional(),
+    cursor: z.string().max(100).optional(),
+    /** One state, or several with commas. */
+    state: z.string().max(100).optional(),
+    model: id.optional(),
+    member: id.optional(),
+    /** Id or code. */
+    projectCode: z.string().min(1).max(100).optional(),
+  }),
+  answers: [
+    {
+      status: 200,
+      description: 'One page',
+      schema: z.object({ jobs: z.array(jobDocument), nextCursor: z.string().nullable() }),
+    },
+  ],
+  refusals: [...reading, 'invalid_input'],
+});
+
+export const readJob = contract({
+  id: 'readJob',
+  feature: 'jobs',
+  method: 'GET',
+  path: `${jobPath}/{job}`,
+  summary: 'One job as it stands',
+  access: { kind: 'team', permission: 'jobs:read' },
+  answers: [{ status: 200, description: 'The job', schema: oneJob }],
+  refusals: [...reading],
+});
+
+export const cancelJob = contract({
+  id: 'cancelJob',
+  feature: 'jobs',
+  method: 'POST',
+  path: `${jobPath}/{job}/cancel`,
+  summary: 'Stop a job; the complete prefix of replicates is kept and charged, the rest of the hold comes back',
+  access: { kind: 'team', permission: 'jobs:launch' },
+  body: z.strictObject({}),
+  answers: [{ status: 200, description: 'Stopping', schema: oneJob }],
+  refusals: [...launching, 'job_not_running', 'idempotency_key_reused', 'too_large'],
+  idempotency: 'transaction',
+});
+
+export const extendJob = contract({
+  id: 'extendJob',
+  feature: 'jobs',
+  method: 'POST',
+  path: `${jobPath}/{job}/extend`,
+  summary: 'Add the replicates of a quote to a finished job: a charge segment of its own, a new archive revision',
+  access: { kind: 'team', permission: 'jobs:launch' },
+  body: z.strictObject({ quoteId: id, capMicrocredits: z.number().int().min(0).optional() }),
+  answers: [{ status: 200, description: 'Queued again', schema: oneJob }],
+  refusals: [
+    ...launching,
+    'job_not_finished',
+    'quote_expired',
+    'quote_used',
+    'cap_too_low',
+    'insufficient_credits',
+    'too_many_jobs',
+    'idempotency_key_reused',
+    'too_large',
+  ],
+  idempotency: 'transaction',
+});
+
+export const jobProgress = contract({
+  id: 'jobProgress',
+  feature: 'jobs',
+  method: 'GET',
+  path: `${jobPath}/{job}/progress`,
+  summary: 'Server-sent events named `job`, each with the document of GET job; the stream ends when the job does',
+  access: { kind: 'team', permission: 'jobs:read' },
+  answers: [{ status: 200, description: 'Events', contentType: 'text/event-stream' }],
+  refusals: [...reading],
+});
+
+const point = z.coerce.number().int().min(0).default(0);
+const numbers = z.array(z.number());
+
+export const statisticsDocument = z.object({
+  /** The complete prefix that these numbers concern. */
+  replicates: count,
+  times: numbers,
+  observables: z.array(
+    z.object({
+      id: z.string(),
+      mean: numbers,
+      sd: z.array(z.number().nullable()),
+      meanStandardError: z.array(z.number().nullable()),
+      sdStandardError: z.array(z.number().nullable()),
+      quantiles: z.record(z.string(), numbers),
+    }),
+  ),
+  events: z.object({ total: count, meanPerReplicate: z.number(), sdPerReplicate: z.number().nullable() }),
+});
+export type StatisticsDocument = z.infer<typeof statisticsDocument>;
+
+export const jobStatistics = contract({
+  id: 'jobStatistics',
+  feature: 'jobs',
+  method: 'GET',
+  path: `${jobPath}/{job}/statistics`,
+  summary: 'Estimates with their errors at every grid time, over the complete prefix so far',
+  access: { kind: 'team', permission: 'results:read' },
+  query: z.object({ point }),
+  answers: [{ status: 200, description: 'Statistics', schema: statisticsDocument }],
+  refusals: [...reading, 'invalid_input', 'results_not_ready'],
+});
+
+export const jobDistribution = contract({
+  id: 'jobDistribution',
+  feature: 'jobs',
+  method: 'GET',
+  path: `${jobPath}/{job}/distribution`,
+  summary: 'How often each value of one observable occurred at one grid time',
+  access: { kind: 'team', permission: 'results:read' },
+  query: z.object({ observable: id, time: z.coerce.number().min(0), point }),
+  answers: [
+    {
+      status: 200,
+      description: 'The distribution at the grid time nearest to `time`',
+      schema: z.object({
+        replicates: count,
+        observable: z.string(),
+        time: z.number(),
+        values: numbers,
+        /** 1 where the count is exact for one value. */
+        widths: numbers,
+        counts: z.array(count),
+      }),
+    },
+  ],
+  refusals: [...reading, 'invalid_input', 'results_not_ready'],
+});
+
+export const jobTraces = contract({
+  id: 'jobTraces',
+  feature: 'jobs',
+  method: 'GET',
+  path: `${jobPath}/{job}/traces`,
+  summary: 'The first whole traces, on the grid',
+  access: { kind: 'team', permission: 'results:read' },
+  query: z.object({ point, limit: z.coerce.number().int().min(1).max(limits.keptTraces).optional() }),
+  answers: [
+    {
+      status: 200,
+      description: 'Traces',
+      schema: z.object({
+        times: numbers,
+        observables: z.array(z.string()),
+        /** `values[observable][time]`. */
+        traces: z.array(z.object({ replicate: count, values: z.array(numbers) })),
+      }),
+    },
+  ],
+  refusals: [...reading, 'invalid_input', 'results_not_ready'],
+});
+
+export const batchCellStates = ['waiting', 'running', 'computed', 'delivered', 'discarded'] as const;
+
+export const jobBatches = contract({
+  id: 'jobBatches',
+  feature: 'jobs',
+  method: 'GET',
+  path: `${jobPath}/{job}/batches`,
+  summary: 'The plan as a strip of cells, neighbours grouped so that there are at most `cells` of them',
+  access: { kind: 'team', permission: 'jobs:read' },
+  query: z.object({ cells: z.coerce.number().int().min(1).max(1_000).default(120) }),
+  answers: [
+    {
+      status: 200,
+      description: 'Cells in order of replicates',
+      schema: z.object({
+        batches: z.number().int(),
+        cells: z.array(
+          z.object({
+            firstReplicate: count,
+            replicates: count,
+            /** The least advanced state of the batches in the cell; `computed` waits for earlier ones to join. */
+            state: z.enum(batchCellStates),
+            batches: z.number().int(),
+            events: count,
+            /** Worker seconds. */
+            seconds: z.number(),
+          }),
+        ),
+      }),
+    },
+  ],
+  refusals: [...reading, 'invalid_input'],
+});
+
+export const jobContracts = [
+  createQuote,
+  readQuote,
+  launchJob,
+  listJobs,
+  readJob,
+  cancelJob,
+  extendJob,
+  jobProgress,
+  jobStatistics,
+  jobDistribution,
+  jobTraces,
+  jobBatches,
+];

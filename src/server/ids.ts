@@ -9,6 +9,7 @@ export type IdKind =
   | 'token'
   | 'model'
   | 'version'
+  | 'pilot'
   | 'quote'
   | 'job'
   | 'segment'

@@ -1,0 +1,78 @@
+/** What defines a job's results, as a quote pins it, and how a job ends. */
+import type { Overrides } from '../network/document.ts';
+import type { Lane, MethodFamily } from '../pricing/price-book.ts';
+import type { FinalState } from './job-state.ts';
+
+export interface JobInputs {
+  replicates: number;
+  /** Simulated time, in the model's unit of time. */
+  horizon: number;
+  gridIntervals: number;
+  method: MethodFamily;
+  /** u64 as a decimal string. */
+  seed: string;
+  lane: Lane;
+  overrides: Overrides;
+  keptTraces: number;
+  /** Fails the replicate that would exceed it. */
+  eventBudgetPerReplicate: number;
+}
+
+/** The model's own failure, as the engine reports it. */
+export interface BatchFailure {
+  kind: 'negative_propensity' | 'not_a_number' | 'count_overflow' | 'event_budget';
+  replicate: number;
+  reaction: string | null;
+  time: number;
+  state: Record<string, number>;
+}
+
+export type StopReason =
+  | 'replicates_reached'
+  | 'cap_reached'
+  | 'cancelled'
+  | BatchFailure['kind']
+  /** Work of ours was lost again and again. */
+  | 'our_failure';
+
+/** How a job ends: settled with its last batch, in force once results and archive are written. */
+export interface JobEnding {
+  state: FinalState;
+  reason: StopReason;
+  detail: string;
+  failure: BatchFailure | null;
+}
+
+/** Where a failure happened, in words. */
+export function describeFailure(failure: BatchFailure): string {
+  const what = {
+    negative_propensity: `the propensity of ${failure.reaction} became negative`,
+    not_a_number: `the propensity of ${failure.reaction} was no number`,
+    count_overflow: `a count passed 2,147,483,647 when ${failure.reaction} fired`,
+    event_budget: 'the replicate needed more events than a replicate may have',
+  }[failure.kind];
+  return (
+    `Replicate ${failure.replicate}: ${what}, at time ${failure.time}. ` +
+    'The replicates before it were kept and charged; results are conditional on no failure.'
+  );
+}
+
+/** True when replicates of `b` continue the sample of `a`: everything that shapes a replicate is equal. */
+export function continuesSample(a: JobInputs, b: JobInputs): boolean {
+  const shape = ({ horizon, gridIntervals, method, seed, overrides, keptTraces, eventBudgetPerReplicate }: JobInputs) =>
+    JSON.stringify([
+      horizon,
+      gridIntervals,
+      method,
+      seed,
+      sortedEntries(overrides.parameters),
+      sortedEntries(overrides.initialCounts),
+      keptTraces,
+      eventBudgetPerReplicate,
+    ]);
+  return shape(a) === shape(b);
+}
+
+/** The entries of a record by name, so that the order in which they were written does not matter. */
+export const sortedEntries = (record: Record<string, number> | undefined): [string, number][] =>
+  Object.entries(record ?? {}).sort(([a], [b]) => (a < b ? -1 : a > b ? 1 : 0));

@@ -1,0 +1,58 @@
+/** Cuts a run of replicates into batches: contiguous, of about a second's work each, bounded in number. */
+import { limits } from '../limits.ts';
+
+export interface PlannedBatch {
+  ordinal: number;
+  point: number;
+  firstReplicate: number;
+  replicateCount: number;
+}
+
+/** Work units that a worker does in about a second on a common machine; one event is one unit. */
+export const unitsPerBatch = 20_000_000;
+/** Below this a batch is mostly overhead. */
+const unitsPerBatchLeast = 1_000_000;
+/** A job smaller than that many full batches is cut into about this many, so that threads share it and progress shows. */
+const batchesWished = 8;
+/** Writing one count at one grid time costs about as much as this many events. */
+const unitsPerCell = 0.5;
+const unitsPerReplicate = 20;
+/** Keeps a batch's list of events per replicate, and its file, small. */
+export const replicatesPerBatch = 100_000;
+
+/** Work units of one replicate: its events and what recording it on the grid costs. */
+export const unitsOf = (options: { eventsPerReplicate: number; gridPoints: number; observables: number }): number =>
+  options.eventsPerReplicate + unitsPerCell * options.gridPoints * options.observables + unitsPerReplicate;
+
+/**
+ * Batches of replicates firstReplicate … firstReplicate + replicates − 1 of point 0, in order and without gaps.
+ * The plan depends on expected events, never on a clock, and shapes no result: any other cut gives the same ones.
+ */
+export function planBatches(options: {
+  firstReplicate: number;
+  replicates: number;
+  /** Expected events of one replicate. */
+  eventsPerReplicate: number;
+  gridPoints: number;
+  observables: number;
+  firstOrdinal?: number;
+  /** Default `unitsPerBatch`; tests use others. */
+  unitsPerBatchMost?: number;
+}): PlannedBatch[] {
+  const { firstReplicate, replicates, firstOrdinal = 0 } = options;
+  const most = options.unitsPerBatchMost ?? unitsPerBatch;
+  const units = unitsOf(options);
+  const target = Math.min(most, Math.max(Math.min(unitsPerBatchLeast, most), (units * replicates) / batchesWished));
+  const wished = Math.min(replicatesPerBatch, Math.max(1, Math.floor(target / units)));
+  // Only jobs beyond limits.batchesPerJob full batches get longer ones.
+  const size = Math.max(wished, Math.ceil(replicates / limits.batchesPerJob));
+  const batches: PlannedBatch[] = [];
+  for (let start = 0; start < replicates; start += size)
+    batches.push({
+      ordinal: firstOrdinal + batches.length,
+      point: 0,
+      firstReplicate: firstReplicate + start,
+      replicateCount: Math.min(size, replicates - start),
+    });
+  return batches;
+}

@@ -1,0 +1,77 @@
+/** Checks what a contract cannot: a quote request against the model version, the limits and what is built so far. */
+import type { z } from 'zod';
+import type { quoteRequest } from '@/contracts/jobs.ts';
+import { limits } from '@/domain/limits.ts';
+import type { NetworkDocument } from '@/domain/network/document.ts';
+import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
+import { resolveNetwork } from '@/domain/network/resolve-network.ts';
+import { accept, refuse, type InputFault, type Result } from '@/domain/refusals.ts';
+
+export type QuoteRequest = z.output<typeof quoteRequest>;
+
+/** The network with the request's overrides, or every fault found. */
+export function checkQuoteRequest(request: QuoteRequest, document: NetworkDocument): Result<ResolvedNetwork> {
+  const resolved = resolveNetwork(document, request.overrides ?? {});
+  if (!resolved.ok) {
+    const ofOverrides = resolved.problems.filter(({ path }) => path.startsWith('overrides.'));
+    return ofOverrides.length > 0
+      ? refuse('invalid_input', 'Some overrides do not fit the model.', { errors: ofOverrides.map(fault) })
+      : refuse('invalid_network', 'This version of the model cannot run.', { errors: resolved.problems.map(fault) });
+  }
+  const faults = [...notBuilt(request), ...tooLarge(request, resolved.network)];
+  return faults.length > 0
+    ? refuse('invalid_input', faults.map(({ message }) => message).join(' '), { errors: faults })
+    : accept(resolved.network);
+}
+
+const fault = ({ path, code, message }: InputFault): InputFault => ({ path, code, message });
+
+function notBuilt({ method, sweep, stopping }: QuoteRequest): InputFault[] {
+  const faults: InputFault[] = [];
+  if (method === 'leap')
+    faults.push({
+      path: 'method',
+      code: 'not_available',
+      message: 'Tau-leaping is not available yet; use the exact method.',
+    });
+  if (sweep !== undefined)
+    faults.push({ path: 'sweep', code: 'not_available', message: 'Sweeps are not available yet; quote each point.' });
+  if (stopping !== undefined && stopping.kind !== 'replicates')
+    faults.push({
+      path: 'stopping.kind',
+      code: 'not_available',
+      message:
+        'Only a fixed number of replicates is available yet: leave `stopping` out or give { "kind": "replicates" }.',
+    });
+  return faults;
+}
+
+function tooLarge(request: QuoteRequest, network: ResolvedNetwork): InputFault[] {
+  const cells = (request.gridIntervals + 1) * network.observables.length;
+  if (cells > limits.resultCells)
+    return [
+      {
+        path: 'gridIntervals',
+        code: 'too_many_cells',
+        message:
+          `${request.gridIntervals + 1} grid times of ${network.observables.length} observables are ` +
+          `${cells.toLocaleString('en')} cells; at most ${limits.resultCells.toLocaleString('en')} are kept. Use fewer grid intervals.`,
+      },
+    ];
+  const traceCells = cells * Math.min(request.outputs?.keptTraces ?? 0, request.replicates);
+  if (traceCells > limits.resultCells)
+    return [
+      {
+        path: 'outputs.keptTraces',
+        code: 'too_many_cells',
+        message: `So many whole traces are ${traceCells.toLocaleString('en')} cells; at most ${limits.resultCells.toLocaleString('en')} are kept. Keep fewer.`,
+      },
+    ];
+  return [];
+}
+
+/** Traces kept when the request does not say: 20, or fewer where the grid is large. */
+export function defaultKeptTraces(request: QuoteRequest, network: ResolvedNetwork): number {
+  const cells = (request.gridIntervals + 1) * network.observables.length;
+  return Math.max(0, Math.min(20, Math.floor(limits.resultCells / cells)));
+}

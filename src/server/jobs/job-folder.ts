@@ -1,0 +1,60 @@
+/** Where the files of a job lie, and how they are written so that a crash leaves the old file or the new one. */
+import { createHash } from 'node:crypto';
+import { mkdir, open, readdir, rename, rm } from 'node:fs/promises';
+import path from 'node:path';
+import { env } from '../env.ts';
+
+const unfinished = '.tmp';
+
+export const jobsFolder = (): string => path.join(env().BURETTE_DATA_DIR, 'jobs');
+export const jobFolder = (jobId: string): string => path.join(jobsFolder(), jobId);
+export const jobFile = (jobId: string, name: string): string => path.join(jobFolder(jobId), name);
+
+export const batchFileName = (ordinal: number): string => path.join('batches', `${ordinal}.batch`);
+/** The boundary batch run again, shortened to what the cap allows. */
+export const cutBatchFileName = (ordinal: number): string => path.join('batches', `${ordinal}-cut.batch`);
+/** The whole delivered prefix as one batch. */
+export const mergedFileName = (revision: number): string => `prefix-${revision}.batch`;
+export const archiveFileName = (revision: number): string => `archive-${revision}.zip`;
+
+export const sha256Hex = (bytes: Uint8Array | string): string => createHash('sha256').update(bytes).digest('hex');
+
+/** Writes under a temporary name, flushes, renames, flushes the folder: after it returns, a power cut loses nothing. */
+export async function writeDurably(file: string, write: (temporary: string) => Promise<void>): Promise<void> {
+  const temporary = file + unfinished;
+  await mkdir(path.dirname(file), { recursive: true });
+  await write(temporary);
+  await flush(temporary);
+  await rename(temporary, file);
+  await flush(path.dirname(file));
+}
+
+async function flush(fileOrFolder: string): Promise<void> {
+  const handle = await open(fileOrFolder, 'r');
+  try {
+    await handle.sync();
+  } finally {
+    await handle.close();
+  }
+}
+
+/** Removes what a crash left half written. Returns how many files went. */
+export async function sweepUnfinishedFiles(): Promise<number> {
+  let swept = 0;
+  const entries = await readdir(jobsFolder(), { recursive: true, withFileTypes: true }).catch(() => []);
+  for (const entry of entries) {
+    if (!entry.isFile() || !entry.name.endsWith(unfinished)) continue;
+    await rm(path.join(entry.parentPath, entry.name), { force: true });
+    swept++;
+  }
+  return swept;
+}
+
+/** Removes batch files and older revisions once a revision stands. */
+export async function removeOutdatedFiles(jobId: string, revision: number): Promise<void> {
+  await rm(jobFile(jobId, 'batches'), { recursive: true, force: true });
+  const kept = new Set([mergedFileName(revision), archiveFileName(revision)]);
+  const names = await readdir(jobFolder(jobId)).catch(() => []);
+  for (const name of names)
+    if (/^(prefix|archive)-\d+\./.test(name) && !kept.has(name)) await rm(jobFile(jobId, name), { force: true });
+}

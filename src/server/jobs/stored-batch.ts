@@ -1,0 +1,29 @@
+/** Gives the content of a batch that is in: from its file, or computed again when the file was lost or damaged. */
+import type { Batch, Job } from '@db/models/jobs.ts';
+import { log } from '../log.ts';
+import { batchTask, networkOf } from './batch-task.ts';
+import { loadBatch, storeBatch, type BatchContent } from './batch-file.ts';
+import { executor } from './executor.ts';
+
+/** The complete replicates of the batch; never charged again, whatever had to be computed again. */
+export async function storedBatch(job: Job, batch: Batch): Promise<BatchContent> {
+  const name = batch.file;
+  if (!name) throw new Error(`Batch ${batch.id} is ${batch.state} and has no file.`);
+  const stored = await loadBatch({ jobId: job.id, name, sha256: batch.fileSha256 ?? null });
+  if (stored) return stored;
+  log().warn({ jobId: job.id, batchId: batch.id }, 'batch file lost or damaged; computing it again');
+  const content = await executor().run(
+    batchTask({
+      job,
+      network: await networkOf(job),
+      point: batch.point,
+      firstReplicate: batch.firstReplicate,
+      replicateCount: batch.completeReplicates,
+    }),
+  );
+  const events = content.eventsPerReplicate.reduce((sum, value) => sum + value, 0);
+  if (content.replicateCount !== batch.completeReplicates || events !== batch.events)
+    throw new Error(`Batch ${batch.id} came out differently when computed again.`);
+  await storeBatch({ jobId: job.id, name, content: { ...content, failure: batch.failure ?? null } });
+  return content;
+}
