@@ -45,10 +45,10 @@ export async function startFakes({ port, publicUrl, dataDir }) {
     env.STRIPE_WEBHOOK_SECRET = process.env.STRIPE_WEBHOOK_SECRET ?? 'whsec_local_fake_only';
     children.push(
       await startFake('payment', {
-        PAYMENT_FAKE_PORT: String(paymentPort),
-        PAYMENT_FAKE_STATE: path.join(dataDir, 'payment-fake.json'),
-        PAYMENT_FAKE_WEBHOOK_URL: `${publicUrl}/api/v1/webhooks/stripe`,
-        STRIPE_WEBHOOK_SECRET: env.STRIPE_WEBHOOK_SECRET,
+        PORT: String(paymentPort),
+        STATE_FILE: path.join(dataDir, 'payment-fake.json'),
+        WEBHOOK_URL: `${publicUrl}/api/v1/webhooks/stripe`,
+        WEBHOOK_SECRET: env.STRIPE_WEBHOOK_SECRET,
       }),
     );
   }
