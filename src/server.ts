@@ -5,6 +5,7 @@ import { createExports as createNodeExports } from '@astrojs/node/server.js';
 import { bootServer } from './server/boot.ts';
 import { env } from './server/env.ts';
 import { closeOpenStreams } from './server/http/open-streams.ts';
+import { trustForwardedAddress } from './server/http/trust-forwarded-address.ts';
 import { log } from './server/log.ts';
 
 type NodeOptions = Parameters<typeof createNodeExports>[1];
@@ -19,10 +20,14 @@ export function start(manifest: SSRManifest, options: NodeOptions): void {
 }
 
 async function serve(manifest: SSRManifest, options: NodeOptions): Promise<void> {
-  const { HOST, PORT, PUBLIC_URL } = env();
+  const { HOST, PORT, PUBLIC_URL, TRUST_PROXY } = env();
   const shutDown = await bootServer();
   const { handler } = createNodeExports(manifest, { ...options, mode: 'standalone' });
-  const server = http.createServer(handler as RequestListener);
+  const answer = handler as RequestListener;
+  const server = http.createServer((request, response) => {
+    trustForwardedAddress(request.headers, { trustProxy: TRUST_PROXY });
+    answer(request, response);
+  });
   await new Promise<void>((resolve, reject) => {
     server.once('error', reject);
     server.listen(PORT, HOST, resolve);

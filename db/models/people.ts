@@ -7,7 +7,7 @@ import {
   type InferCreationAttributes,
   type Sequelize,
 } from 'sequelize';
-import type { Role } from '@/domain/teams/permissions.ts';
+import type { Role, TokenScope } from '@/domain/teams/permissions.ts';
 import { column } from './columns.ts';
 
 export class User extends Model<InferAttributes<User>, InferCreationAttributes<User>> {
@@ -79,7 +79,7 @@ export class ApiToken extends Model<InferAttributes<ApiToken>, InferCreationAttr
   declare name: string;
   declare userId: string;
   declare teamId: string;
-  declare scopes: string[];
+  declare scopes: TokenScope[];
   declare createdAt: string;
   declare expiresAt: CreationOptional<string | null>;
   declare lastUsedAt: CreationOptional<string | null>;

@@ -1,8 +1,9 @@
 /** Makes an account whose address has been proved; wishes for the same address that are still open end. */
 import { inWriteTransaction } from '@db/in-write-transaction.ts';
-import { OneTimeLink, User } from '@db/models/people.ts';
+import { User } from '@db/models/people.ts';
 import { nowText } from '../clock.ts';
 import { newId } from '../ids.ts';
+import { withdrawLinks } from './one-time-links.ts';
 
 /** `passwordHash` comes from `hashPassword`, made before the transaction. A taken address throws: look first. */
 export async function createPerson(options: {
@@ -14,10 +15,7 @@ export async function createPerson(options: {
   const { email, name, passwordHash, operator = false } = options;
   const now = nowText();
   return inWriteTransaction(async () => {
-    await OneTimeLink.update(
-      { revokedAt: now, details: null },
-      { where: { email, purpose: 'verify', usedAt: null, revokedAt: null } },
-    );
+    await withdrawLinks({ purpose: 'verify', email });
     return User.create({
       id: newId('user'),
       email,

@@ -6,11 +6,20 @@ import { nowText } from '../clock.ts';
 import { newId } from '../ids.ts';
 import { addMember } from './add-member.ts';
 
-export async function createTeam(options: { name: string; ownerUserId: string; timeZone?: string }): Promise<Team> {
-  const { name, ownerUserId, timeZone = 'UTC' } = options;
+export interface CreateTeamOptions {
+  name: string;
+  ownerUserId: string;
+  /** IANA name; default UTC. */
+  timeZone?: string;
+  /** What the slug is made from; default the name. A taken slug gets a number. */
+  slugFrom?: string;
+}
+
+export async function createTeam(options: CreateTeamOptions): Promise<Team> {
+  const { name, ownerUserId, timeZone = 'UTC', slugFrom = name } = options;
   return inWriteTransaction(async () => {
     const taken = new Set((await Team.findAll({ attributes: ['slug'] })).map(({ slug }) => slug));
-    const slug = teamSlug(name, (wanted) => taken.has(wanted));
+    const slug = teamSlug(slugFrom, (wanted) => taken.has(wanted));
     const team = await Team.create({ id: newId('team'), slug, name, timeZone, createdAt: nowText() });
     await addMember({ teamId: team.id, userId: ownerUserId, roles: ['owner'] });
     return team;
