@@ -9,6 +9,7 @@
 import type { AstroGlobal } from 'astro';
 import { paths } from '@/paths.ts';
 import { mayDo, type Permission, type Role } from '@/domain/teams/permissions.ts';
+import { readAccount } from '@/server/auth/read-account.ts';
 import { readBalance } from '@/server/ledger/read-balance.ts';
 import { authorise } from '@/server/teams/authorise.ts';
 
@@ -28,7 +29,8 @@ export async function openTeamPage(page: AstroGlobal, permission: Permission): P
   const slug = page.params['team'] ?? '';
   const authorised = await authorise({ actor, team: slug, permission });
   if (!authorised.ok) return { refused: await refusedPage(page, authorised.code) };
-  if (!person) return { refused: await refusedPage(page, 'not_signed_in') };
+  const account = await readAccount({ actor });
+  if (!person || !account.ok) return { refused: await refusedPage(page, 'not_signed_in') };
   const { team, roles } = authorised.value;
   const balance = mayDo(roles, 'credits:read') ? await readBalance(team.id) : null;
   return {
@@ -40,7 +42,7 @@ export async function openTeamPage(page: AstroGlobal, permission: Permission): P
         suspendedAt: team.suspendedAt,
         suspensionReason: team.suspensionReason,
       },
-      teams: [{ slug: team.slug, name: team.name }],
+      teams: account.value.teams,
       person: { name: person.name, email: person.email },
       roles,
       may: (wanted) => mayDo(roles, wanted),

@@ -41,7 +41,9 @@ function Rail({ team, availableMicrocredits, heldMicrocredits, shareLeftMicrocre
           <b className="block text-base font-bold">{available}</b>
           <span className="block text-[11px] text-soft">credits free</span>
         </a>
-        <GraduatedBar {...levels} />
+        <div className="min-w-0 grow">
+          <GraduatedBar {...levels} />
+        </div>
       </div>
       <div className="sticky top-0 hidden h-screen min-h-[30rem] flex-col bg-glass pb-14 lg:flex">
         <a href={paths.credits(team)} className="block px-4 pb-5 pt-3 leading-tight">

@@ -1,0 +1,44 @@
+/** What waits for the person on the overview: ended badly, running dry, to be paid or reviewed. Read from services only. */
+import type { CreditsAnswer } from '@/contracts/ledger.ts';
+import type { JobDocument } from '@/contracts/jobs.ts';
+import type { Actor } from '@/domain/teams/actor.ts';
+import { creditsText } from '@/components/ui/amounts-text.ts';
+import { paths } from '@/paths.ts';
+import type { TeamShell } from './open-team-page.ts';
+
+export interface Need {
+  words: string;
+  href: string;
+  action: string;
+}
+
+/** Below this much, a team that has bought or spent anything is told. */
+const lowMicrocredits = 5_000_000;
+
+export async function whatNeedsAttention(options: {
+  actor: Actor;
+  shell: TeamShell;
+  endedJobs: readonly JobDocument[];
+  credits: CreditsAnswer;
+}): Promise<Need[]> {
+  const { shell, endedJobs, credits } = options;
+  const team = shell.team.slug;
+  const needs: Need[] = [];
+  for (const job of endedJobs) {
+    if (job.state === 'stopped_at_cap')
+      needs.push({
+        words: `“${job.name}” stopped at its cap with ${job.replicatesDone.toLocaleString('en-GB')} of ${job.replicatesPlanned.toLocaleString('en-GB')} replicates.`,
+        href: paths.job(team, job.id),
+        action: 'Look at it',
+      });
+    if (job.state === 'failed')
+      needs.push({ words: `“${job.name}” failed.`, href: paths.job(team, job.id), action: 'See why' });
+  }
+  if (credits.availableMicrocredits < lowMicrocredits && credits.spentMicrocredits > 0)
+    needs.push({
+      words: `${creditsText(credits.availableMicrocredits, 'down')} credits are left.`,
+      href: `${paths.credits(team)}${shell.may('billing:write') ? '#buy' : ''}`,
+      action: shell.may('billing:write') ? 'Buy credits' : 'See credits',
+    });
+  return needs;
+}
