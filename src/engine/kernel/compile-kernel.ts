@@ -6,6 +6,8 @@ export interface CompiledKernel {
   memory: WebAssembly.Memory;
   /** Goes on for at most so many firings; answers a `status` of memory-layout.ts. */
   run(firings: number): number;
+  /** Whose task stands in the memory: whoever runs next writes its own first. */
+  owner: unknown;
 }
 
 const keptKernels = 16;
@@ -15,7 +17,7 @@ async function compile(build: () => ModuleBuilder): Promise<CompiledKernel> {
   const module = await WebAssembly.compile(encodeModule(build()));
   const memory = new WebAssembly.Memory({ initial: 1 });
   const instance = await WebAssembly.instantiate(module, { env: { memory } });
-  return { memory, run: instance.exports.run as CompiledKernel['run'] };
+  return { memory, run: instance.exports.run as CompiledKernel['run'], owner: null };
 }
 
 /** `key` names the code that `build` makes. A memory may be used by one synchronous run at a time. */

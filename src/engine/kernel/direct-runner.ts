@@ -32,13 +32,21 @@ class DirectRunner implements GroupRunner {
     const { prepared, gridTimes, slots } = task;
     const structure = structureLayout(prepared);
     this.#layout = taskLayout(prepared, structure.end, gridTimes.length - 1, slots);
-    ensureBytes(kernel.memory, this.#layout.end);
     this.#view = new DataView(kernel.memory.buffer);
-    writeTask(kernel.memory, task, this.#layout);
+  }
+
+  /** Points that share a kernel take turns between groups; the one whose turn it is writes its task again. */
+  #takeMemory(): void {
+    if (this.#kernel.owner === this) return;
+    ensureBytes(this.#kernel.memory, this.#layout.end);
+    this.#view = new DataView(this.#kernel.memory.buffer);
+    writeTask(this.#kernel.memory, this.#task, this.#layout);
+    this.#kernel.owner = this;
   }
 
   run(first: number, count: number, allowance: number): GroupOutcome {
     const { eventLimit } = this.#task;
+    this.#takeMemory();
     this.#view.setBigInt64(control.firstReplicate, BigInt(first), true);
     this.#setWord(control.slot, 0);
     this.#setWord(control.active, 0);

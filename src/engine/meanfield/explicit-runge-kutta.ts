@@ -15,15 +15,7 @@ export const stageWeights = [
 ] as const;
 
 /** Result of order 5 less result of order 4. */
-export const errorWeights = [
-  71 / 57600,
-  0,
-  -71 / 16695,
-  71 / 1920,
-  -17253 / 339200,
-  22 / 525,
-  -1 / 40,
-] as const;
+export const errorWeights = [71 / 57600, 0, -71 / 16695, 71 / 1920, -17253 / 339200, 22 / 525, -1 / 40] as const;
 
 /** The term of order 4 in the continuous extension (Hairer, Nørsett & Wanner I, 2nd ed. 1993, section II.6; from memory). */
 export const extension = [

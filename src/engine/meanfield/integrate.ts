@@ -56,8 +56,8 @@ export function integrate(interval: Interval): IntegrationFailure | null {
     const isLast = time + step * stretch >= to;
     if (isLast) step = to - time;
     if (time + step / 8 === time) return tooSmall(time, trouble);
-    if (budget.steps < 1) return { reason: 'step_budget', time };
-    if (budget.operations < method.operationsPerAttempt) return { reason: 'work_budget', time };
+    if (!(budget.steps >= 1)) return { reason: 'step_budget', time };
+    if (!(budget.operations >= method.operationsPerAttempt)) return { reason: 'work_budget', time };
     budget.steps -= 1;
     budget.operations -= method.operationsPerAttempt;
 

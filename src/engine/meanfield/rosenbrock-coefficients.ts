@@ -20,7 +20,9 @@ export const stageWeights = [
   [1.221224509226641, 6.019134481288629, 12.53708332932087, -0.687886036105895, 1],
 ] as const;
 
-export const resultWeights = [1.221224509226641, 6.019134481288629, 12.53708332932087, -0.687886036105895, 1, 1] as const;
+export const resultWeights = [
+  1.221224509226641, 6.019134481288629, 12.53708332932087, -0.687886036105895, 1, 1,
+] as const;
 
 /** Right-hand side of stage i = f(its state) + Σ c[i][j]·U[j]/step. */
 export const couplings = [

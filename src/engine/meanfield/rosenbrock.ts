@@ -63,7 +63,9 @@ export class RosenbrockMethod implements StepMethod {
       const increment = this.#increments[stage]!;
       const failed = this.#evaluateStage(stage, increment);
       if (failed >= 0) return { kind: 'rate_not_finite', reaction: failed };
-      couplings[stage]!.forEach((coupling, earlier) => addMultiple(increment, coupling / step, this.#increments[earlier]!));
+      couplings[stage]!.forEach((coupling, earlier) =>
+        addMultiple(increment, coupling / step, this.#increments[earlier]!),
+      );
       this.#factors.solve(increment);
     }
     this.#combine(resultWeights, this.candidate);

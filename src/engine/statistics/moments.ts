@@ -42,16 +42,11 @@ export function momentsOf(n: number, sums: PowerSums, scale = 0n): Moments {
   /** n² times the second and n⁴ times the fourth central moment. */
   const second = count * s2 - s1 * s1;
   const fourth = count ** 3n * s4 - 4n * count * count * s1 * s3 + 6n * count * s1 * s1 * s2 - 3n * s1 ** 4n;
-  const sd = Math.sqrt(ratio(second, count * (count - 1n))) * scaleDown(unit);
+  const variance = ratio(second, count * (count - 1n), 2 * unit);
+  const sd = Math.sqrt(variance);
   // μ₄ − s⁴ (n − 3)/(n − 1), over the common denominator n⁴ (n − 1)³; s² = second / (n (n − 1)).
   const numerator = fourth * (count - 1n) ** 3n - second * second * count * count * (count - 3n);
-  const varianceOfVariance = ratio(numerator, count ** 5n * (count - 1n) ** 3n);
-  const sdStandardError =
-    second === 0n
-      ? 0
-      : (Math.sqrt(Math.max(0, varianceOfVariance)) / (2 * Math.sqrt(ratio(second, count * (count - 1n))))) *
-        scaleDown(unit);
+  const varianceOfVariance = ratio(numerator, count ** 5n * (count - 1n) ** 3n, 4 * unit);
+  const sdStandardError = second === 0n ? 0 : Math.sqrt(Math.max(0, varianceOfVariance)) / (2 * sd);
   return { mean, sd, meanStandardError: sd / Math.sqrt(n), sdStandardError };
 }
-
-const scaleDown = (bits: number): number => 2 ** -bits;

@@ -1,7 +1,5 @@
 /** How many replicates a wanted precision needs: normal approximation at 95 %, from the spread seen so far. */
-
-/** The trade's rounded 95 % point, so that the numbers agree with tables. */
-const z = 1.96;
+import { normal95 as z } from './wilson.ts';
 
 /** For a mean to ± `relativeHalfWidth` · mean, from the coefficient of variation sd/mean: ⌈(z · cv / ε)²⌉. */
 export const replicatesForMean = (coefficientOfVariation: number, relativeHalfWidth: number): number =>
