@@ -8,7 +8,7 @@ const windows = {
   /** Wrong passwords. The account-wide one spares addresses where the person is already at home (sign-in.ts). */
   signInByAddress: { attempts: 40, seconds: 15 * 60 },
   signInByAddressAndAccount: { attempts: 10, seconds: 15 * 60 },
-  signInByAccount: { attempts: 60, seconds: 60 * 60 },
+  signInByAccount: { attempts: 30, seconds: 60 * 60 },
   /** Acts that send a mail to somebody who has not proved to be the asker. */
   mailByAddress: { attempts: 40, seconds: 60 * 60 },
   signUpMailByRecipient: { attempts: 5, seconds: 60 * 60 },
