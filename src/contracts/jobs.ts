@@ -28,7 +28,7 @@ export const quoteRequest = z.strictObject({
   modelVersionId: id,
   replicates: z.number().int().min(1, 'At least one replicate.').max(limits.replicatesPerJob),
   /** Simulated time, in the model's unit of time. */
-  horizon: z.number().positive('A horizon is above 0.'),
+  horizon: z.number().positive('A horizon is above 0.').max(1e250),
   gridIntervals: z.number().int().min(1).max(limits.gridIntervals),
   method: z.enum(['exact', 'leap']),
   epsilon: z.number().positive().max(0.5).optional(),

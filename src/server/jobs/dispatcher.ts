@@ -24,7 +24,7 @@ import { storedBatch } from './stored-batch.ts';
 
 /** A batch lost that often ends its job: the prefix is delivered and the failure is called ours. */
 const attemptsMost = 5;
-const retryMs = (attempts: number): number => Math.min(30_000, 100 * 4 ** attempts);
+const defaultRetryMs = (attempts: number): number => Math.min(30_000, 100 * 4 ** attempts);
 
 export class Dispatcher {
   readonly #jobs = new Map<string, OpenJob>();
@@ -33,9 +33,12 @@ export class Dispatcher {
   readonly #running: PQueue;
   readonly #timers = new Set<NodeJS.Timeout>();
   readonly #stopListening: () => void;
+  readonly #retryMs: (attempts: number) => number;
   #stopped = false;
 
-  constructor() {
+  /** `retryMs`: how long to wait after so many lost attempts; tests wait less. */
+  constructor({ retryMs = defaultRetryMs }: { retryMs?: (attempts: number) => number } = {}) {
+    this.#retryMs = retryMs;
     this.#running = new PQueue({ concurrency: executor().capacity });
     this.#stopListening = onWake((jobId) => void this.#wake(jobId));
   }
@@ -132,7 +135,7 @@ export class Dispatcher {
         await this.#follow(open, await step());
       } catch (error) {
         log().error({ err: error, jobId: open.jobId, attempt }, 'settling failed; trying again');
-        if (!this.#stopped) this.#later(retryMs(Math.min(attempt, 4)), () => this.#settleTurn(open, step, attempt + 1));
+        if (!this.#stopped) this.#later(this.#retryMs(Math.min(attempt, 4)), () => this.#settleTurn(open, step, attempt + 1));
       }
     });
   }
@@ -184,7 +187,7 @@ export class Dispatcher {
     log().warn({ err: error, jobId: open.jobId, batchId: batch.id, attempts }, 'batch lost');
     await inWriteTransaction(() => Batch.update({ attempts }, { where: { id: batch.id } }));
     if (attempts < attemptsMost) {
-      this.#later(retryMs(attempts), () => {
+      this.#later(this.#retryMs(attempts), () => {
         if (open.ending) return;
         open.waiting.unshift({ ...batch, attempts });
         open.waiting.sort((a, b) => a.ordinal - b.ordinal);
