@@ -39,7 +39,11 @@ for (const width of one ? [1440] : [1440, 390])
       const wide = await page.evaluate(() => document.documentElement.scrollWidth - innerWidth);
       if (wide > 0) console.log(`${address} ${width}: ${wide} px too wide`);
       const name = address.replace(/[^\w-]+/g, '_').replace(/^_|_$/g, '') || 'home';
-      await page.screenshot({ path: path.join(folder, `${name}-${width}-${colorScheme}.png`), fullPage: true });
+      await page.screenshot({
+        path: path.join(folder, `${name}-${width}-${colorScheme}.png`),
+        fullPage: true,
+        caret: 'initial',
+      });
       await page.close();
     }
     await context.close();

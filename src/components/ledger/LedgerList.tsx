@@ -97,27 +97,32 @@ function LedgerTable({ team, timeZone, entries }: { team: string; timeZone: stri
         <caption className="sr-only">Ledger entries, newest first, in credits</caption>
         <thead>
           <tr>
-            <th scope="col">When</th>
+            <th scope="col" className="hidden sm:table-cell">
+              When
+            </th>
             <th scope="col">What</th>
             <th scope="col" className="figure">
               Available
             </th>
-            <th scope="col" className="figure">
+            <th scope="col" className="figure hidden sm:table-cell">
               Held
             </th>
             <th scope="col" className="figure">
-              Available after
+              After
             </th>
           </tr>
         </thead>
         <tbody>
           {entries.map((entry) => (
             <tr key={entry.id}>
-              <td>
+              <td className="hidden sm:table-cell">
                 <Moment time={entry.occurredAt} timeZone={timeZone} />
                 <span className="block text-xs text-soft">no. {entry.sequence}</span>
               </td>
-              <td className="min-w-[13rem]">
+              <td className="sm:min-w-[13rem]">
+                <span className="block text-xs text-soft sm:hidden">
+                  <Moment time={entry.occurredAt} timeZone={timeZone} />
+                </span>
                 <span className="font-medium">{ledgerKindWords[entry.kind]}</span>
                 <span className="block text-soft [overflow-wrap:anywhere]">
                   {entry.description}
@@ -133,7 +138,7 @@ function LedgerTable({ team, timeZone, entries }: { team: string; timeZone: stri
                 </span>
               </td>
               <td className="figure">{signed(entry.availableChangeMicrocredits)}</td>
-              <td className="figure">{signed(entry.heldChangeMicrocredits)}</td>
+              <td className="figure hidden sm:table-cell">{signed(entry.heldChangeMicrocredits)}</td>
               <td className="figure font-medium">{exactCreditsText(entry.availableMicrocredits)}</td>
             </tr>
           ))}
