@@ -69,7 +69,10 @@ export const arbitraryNetwork: fc.Arbitrary<NetworkDocument> = fc.record({
   species: fc.tuple(...speciesIds.map(species)),
   parameters: fc.tuple(
     ...[...parameterIds, 'doubled', 'sum'].map((id) =>
-      fc.record({ id: fc.constant(id), value: fc.double({ min: 0, max: 100, noNaN: true }).map((value) => value + 0) }),
+      fc.record({
+        id: fc.constant(id),
+        value: fc.double({ min: 0, max: 100, noNaN: true }).map((value) => (value < 1e-9 ? 0 : value)),
+      }),
     ),
   ),
   assignmentRules: fc.constant([
