@@ -19,7 +19,9 @@ export const paths = {
   newModel: (team: string) => `/t/${team}/models/new`,
   model: (team: string, model: string) => `/t/${team}/models/${model}`,
   jobs: (team: string) => `/t/${team}/jobs`,
-  newJob: (team: string) => `/t/${team}/jobs/new`,
+  /** `from` is a query: `{ model, version }` to begin with a version, `{ from: jobId, again: '1' }` to repeat a job. */
+  newJob: (team: string, from?: Record<string, string>) =>
+    `/t/${team}/jobs/new${from ? `?${new URLSearchParams(from)}` : ''}`,
   job: (team: string, job: string) => `/t/${team}/jobs/${job}`,
   credits: (team: string) => `/t/${team}/credits`,
   invoices: (team: string) => `/t/${team}/billing/invoices`,

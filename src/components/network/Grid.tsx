@@ -168,7 +168,7 @@ export function Grid({ grid, columns, rows, footKey, problems, readOnly, goTo, c
               const row = shown[index]!;
               const atFoot = index === rows.length;
               return (
-                <tr key={row.key} className={row.key === current && !atFoot ? 'bg-glass/50' : ''}>
+                <tr key={row.key} className="focus-within:bg-glass/50">
                   <td className="select-none border-b border-rule pr-1.5 text-right text-xs text-soft">
                     {atFoot ? <span aria-hidden="true">+</span> : index + 1}
                   </td>
