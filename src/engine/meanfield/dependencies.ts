@@ -32,4 +32,4 @@ export class Dependencies {
 }
 
 /** Operations of evaluating an expression, roughly. */
-export const operationsOf = (expression: Expression): number => 2 * leavesOf(expression).length;
+export const operationsOf = (expression: Expression): number => 8 * leavesOf(expression).length;

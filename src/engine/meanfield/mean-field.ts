@@ -21,9 +21,9 @@ export interface MeanFieldOptions {
   absoluteTolerance?: number;
   /** Changes at set times, simultaneous ones in the order given. Those after the horizon never happen. */
   timedChanges?: TimedChange[];
-  /** Most steps tried. Default 100,000. */
+  /** Most steps tried, from 1 up. Default 100,000. */
   stepBudget?: number;
-  /** Most operations spent, roughly. Default 10¹⁰, some seconds to half a minute on a common machine. */
+  /** Most operations spent, roughly; above 0. Default 3·10⁹, a few seconds on a common machine. */
   operationBudget?: number;
 }
 
@@ -118,6 +118,7 @@ function problemWith(options: MeanFieldOptions): string | null {
   if (!(absoluteTolerance > 0 && Number.isFinite(absoluteTolerance))) {
     return 'The absolute tolerance must be a number above 0.';
   }
+  if (!((options.stepBudget ?? 1) >= 1 && (options.operationBudget ?? 1) > 0)) return 'The budgets must be above 0.';
   if ((options.timedChanges ?? []).some(({ time }) => !(time >= 0))) return 'A change must have a time from 0 up.';
   return null;
 }
@@ -153,7 +154,7 @@ class Run {
     this.#method = method;
     this.#tolerances = { relative: options.relativeTolerance ?? 1e-6, absolute: options.absoluteTolerance ?? 1e-6 };
     this.#stepBudget = options.stepBudget ?? 100_000;
-    this.#budget = { steps: this.#stepBudget, operations: options.operationBudget ?? 1e10 };
+    this.#budget = { steps: this.#stepBudget, operations: options.operationBudget ?? 3e9 };
     this.#compiled = network.observables.map(({ expression }) => compileExpression(expression));
     this.observables = network.observables.map(({ id }) => ({ id, values: [] }));
     this.#state = Float64Array.from(network.species, ({ initialCount }) => initialCount);

@@ -44,7 +44,7 @@ export function massActionRate(
   let factor = 0;
   return {
     dependsOn,
-    operations: reactants.reduce((sum, { count }) => sum + 2 * count, 2),
+    operations: reactants.reduce((sum, { count }) => sum + 4 * count, 10),
     refresh(parameters) {
       factor = compiled({ counts: new Float64Array(0), parameters });
     },
