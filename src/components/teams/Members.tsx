@@ -90,7 +90,7 @@ function Lists({ team, timeZone, mayManage, ownEmail, members: first, invitation
     <div className="flex flex-col gap-10">
       {problem && <ProblemNotice problem={problem} />}
       {said && <Notice tone="done">{said}</Notice>}
-      <ul className="border-t border-ink">
+      <ul className="-mt-6">
         {members.map((member) => (
           <li
             key={member.id}

@@ -67,7 +67,7 @@ function List({ team, timeZone, scopes, suspended, initial }: TokensProps) {
           </p>
         </EmptyState>
       ) : (
-        <ul className="border-t border-ink">
+        <ul className="-mt-6">
           {live.map((token) => (
             <li
               key={token.id}

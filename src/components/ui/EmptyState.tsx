@@ -3,7 +3,7 @@ import type { ReactNode } from 'react';
 
 export function EmptyState({ title, children, action }: { title: string; children?: ReactNode; action?: ReactNode }) {
   return (
-    <div className="flex gap-6 border-y border-rule py-8 sm:gap-8">
+    <div className="flex gap-6 border-b border-rule py-6 sm:gap-8">
       <svg viewBox="0 0 30 108" className="h-28 w-8 shrink-0" fill="none" aria-hidden="true">
         <path d="M6 1v84q0 6 6 8v12h6V93q6-2 6-8V1" className="fill-panel stroke-edge" strokeWidth="1.5" />
         {Array.from({ length: 15 }, (_, mark) => (
