@@ -76,8 +76,10 @@ export async function quote(bench: Bench, more: Partial<QuoteRequest> = {}) {
   return value(await createQuote({ actor: bench.actors.modeller, team: bench.team.slug, request })).quote;
 }
 
-export async function launch(bench: Bench, more: Partial<QuoteRequest> = {}, capMicrocredits?: number) {
-  const { id } = await quote(bench, more);
+/** Under a cap of twice the upper estimate unless another is given: the quote's own would stop one job in forty. */
+export async function launch(bench: Bench, more: Partial<QuoteRequest> = {}, cap?: number) {
+  const { id, microcredits } = await quote(bench, more);
+  const capMicrocredits = cap ?? 2 * microcredits.high;
   const launched = await launchJob({
     actor: bench.actors.modeller,
     team: bench.team.slug,

@@ -135,7 +135,8 @@ export class Dispatcher {
         await this.#follow(open, await step());
       } catch (error) {
         log().error({ err: error, jobId: open.jobId, attempt }, 'settling failed; trying again');
-        if (!this.#stopped) this.#later(this.#retryMs(Math.min(attempt, 4)), () => this.#settleTurn(open, step, attempt + 1));
+        if (!this.#stopped)
+          this.#later(this.#retryMs(Math.min(attempt, 4)), () => this.#settleTurn(open, step, attempt + 1));
       }
     });
   }

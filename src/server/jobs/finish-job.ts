@@ -31,7 +31,7 @@ export async function finishJob(jobId: string): Promise<void> {
     await tellLauncher(job);
     afterCommit(() => announceJobChange(jobId));
   });
-  if (written) await removeOutdatedFiles(jobId, written.archiveRevision);
+  await removeOutdatedFiles(jobId, job.archiveRevision);
 }
 
 async function writeResults(job: Job) {

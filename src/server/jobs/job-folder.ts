@@ -4,7 +4,8 @@ import { mkdir, open, readdir, rename, rm } from 'node:fs/promises';
 import path from 'node:path';
 import { env } from '../env.ts';
 
-const unfinished = '.tmp';
+/** Ending of files that are being written. */
+export const unfinished = '.tmp';
 
 export const jobsFolder = (): string => path.join(env().BURETTE_DATA_DIR, 'jobs');
 export const jobFolder = (jobId: string): string => path.join(jobsFolder(), jobId);
@@ -36,18 +37,6 @@ async function flush(fileOrFolder: string): Promise<void> {
   } finally {
     await handle.close();
   }
-}
-
-/** Removes what a crash left half written. Returns how many files went. */
-export async function sweepUnfinishedFiles(): Promise<number> {
-  let swept = 0;
-  const entries = await readdir(jobsFolder(), { recursive: true, withFileTypes: true }).catch(() => []);
-  for (const entry of entries) {
-    if (!entry.isFile() || !entry.name.endsWith(unfinished)) continue;
-    await rm(path.join(entry.parentPath, entry.name), { force: true });
-    swept++;
-  }
-  return swept;
 }
 
 /** Removes batch files and older revisions once a revision stands. */
