@@ -15,7 +15,7 @@ import { readModel, readVersion } from '@/contracts/network.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
 import { lanes, type Lane } from '@/domain/pricing/price-book.ts';
 import { paths } from '@/paths.ts';
-import { laneWords, timeWithUnit } from './job-words.ts';
+import { laneWords, rateText, timeWithUnit } from './job-words.ts';
 import { capOf, faultsOfProblem, numberIn, quoteRequestOf, type LaunchSettings } from './launch-settings.ts';
 import { OverridesTable } from './OverridesTable.tsx';
 import { QuotePanel } from './QuotePanel.tsx';
@@ -211,7 +211,7 @@ function Form(props: LaunchFormProps) {
           choices={lanes.map((lane) => ({
             value: lane,
             label: laneWords[lane].label,
-            hint: `${laneWords[lane].hint} · ${creditsText(lanePrices[lane])} credits per million events`,
+            hint: `${laneWords[lane].hint} · ${rateText(lanePrices[lane])}`,
           }))}
           onChange={(lane) => change({ lane: lane as Lane })}
         />

@@ -9,7 +9,7 @@ import type { ProblemDocument } from '@/contracts/errors.ts';
 import type { QuoteDocument } from '@/contracts/jobs.ts';
 import { lanes } from '@/domain/pricing/price-book.ts';
 import { paths } from '@/paths.ts';
-import { laneWords } from './job-words.ts';
+import { laneWords, rateText } from './job-words.ts';
 import type { QuoteState } from './use-quote.ts';
 
 interface Props {
@@ -164,7 +164,7 @@ function QuoteFigures({ quote, dimmed, timeZone }: { quote: QuoteDocument; dimme
         </div>
         <div>
           <dt>Price</dt>
-          <dd>{creditsText(quote.microcreditsPerMillionEvents)} credits per million events</dd>
+          <dd>{rateText(quote.microcreditsPerMillionEvents)}</dd>
         </div>
         <div>
           <dt>Holds until</dt>

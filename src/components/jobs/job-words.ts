@@ -1,4 +1,5 @@
 /** Sentences about jobs, the same on every page. */
+import { creditsText, creditsUnit } from '@/components/ui/amounts-text.ts';
 import type { JobDocument } from '@/contracts/jobs.ts';
 import { countText, numberText } from '@/charts/number-text.ts';
 import type { Lane } from '@/domain/pricing/price-book.ts';
@@ -8,6 +9,10 @@ export const laneWords: Record<Lane, { label: string; hint: string }> = {
   express: { label: 'Express', hint: 'goes first, costs more' },
   overnight: { label: 'Overnight', hint: 'runs when nothing else waits, costs less' },
 };
+
+/** "1 credit per million events". */
+export const rateText = (microcreditsPerMillionEvents: number): string =>
+  `${creditsText(microcreditsPerMillionEvents)} ${creditsUnit(microcreditsPerMillionEvents)} per million events`;
 
 export const isOver = ({ state }: Pick<JobDocument, 'state'>): boolean => state !== 'queued' && state !== 'running';
 

@@ -1,0 +1,31 @@
+/** A figure's place on the page: the chart itself, and all of ECharts with it, is loaded when it comes into view. */
+import { lazy, Suspense, useEffect, useRef, useState } from 'react';
+import { Waiting } from '@/components/ui/Progress.tsx';
+import type { FigureContent } from './figure.ts';
+
+const Chart = lazy(() => import('./Chart.tsx'));
+
+export function Figure(content: FigureContent) {
+  const place = useRef<HTMLDivElement>(null);
+  const [seen, setSeen] = useState(false);
+  useEffect(() => {
+    if (place.current === null) return;
+    const observer = new IntersectionObserver(
+      (entries) => {
+        if (entries.some(({ isIntersecting }) => isIntersecting)) setSeen(true);
+      },
+      { rootMargin: '200px' },
+    );
+    observer.observe(place.current);
+    return () => observer.disconnect();
+  }, []);
+  return (
+    <div ref={place} className="min-h-[25rem]">
+      {seen && (
+        <Suspense fallback={<Waiting>Loading the figure</Waiting>}>
+          <Chart {...content} />
+        </Suspense>
+      )}
+    </div>
+  );
+}

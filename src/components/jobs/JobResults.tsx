@@ -1,0 +1,148 @@
+/** The results of a job, as far as it has come: figures and numbers, each saying from how many replicates. */
+import { keepPreviousData, useQuery } from '@tanstack/react-query';
+import { useEffect, useMemo, useState } from 'react';
+import { callApi } from '@/components/api/call-api.ts';
+import { Notice } from '@/components/ui/Notice.tsx';
+import { Waiting } from '@/components/ui/Progress.tsx';
+import { Tabs } from '@/components/ui/Tabs.tsx';
+import { countText } from '@/components/ui/amounts-text.ts';
+import { jobStatistics, jobTraces, type JobDocument } from '@/contracts/jobs.ts';
+import { DistributionTab } from './DistributionTab.tsx';
+import { isOver, resultCaution } from './job-words.ts';
+import { NumbersTab } from './NumbersTab.tsx';
+import { resultsOf } from './results-data.ts';
+import { TimeCourseTab } from './TimeCourseTab.tsx';
+import { TracesTab } from './TracesTab.tsx';
+
+const askEveryMs = 4_000;
+const tracesShown = 50;
+const tabIds = ['time-course', 'distribution', 'traces', 'numbers'] as const;
+
+interface Props {
+  team: string;
+  job: JobDocument;
+  names: Record<string, string>;
+}
+
+export function JobResults({ team, job, names }: Props) {
+  const over = isOver(job);
+  const [tab, setTab] = useInUrl('tab', 'time-course');
+  const [observable, setObservable] = useInUrl('observable', job.observables[0] ?? '');
+  const [timeIndex, setTimeIndex] = useState(job.gridIntervals);
+  const path = { team, job: job.id };
+  const enabled = job.replicatesDone > 0;
+  // A finished job's numbers do not change; a new archive revision has new ones.
+  const stage = over ? `${job.state} ${job.archive?.revision ?? 0} ${job.replicatesDone}` : 'running';
+  const statistics = useQuery({
+    queryKey: ['statistics', job.id, stage],
+    enabled,
+    placeholderData: keepPreviousData,
+    refetchInterval: over ? false : askEveryMs,
+    staleTime: over ? Infinity : 0,
+    queryFn: async ({ signal }) => {
+      const called = await callApi(jobStatistics, { path, signal });
+      if (called.ok) return called.value;
+      if (called.problem.code === 'results_not_ready') return null;
+      throw new Error(called.problem.detail);
+    },
+  });
+  const traces = useQuery({
+    queryKey: ['traces', job.id, stage],
+    enabled: enabled && job.keptTraces > 0,
+    placeholderData: keepPreviousData,
+    refetchInterval: over || job.replicatesDone >= tracesShown ? false : askEveryMs,
+    staleTime: over ? Infinity : askEveryMs,
+    queryFn: async ({ signal }) => {
+      const called = await callApi(jobTraces, { path, query: { limit: tracesShown }, signal });
+      return called.ok ? called.value : null;
+    },
+  });
+  const results = useMemo(
+    () => (statistics.data ? resultsOf(statistics.data, names, job.timeUnit) : null),
+    [statistics.data, names, job.timeUnit],
+  );
+  const chosen = results?.observables.find(({ id }) => id === observable) ?? results?.observables[0];
+  const ownTraces = useMemo(() => {
+    const at = traces.data?.observables.indexOf(chosen?.id ?? '') ?? -1;
+    return at < 0 ? [] : traces.data!.traces.map(({ replicate, values }) => ({ replicate, values: values[at]! }));
+  }, [traces.data, chosen?.id]);
+
+  if (!results || !chosen) {
+    return (
+      <NothingYet
+        job={job}
+        asked={enabled}
+        problem={statistics.error?.message}
+        onRetry={() => void statistics.refetch()}
+      />
+    );
+  }
+  const shared = { results, chosen, onObservable: setObservable };
+  const time = { timeIndex: Math.min(timeIndex, results.times.length - 1), onTime: setTimeIndex };
+  const contents: Record<(typeof tabIds)[number], { label: string; content: React.ReactNode }> = {
+    'time-course': { label: 'Time course', content: <TimeCourseTab {...shared} traces={ownTraces} job={job} /> },
+    distribution: {
+      label: 'Distribution',
+      content: <DistributionTab {...shared} {...time} team={team} job={job} stage={stage} />,
+    },
+    traces: { label: 'Traces', content: <TracesTab {...shared} traces={ownTraces} job={job} /> },
+    numbers: { label: 'Numbers', content: <NumbersTab {...shared} {...time} job={job} /> },
+  };
+  return (
+    <section aria-label="Results">
+      {!over && (
+        <p className="mb-2 text-sm text-soft">
+          So far, from the first {countText(results.replicates)} replicates. The figures follow the job.
+        </p>
+      )}
+      <Tabs
+        label="Results"
+        tabs={tabIds.map((id) => ({ id, ...contents[id] }))}
+        chosen={tabIds.includes(tab as never) ? tab : 'time-course'}
+        onChoose={setTab}
+      />
+      <p className="mt-8 border-t border-rule pt-3 text-xs text-soft">{resultCaution}</p>
+    </section>
+  );
+}
+
+function NothingYet(props: { job: JobDocument; asked: boolean; problem: string | undefined; onRetry: () => void }) {
+  const { job, asked, problem, onRetry } = props;
+  if (problem) {
+    return (
+      <Notice
+        tone="failure"
+        title="The results could not be read"
+        action={
+          <button type="button" className="link" onClick={onRetry}>
+            Try again
+          </button>
+        }
+      >
+        {problem}
+      </Notice>
+    );
+  }
+  if (asked) return <Waiting>Reading the results</Waiting>;
+  if (isOver(job))
+    return <p className="text-soft">No replicate was completed, so there are no results and no charge.</p>;
+  return <p className="text-soft">Results appear here with the first complete replicates.</p>;
+}
+
+/** A choice that stands in the address, so that it survives a reload and can be sent to a colleague. */
+function useInUrl(name: string, fallback: string): [string, (value: string) => void] {
+  const [value, setValue] = useState(fallback);
+  useEffect(() => {
+    const stored = new URLSearchParams(window.location.search).get(name);
+    if (stored !== null) setValue(stored);
+  }, [name]);
+  return [
+    value,
+    (next) => {
+      setValue(next);
+      const url = new URL(window.location.href);
+      url.searchParams.set(name, next);
+      window.history.replaceState(null, '', url);
+    },
+  ];
+}
