@@ -45,8 +45,8 @@ function List({ team, timeZone, mayRequest, packs, initial }: ProFormasProps) {
       {proFormas.length === 0 ? (
         <EmptyState title="No pro-formas">
           <p>
-            A pro-forma asks you to pay a credit pack by bank transfer. It is no tax document: credits and the invoice come
-            when the transfer has arrived.
+            A pro-forma asks you to pay a credit pack by bank transfer. It is no tax document: credits and the invoice
+            come when the transfer has arrived.
           </p>
         </EmptyState>
       ) : (
