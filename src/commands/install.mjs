@@ -16,6 +16,17 @@ function nodeHeaders() {
 const canLoadSqlite = async () =>
   (await run(process.execPath, ['-e', "require('sqlite3')"], { cwd: root, capture: true })).code === 0;
 
+/** Whether somebody (a developer, with npm itself) has installed exactly the lockfile already. */
+async function isInstalled() {
+  const installed = path.join(root, 'node_modules/.package-lock.json');
+  if (!existsSync(installed)) return false;
+  const read = async (file) => JSON.parse(await readFile(file, 'utf8')).packages;
+  const [wanted, present] = [await read(path.join(root, 'package-lock.json')), await read(installed)];
+  return Object.entries(wanted).every(
+    ([name, { version, optional }]) => name === '' || optional || present[name]?.version === version,
+  );
+}
+
 async function missingTools() {
   const missing = [];
   for (const [tool, name] of [
@@ -57,9 +68,15 @@ export async function install() {
     .digest('hex');
   if (existsSync(stampFile) && (await readFile(stampFile, 'utf8')) === stamp) return;
 
-  console.log('Installing packages from the lockfile…');
   const headers = process.env.npm_config_nodedir ?? nodeHeaders();
   const env = headers ? { npm_config_nodedir: headers } : {};
+  if (!(await isInstalled())) await installPackages(env);
+  if (!(await canLoadSqlite())) await buildSqlite(env);
+  await writeFile(stampFile, stamp);
+}
+
+async function installPackages(env) {
+  console.log('Installing packages from the lockfile…');
   const { code } = await run('npm', ['ci', '--include=dev', '--no-audit', '--no-fund', '--loglevel=error'], {
     cwd: root,
     env,
@@ -70,6 +87,4 @@ export async function install() {
     const again = await run('npm', quiet, { cwd: root, env });
     if (again.code !== 0) throw new Stop('The packages could not be installed; npm says why above.');
   }
-  if (!(await canLoadSqlite())) await buildSqlite(env);
-  await writeFile(stampFile, stamp);
 }
