@@ -1,0 +1,207 @@
+/** Sets an invoice, credit note or pro-forma as a tagged PDF on one A4 page. */
+import PDFDocument from 'pdfkit';
+import { rateText, type Party } from '@/domain/billing/invoice-face.ts';
+import { dayText, moneyText } from '@/domain/billing/money-text.ts';
+import { Typeface, type FontSet, type Weight } from './pdf-text.ts';
+import type { PrintedDocument } from './printed-document.ts';
+
+const left = 62;
+const right = 533;
+const ink = '#13212B';
+const soft = '#4B5C69';
+const rule = '#CBD7DE';
+const accent = '#B8105A';
+
+interface TextOptions {
+  x: number;
+  y: number;
+  width: number;
+  size?: number;
+  weight?: Weight;
+  colour?: string;
+  align?: 'left' | 'right';
+  /** Structure type in the tagged file. */
+  tag?: 'H1' | 'H2' | 'P' | 'TH' | 'TD';
+}
+
+class Sheet {
+  readonly #document: PDFKit.PDFDocument;
+  readonly #type: Typeface;
+  readonly #root: PDFKit.PDFStructureElement;
+
+  constructor(document: PDFKit.PDFDocument, fonts: FontSet) {
+    this.#document = document;
+    this.#type = new Typeface(document, fonts);
+    this.#root = document.struct('Document');
+    document.addStructure(this.#root);
+  }
+
+  /** Writes a paragraph, wrapped to `width`; answers where the next line begins. */
+  text(text: string, options: TextOptions): number {
+    const { x, y, width, size = 9, weight = 'regular', colour = ink, align = 'left', tag = 'P' } = options;
+    const document = this.#document;
+    const lineHeight = size * 1.45;
+    let bottom = y;
+    this.#root.add(
+      document.struct(tag, {}, () => {
+        for (const line of text.split('\n').flatMap((paragraph) => this.#wrap(paragraph, width, size, weight))) {
+          const runs = this.#type.runs(line, weight);
+          let place = align === 'right' ? x + width - this.#widthOf(line, size, weight) : x;
+          for (const run of runs) {
+            document
+              .font(run.font)
+              .fontSize(size)
+              .fillColor(colour)
+              .text(run.text, place, bottom, { lineBreak: false });
+            place += document.font(run.font).fontSize(size).widthOfString(run.text);
+          }
+          bottom += lineHeight;
+        }
+      }),
+    );
+    return bottom;
+  }
+
+  line(y: number, colour = rule, width = 0.75): void {
+    this.#document.markContent('Artifact');
+    this.#document.moveTo(left, y).lineTo(right, y).lineWidth(width).strokeColor(colour).stroke();
+    this.#document.endMarkedContent();
+  }
+
+  end(): void {
+    this.#root.end();
+    this.#document.end();
+  }
+
+  #widthOf(text: string, size: number, weight: Weight): number {
+    return this.#type
+      .runs(text, weight)
+      .reduce((sum, run) => sum + this.#document.font(run.font).fontSize(size).widthOfString(run.text), 0);
+  }
+
+  /** Breaks at spaces, and inside a word only when it alone is wider than the column. */
+  #wrap(paragraph: string, width: number, size: number, weight: Weight): string[] {
+    const lines: string[] = [];
+    let line = '';
+    for (const word of paragraph.split(' ')) {
+      const longer = line === '' ? word : `${line} ${word}`;
+      if (this.#widthOf(longer, size, weight) <= width) {
+        line = longer;
+        continue;
+      }
+      if (line !== '') lines.push(line);
+      line = word;
+      while (this.#widthOf(line, size, weight) > width) {
+        let count = line.length - 1;
+        while (count > 1 && this.#widthOf(line.slice(0, count), size, weight) > width) count -= 1;
+        lines.push(line.slice(0, count));
+        line = line.slice(count);
+      }
+    }
+    return [...lines, line];
+  }
+}
+
+export async function writePdf(document: PrintedDocument, fonts: FontSet): Promise<Buffer> {
+  const { title, number, issuedAt, face } = document;
+  const created = new Date(issuedAt);
+  const pdf = new PDFDocument({
+    size: 'A4',
+    margin: 0,
+    pdfVersion: '1.7',
+    tagged: true,
+    lang: 'en-GB',
+    displayTitle: true,
+    info: {
+      Title: `${title} ${number}`,
+      Author: face.seller.name,
+      Subject: face.lines.map(({ description }) => description).join('; '),
+      CreationDate: created,
+      ModDate: created,
+    },
+  });
+  const chunks: Buffer[] = [];
+  const finished = new Promise<Buffer>((resolve, reject) => {
+    pdf.on('data', (chunk: Buffer) => chunks.push(chunk));
+    pdf.on('end', () => resolve(Buffer.concat(chunks)));
+    pdf.on('error', reject);
+  });
+  const sheet = new Sheet(pdf, fonts);
+  let y = writeHead(sheet, document);
+  y = writeParties(sheet, document, y);
+  y = writeLines(sheet, document, y);
+  y = writeTotals(sheet, document, y);
+  writeFoot(sheet, document, y);
+  sheet.end();
+  return finished;
+}
+
+function writeHead(sheet: Sheet, { title, number }: PrintedDocument): number {
+  sheet.text('Burette', { x: left, y: 62, width: 200, size: 13, weight: 'bold', colour: accent });
+  const y = sheet.text(title, { x: left, y: 96, width: 300, size: 24, weight: 'bold', tag: 'H1' });
+  return sheet.text(number, { x: left, y: y - 2, width: 300, size: 13, colour: soft }) + 14;
+}
+
+function writeParties(sheet: Sheet, { face, facts }: PrintedDocument, top: number): number {
+  const party = (label: string, { name, address, country, vatNumber }: Party, x: number): number => {
+    let y = sheet.text(label, { x, y: top, width: 150, size: 8, colour: soft, tag: 'H2' });
+    y = sheet.text(name, { x, y, width: 150, weight: 'bold' });
+    if (address) y = sheet.text(address, { x, y, width: 150 });
+    y = sheet.text(countryName(country), { x, y, width: 150 });
+    return vatNumber ? sheet.text(`VAT number ${vatNumber}`, { x, y, width: 150 }) : y;
+  };
+  let factsBottom = top;
+  for (const { label, value } of facts) {
+    factsBottom = sheet.text(label, { x: 398, y: factsBottom, width: 135, size: 8, colour: soft });
+    factsBottom = sheet.text(value, { x: 398, y: factsBottom - 1, width: 135 }) + 3;
+  }
+  return Math.max(party('Seller', face.seller, left), party('Buyer', face.buyer, 230), factsBottom) + 20;
+}
+
+const countryNames = new Intl.DisplayNames('en', { type: 'region' });
+const countryName = (code: string): string => (/^[A-Z]{2}$/.test(code) ? (countryNames.of(code) ?? code) : code);
+
+function writeLines(sheet: Sheet, { face }: PrintedDocument, top: number): number {
+  const small = { size: 8, colour: soft, tag: 'TH' as const };
+  sheet.text('Description', { x: left, y: top, width: 240, ...small });
+  sheet.text('Quantity', { x: 300, y: top, width: 60, align: 'right', ...small });
+  sheet.text('Unit price', { x: 365, y: top, width: 80, align: 'right', ...small });
+  let y = sheet.text('Net', { x: 450, y: top, width: 83, align: 'right', ...small }) + 2;
+  for (const { description, quantity, unit, netMinor } of face.lines) {
+    sheet.line(y);
+    y += 6;
+    sheet.text(`${quantity} ${unit}`, { x: 300, y, width: 60, align: 'right', tag: 'TD' });
+    sheet.text(moneyText(netMinor / quantity, face.currency), { x: 365, y, width: 80, align: 'right', tag: 'TD' });
+    sheet.text(moneyText(netMinor, face.currency), { x: 450, y, width: 83, align: 'right', tag: 'TD' });
+    y = sheet.text(description, { x: left, y, width: 235, tag: 'TD' }) + 4;
+  }
+  sheet.line(y, ink, 1);
+  return y + 8;
+}
+
+function writeTotals(sheet: Sheet, { face }: PrintedDocument, top: number): number {
+  const { currency } = face;
+  let y = top;
+  const row = (label: string, amountMinor: number, weight: Weight = 'regular', size = 9) => {
+    sheet.text(moneyText(amountMinor, currency), { x: 420, y, width: 113, align: 'right', weight, size, tag: 'TD' });
+    y = sheet.text(label, { x: 230, y, width: 190, weight, size, tag: 'TD' }) + 3;
+  };
+  row('Net', face.netMinor);
+  for (const { category, rateHundredths, baseMinor, taxMinor } of face.taxes)
+    row(
+      category === 'S' ? `VAT ${rateText(rateHundredths)} on ${moneyText(baseMinor, currency)}` : 'VAT 0 %',
+      taxMinor,
+    );
+  y += 2;
+  row('Total', face.totalMinor, 'bold', 12);
+  return y + 16;
+}
+
+function writeFoot(sheet: Sheet, { face, standing, cautions, issuedAt }: PrintedDocument, top: number): void {
+  let y = sheet.text(standing, { x: left, y: top, width: right - left, weight: 'bold' }) + 8;
+  for (const note of face.notes) y = sheet.text(note, { x: left, y, width: right - left, colour: soft }) + 3;
+  sheet.line(742);
+  y = 750;
+  for (const caution of [...cautions, `Issued ${dayText(issuedAt)}. Page 1 of 1.`])
+    y = sheet.text(caution, { x: left, y, width: right - left, size: 7.5, colour: soft }) + 1;
+}

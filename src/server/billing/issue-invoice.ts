@@ -1,0 +1,45 @@
+/** Issues an invoice: the next number of its series and year, in the transaction of the payment that it is for. */
+import { inWriteTransaction } from '@db/in-write-transaction.ts';
+import { Invoice } from '@db/models/billing.ts';
+import { invoiceNumber, type InvoiceFace } from '@/domain/billing/invoice-face.ts';
+import { nowText } from '../clock.ts';
+import { newId } from '../ids.ts';
+
+export const invoiceSeries = 'BUR';
+
+export interface IssueInvoice {
+  teamId: string;
+  face: InvoiceFace;
+  paidAt: string;
+  topUpId?: string;
+  proFormaId?: string;
+}
+
+/** Joins the caller's write transaction. A purchase has one invoice: asking again answers the first. */
+export async function issueInvoice(options: IssueInvoice): Promise<Invoice> {
+  const { teamId, face, paidAt, topUpId = null, proFormaId = null } = options;
+  return inWriteTransaction(async () => {
+    const earlier = await Invoice.findOne({ where: topUpId ? { topUpId } : { proFormaId } });
+    if (earlier) return earlier;
+    const issuedAt = nowText();
+    const year = Number(issuedAt.slice(0, 4));
+    const last = (await Invoice.max('numberInYear', { where: { series: invoiceSeries, year } })) as number | null;
+    const numberInYear = (last ?? 0) + 1;
+    return Invoice.create({
+      id: newId('invoice'),
+      kind: 'invoice',
+      series: invoiceSeries,
+      year,
+      numberInYear,
+      number: invoiceNumber(invoiceSeries, year, numberInYear),
+      teamId,
+      issuedAt,
+      taxPoint: paidAt,
+      paidAt,
+      topUpId,
+      proFormaId,
+      correctsInvoiceId: null,
+      ...face,
+    });
+  });
+}
