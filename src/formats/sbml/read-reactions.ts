@@ -203,7 +203,7 @@ function lawOf(
   };
   const constant = recogniseMassAction(law, {
     reactants,
-    sizeOf: new Map([...around.names.sizeOf].filter(([id]) => !local.has(id))),
+    sizeOf: (id) => (local.has(id) ? null : around.names.sizeOf.get(id)),
     changes: (id) => !local.has(id) && around.changes(id),
   });
   if (constant !== null && isPropensity(constant))

@@ -8,8 +8,8 @@ import { printExpression } from '@/domain/network/print-expression.ts';
 
 export interface LawContext {
   reactants: { species: string; count: number }[];
-  /** Size symbol of each species whose id means a concentration; null where it means the count. */
-  sizeOf: ReadonlyMap<string, string | null>;
+  /** The size symbol of a species whose id means a concentration; null or undefined for every other name. */
+  sizeOf: (id: string) => string | null | undefined;
   /** Whether a name stands for, or depends on, something that changes during a run. */
   changes: (id: string) => boolean;
 }
@@ -57,7 +57,7 @@ function factorsOf(expression: Expression, context: LawContext): Quotient {
     return { above: [...left.above, ...above], below: [...left.below, ...below] };
   }
   if (expression.kind === 'symbol') {
-    const size = context.sizeOf.get(expression.id);
+    const size = context.sizeOf(expression.id);
     if (typeof size === 'string') return { above: [expression], below: [{ kind: 'symbol', id: size }] };
   }
   return { above: [expression], below: [] };

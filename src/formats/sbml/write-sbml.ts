@@ -33,6 +33,7 @@ export function writeSbml(document: NetworkDocument, { modelId, name }: { modelI
   const species = new Map(document.species.map((row) => [row.id, row]));
   const around: Surroundings = { species, ids, units };
   const home = needsHome(document) ? freeId('everywhere', ids) : null;
+  const assigned = new Set(document.assignmentRules?.map(({ variable }) => variable));
   // Contents first: they ask for the units whose definitions stand before them.
   const timeUnits = units.timeUnit(document.timeUnit);
   const contents = [
@@ -42,9 +43,9 @@ export function writeSbml(document: NetworkDocument, { modelId, name }: { modelI
     ]),
     list(
       'listOfSpecies',
-      document.species.map((row) => speciesElement(document, row, home)),
+      document.species.map((row) => speciesElement(assigned, row, home)),
     ),
-    list('listOfParameters', parameters(document, units)),
+    list('listOfParameters', parameters(document, assigned, units)),
     list('listOfRules', rules(document)),
     list(
       'listOfReactions',
@@ -97,13 +98,12 @@ const implicitCompartment = (id: string): string =>
     mark('implicit'),
   ]);
 
-function speciesElement(document: NetworkDocument, species: SpeciesDocument, home: string | null): string {
-  const assigned = document.assignmentRules?.some(({ variable }) => variable === species.id) ?? false;
+function speciesElement(assigned: ReadonlySet<string>, species: SpeciesDocument, home: string | null): string {
   return element('species', {
     id: species.id,
     name: species.name,
     compartment: species.compartment ?? home!,
-    initialAmount: assigned ? undefined : String(species.initialCount),
+    initialAmount: assigned.has(species.id) ? undefined : String(species.initialCount),
     substanceUnits: countUnit,
     hasOnlySubstanceUnits: String(species.meaning !== 'concentration'),
     boundaryCondition: String(species.boundary ?? false),
@@ -111,8 +111,7 @@ function speciesElement(document: NetworkDocument, species: SpeciesDocument, hom
   });
 }
 
-function parameters(document: NetworkDocument, units: UnitsToWrite): string[] {
-  const assigned = new Set(document.assignmentRules?.map(({ variable }) => variable));
+function parameters(document: NetworkDocument, assigned: ReadonlySet<string>, units: UnitsToWrite): string[] {
   return [
     ...(document.parameters ?? []).map(({ id, name, value, unit }) =>
       element('parameter', {
@@ -177,9 +176,10 @@ function writtenLaw(around: Surroundings, { rateLaw, localParameters }: Reaction
   const isGuarded = rateLaw.kind === 'expression' && !vanishesWithoutReactants(stated, unshadowed(reactants, locals));
   // Names brought in by the written law, and species, which SBML does not let a local parameter hide.
   const broughtIn = new Set(counts.flatMap(({ amount }) => [...symbolsOf(amount)]));
-  const taken = new Set([...around.ids, ...locals.map(({ id }) => id)]);
   const hiding = locals.filter(({ id }) => broughtIn.has(id) || around.species.has(id));
-  const localIds = new Map(hiding.map(({ id }) => [id, freeId(`${id}_local`, taken)]));
+  const localIds = new Map(
+    hiding.map(({ id }) => [id, freeId(`${id}_local`, new Set([...around.ids, ...locals.map((local) => local.id)]))]),
+  );
   const own = mapLeaves(stated, (leaf) =>
     leaf.kind === 'symbol' ? { kind: 'symbol', id: localIds.get(leaf.id) ?? leaf.id } : leaf,
   );
