@@ -68,6 +68,9 @@ export function wilsonInterval(count: number, total: number): [low: number, high
   ];
 }
 
+/** Whether the figure has room for the intervals of its bars. */
+export const showsIntervals = (distribution: Distribution): boolean => barsOf(distribution).length <= mostWhiskers;
+
 interface RenderApi {
   coord(value: number[]): [number, number];
 }
@@ -78,7 +81,7 @@ export function distributionOption(figure: DistributionFigure, theme: ChartTheme
   const joined = bars.some(({ width }) => width !== 1);
   const heights = bars.map(({ count, width }) => count / total / width);
   const whiskers = bars.map(({ count, width }) => wilsonInterval(count, total).map((bound) => bound / width));
-  const withWhiskers = bars.length <= mostWhiskers;
+  const withWhiskers = showsIntervals(figure.distribution);
   const top = Math.max(...heights, ...(withWhiskers ? whiskers.map(([, high]) => high!) : [0]));
   const first = bars[0]?.from ?? 0;
   const end = bars.reduce((most, { from, width }) => Math.max(most, from + width), first + 1);

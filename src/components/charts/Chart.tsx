@@ -84,7 +84,7 @@ function DataTable({ table }: Pick<FigureContent, 'table'>) {
             <tr key={index}>
               {row.map((value, column) => (
                 <td key={column} className="figure">
-                  {typeof value === 'number' ? numberText(value, 6) : value}
+                  {typeof value === 'number' ? numberText(value, 5) : value}
                 </td>
               ))}
             </tr>

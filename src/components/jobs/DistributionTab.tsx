@@ -1,7 +1,7 @@
 /** How the counts of one observable are distributed over the replicates at a chosen time. */
 import { keepPreviousData, useQuery } from '@tanstack/react-query';
 import { useEffect, useMemo, useState } from 'react';
-import { distributionOption, distributionTable } from '@/charts/distribution-option.ts';
+import { distributionOption, distributionTable, showsIntervals } from '@/charts/distribution-option.ts';
 import { observableTitle } from '@/charts/time-course-option.ts';
 import { countText, numberText } from '@/charts/number-text.ts';
 import { callApi } from '@/components/api/call-api.ts';
@@ -58,7 +58,7 @@ export function DistributionTab(props: {
       mean: at < 0 ? undefined : observable.mean[at],
     };
     return {
-      description: `${figure.title} at ${timeWithUnit(data.time, results.timeUnit)} in ${countText(data.replicates)} replicates${range(data.values)}. Whiskers: 95 % intervals (Wilson).`,
+      description: `${figure.title} at ${timeWithUnit(data.time, results.timeUnit)} in ${countText(data.replicates)} replicates${range(data.values)}.${showsIntervals(data) ? ' Whiskers: 95 % intervals (Wilson).' : ''}`,
       option: (theme) => distributionOption(figure, theme),
       table: () => distributionTable(figure),
       fileStem: `${job.id}-${observable.id}-at-${at}`,

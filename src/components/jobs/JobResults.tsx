@@ -86,7 +86,7 @@ export function JobResults({ team, job, names }: Props) {
       content: <DistributionTab {...shared} {...time} team={team} job={job} stage={stage} />,
     },
     traces: { label: 'Traces', content: <TracesTab {...shared} traces={ownTraces} job={job} /> },
-    numbers: { label: 'Numbers', content: <NumbersTab {...shared} {...time} job={job} /> },
+    numbers: { label: 'Numbers', content: <NumbersTab results={results} {...time} /> },
   };
   return (
     <section aria-label="Results">

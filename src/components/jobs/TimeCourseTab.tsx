@@ -8,6 +8,7 @@ import type { FigureContent } from '@/components/charts/figure.ts';
 import { CheckField } from '@/components/ui/Field.tsx';
 import type { JobDocument } from '@/contracts/jobs.ts';
 import { timeWithUnit } from './job-words.ts';
+import { NumbersTable } from './NumbersTab.tsx';
 import { allObservables, ObservableSelect } from './ObservableSelect.tsx';
 import type { NamedObservable, ObservableTrace, Results } from './results-data.ts';
 
@@ -77,6 +78,9 @@ export function TimeCourseTab(props: {
         )}
       </div>
       <Figure {...content} />
+      <div className="mt-6">
+        <NumbersTable results={results} at={results.times.length - 1} />
+      </div>
     </>
   );
 }

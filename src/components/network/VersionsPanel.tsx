@@ -1,10 +1,12 @@
 /** The versions of a model: which is shown, opening another, downloads. */
+import { useState } from 'react';
 import { urlOf } from '@/components/api/call-api.ts';
 import { Button } from '@/components/ui/Button.tsx';
 import { momentText } from '@/components/ui/amounts-text.ts';
 import { exportSbml } from '@/contracts/network.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
 import { paths } from '@/paths.ts';
+import { DifferenceDialog } from './DifferenceDialog.tsx';
 import { saveFile } from './save-file.ts';
 
 export interface ListedVersion {
@@ -24,6 +26,7 @@ export interface VersionsPanelProps {
 const fileStem = (name: string): string => name.replaceAll(/[^\p{L}\p{N}]+/gu, '-').replaceAll(/^-|-$/g, '') || 'model';
 
 export function VersionsPanel({ team, timeZone, stored }: VersionsPanelProps) {
+  const [compared, setCompared] = useState<number | null>(null);
   const { versions, number: shown } = stored;
   const stem = `${fileStem(stored.name)}-v${shown}`;
   return (
@@ -47,6 +50,11 @@ export function VersionsPanel({ team, timeZone, stored }: VersionsPanelProps) {
               </time>
             </span>
             {note !== '' && <span className="block text-soft [overflow-wrap:anywhere]">{note}</span>}
+            {number !== shown && (
+              <button type="button" className="link block text-soft" onClick={() => setCompared(number)}>
+                Compare with version {shown}
+              </button>
+            )}
           </li>
         ))}
       </ol>
@@ -66,6 +74,15 @@ export function VersionsPanel({ team, timeZone, stored }: VersionsPanelProps) {
           Download JSON
         </Button>
       </div>
+      {compared !== null && (
+        <DifferenceDialog
+          team={team}
+          model={stored.id}
+          from={Math.min(compared, shown)}
+          to={Math.max(compared, shown)}
+          onClose={() => setCompared(null)}
+        />
+      )}
     </section>
   );
 }
