@@ -332,6 +332,17 @@ export const downloadProFormaPdf = contract({
   refusals: [...team],
 });
 
+export const markTransferReceived = contract({
+  id: 'markTransferReceived',
+  feature: 'billing',
+  method: 'POST',
+  path: '/api/v1/operate/pro-formas/{proForma}/received',
+  summary: 'Say that the transfer of a pro-forma has arrived: credits and invoice follow',
+  access: { kind: 'operator' },
+  answers: [{ status: 200, description: 'Received', schema: z.object({ invoiceId: z.string() }) }],
+  refusals: ['not_signed_in', 'not_found', 'invalid_input'],
+});
+
 export const receivePaymentEvent = contract({
   id: 'receivePaymentEvent',
   feature: 'billing',
@@ -345,7 +356,6 @@ export const receivePaymentEvent = contract({
   refusals: ['bad_signature', 'too_large', 'unsupported_media_type'],
 });
 
-/** Listed here once their endpoint files exist: the walk over the routes compares both. */
 export const billingContracts = [
   readPriceBook,
   startTopUp,
@@ -360,5 +370,6 @@ export const billingContracts = [
   requestProForma,
   listProFormas,
   downloadProFormaPdf,
+  markTransferReceived,
   receivePaymentEvent,
 ];

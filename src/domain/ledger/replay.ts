@@ -16,6 +16,15 @@ export interface DerivedRows {
   }[];
 }
 
+/** Where a replay may begin instead of at the first transaction: what the rows said then. */
+export interface ReplayStart {
+  sequence: number;
+  hash: string;
+  balances: { teamId: string; account: string; balanceMicrocredits: number }[];
+  lots: { id: string; teamId: string; remainingMicrocredits: number; frozenMicrocredits: number }[];
+  segments: { segmentId: string; teamId: string; jobId: string | null; held: number; spent: number }[];
+}
+
 export type ReplayRow = CanonicalTransaction & { hash: string };
 
 interface LotState {
@@ -34,8 +43,17 @@ export class LedgerReplay {
   readonly #touched = new Set<string>();
   readonly #hashOf: (text: string) => string;
 
-  constructor(hashOf: (text: string) => string) {
+  constructor(hashOf: (text: string) => string, start?: ReplayStart) {
     this.#hashOf = hashOf;
+    if (!start) return;
+    this.#sequence = start.sequence;
+    this.#hash = start.hash;
+    for (const { teamId, account, balanceMicrocredits } of start.balances)
+      this.#balances.set(`${teamId} ${account}`, balanceMicrocredits);
+    for (const { id, teamId, remainingMicrocredits: remaining, frozenMicrocredits: frozen } of start.lots)
+      this.#lots.set(id, { teamId, remaining, frozen });
+    for (const { segmentId, teamId, jobId, held, spent } of start.segments)
+      this.#segments.set(segmentId, { held, spent, owner: `${teamId} ${jobId}` });
   }
 
   get head(): { sequence: number; hash: string } {
