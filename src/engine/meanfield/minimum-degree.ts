@@ -22,7 +22,13 @@ export function minimumDegreeOrder(pattern: SparsePattern, multiplicationLimit: 
   for (let step = 0; step < pattern.size; step++) {
     const vertex = waiting.takeLeast();
     columns[step] = vertex;
-    const clique = [...neighbours[vertex]!];
+    const clique = [...neighbours[vertex]!].sort((a, b) => a - b);
+    if (clique.length === pattern.size - step - 1) {
+      // What is left is one clique, where any order is as good: no more sets need to be joined.
+      columns.set(clique, step + 1);
+      for (let degree = clique.length; degree > 0; degree--) multiplications += degree * (degree + 1);
+      return multiplications > multiplicationLimit ? null : { columns, multiplications };
+    }
     multiplications += clique.length * (clique.length + 1);
     if (multiplications > multiplicationLimit) return null;
     for (const member of clique) {
