@@ -22,13 +22,13 @@ export function JobOutcome({ job }: { job: JobDocument }) {
     case 'stopped_at_cap':
       return (
         <Notice still tone="caution" title={`Stopped at the cap of ${creditsText(job.capMicrocredits)} credits`}>
-          {kept} {job.stopDetail}
+          {job.stopDetail ?? kept}
         </Notice>
       );
     case 'cancelled':
       return (
         <Notice still title="Stopped on request">
-          {kept} {job.stopDetail}
+          {job.stopDetail ?? kept}
         </Notice>
       );
     default:
