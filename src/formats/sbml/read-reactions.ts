@@ -5,7 +5,8 @@ import type { Expression } from '@/domain/network/expression.ts';
 import { parseExpression } from '@/domain/network/parse-expression.ts';
 import { printEquation } from '@/domain/network/print-equation.ts';
 import { printExpression } from '@/domain/network/print-expression.ts';
-import type { ModelNames } from './model-names.ts';
+import { amountOf, withoutGuard } from './guarded-law.ts';
+import { isMarked, type ModelNames } from './model-names.ts';
 import { named, type StartValues } from './read-quantities.ts';
 import type { UnitReading } from './read-units.ts';
 import { recogniseMassAction } from './recognise-mass-action.ts';
@@ -22,6 +23,8 @@ export interface ReactionSurroundings {
   start: StartValues;
   /** Global names whose values are negative. */
   negative: ReadonlySet<string>;
+  /** Filled with the laws that were found to be mass action. */
+  recognised: XmlElement[];
 }
 
 type Term = { species: string; count: number };
@@ -196,6 +199,14 @@ function lawOf(
   law: Expression,
 ): RateLawDocument {
   const local = new Map(locals.map(({ id, value }) => [id, value]));
+  const sizeOf = (id: string) => (local.has(id) ? null : around.names.sizeOf.get(id));
+  if (isMarked(kineticLaw, 'expression')) {
+    const needs = reactants.map(({ species, count }) => ({
+      count,
+      amount: amountOf(species, sizeOf(species) ?? null),
+    }));
+    return { kind: 'expression', expression: textOf(around.reading, kineticLaw, withoutGuard(law, needs)) };
+  }
   // A negative constant is a mistake that stops the run and names the law; the law is then kept for the person to see.
   const isPropensity = (constant: Expression): boolean => {
     const value = evaluateExpression(constant, { symbol: (id) => local.get(id) ?? around.start(id) });
@@ -203,11 +214,13 @@ function lawOf(
   };
   const constant = recogniseMassAction(law, {
     reactants,
-    sizeOf: (id) => (local.has(id) ? null : around.names.sizeOf.get(id)),
+    sizeOf,
     changes: (id) => !local.has(id) && around.changes(id),
   });
-  if (constant !== null && isPropensity(constant))
+  if (constant !== null && isPropensity(constant)) {
+    around.recognised.push(kineticLaw);
     return { kind: 'massAction', constant: textOf(around.reading, kineticLaw, constant) };
+  }
   return { kind: 'expression', expression: textOf(around.reading, kineticLaw, law) };
 }
 

@@ -87,6 +87,23 @@ function readModel(reading: SbmlReading, model: XmlElement): NetworkDocument | n
       value: names.itemsPerSubstance,
     });
   const timeUnit = units.textOf(model.attributes.get('timeUnits'));
+  const recognised: XmlElement[] = [];
+  const reactions = readReactions({
+    reading,
+    names,
+    units,
+    start,
+    changes: changesDuringRun(names, assigned),
+    negative: new Set(parameters.filter(({ value }) => value < 0).map(({ id }) => id)),
+    recognised,
+  });
+  if (recognised.length > 0) {
+    reading.inform(
+      model,
+      'read_as_mass_action',
+      `${recognised.length} of ${reactions.length} laws are mass action in every state and were read as such; the others were kept word for word.`,
+    );
+  }
   return {
     ...(timeUnit === undefined ? {} : { timeUnit }),
     compartments: readCompartments(reading, names, units, start, assigned),
@@ -95,14 +112,7 @@ function readModel(reading: SbmlReading, model: XmlElement): NetworkDocument | n
     assignmentRules: [...rules].flatMap(([variable, rule]) =>
       observed.has(variable) ? [] : [{ variable, expression: textOf(reading, rule.element, rule.expression) }],
     ),
-    reactions: readReactions({
-      reading,
-      names,
-      units,
-      changes: changesDuringRun(names, assigned),
-      start,
-      negative: new Set(parameters.filter(({ value }) => value < 0).map(({ id }) => id)),
-    }),
+    reactions,
     observables: [...rules].flatMap(([id, rule]): ObservableDocument[] =>
       observed.has(id)
         ? [{ id, ...named(names.elements.get(id)!), expression: textOf(reading, rule.element, rule.expression) }]

@@ -120,12 +120,34 @@ describe('document → SBML → document', () => {
     expect(reread(document)).toEqual(document);
   });
 
-  it('writes the guard of a law that stays positive without its reactants', () => {
+  it('keeps an expression law an expression, even one that is mass action in disguise, and takes its own guard off again', () => {
+    const document: NetworkDocument = {
+      species: [{ id: 'A', initialCount: 4 }],
+      parameters: [{ id: 'k', value: 2 }],
+      reactions: [
+        { id: 'r1', equation: 'A → ∅', rateLaw: { kind: 'expression', expression: 'k * A' } },
+        { id: 'r2', equation: '2 A → A', rateLaw: { kind: 'expression', expression: 'A' } },
+      ],
+    };
+    expect(writeSbml(document, { modelId: 'm', name: 'm' })).toContain('<piecewise>');
+    expect(reread(document).reactions.map(({ rateLaw }) => rateLaw)).toEqual(
+      document.reactions.map(({ rateLaw }) => rateLaw),
+    );
+  });
+
+  it('keeps the guard of a law when the file has lost our mark', () => {
     const document: NetworkDocument = {
       species: [{ id: 'A', initialCount: 4 }],
       reactions: [{ id: 'r', equation: '2 A → A', rateLaw: { kind: 'expression', expression: 'A' } }],
     };
-    const law = reread(document).reactions[0]!.rateLaw;
-    expect(law).toEqual({ kind: 'expression', expression: 'piecewise(A, A >= 2, 0)' });
+    const unmarked = writeSbml(document, { modelId: 'm', name: 'm' }).replaceAll(
+      '<burette:expression',
+      '<burette:other',
+    );
+    const outcome = readSbml(unmarked);
+    expect(outcome.ok && outcome.document.reactions[0]!.rateLaw).toEqual({
+      kind: 'expression',
+      expression: 'piecewise(A, A >= 2, 0)',
+    });
   });
 });

@@ -5,6 +5,7 @@ import { mapLeaves, symbolsOf } from '@/domain/network/expression-leaves.ts';
 import { parseEquation, type EquationTerm } from '@/domain/network/parse-equation.ts';
 import { parseExpression } from '@/domain/network/parse-expression.ts';
 import { vanishesWithoutReactants } from '@/domain/network/vanishing-law.ts';
+import { amountOf, guardedLaw, type Need } from './guarded-law.ts';
 import { ownNamespace, writtenNamespace } from './sbml-names.ts';
 import { UnitsToWrite } from './write-units.ts';
 import { writeMathml } from './write-mathml.ts';
@@ -161,7 +162,11 @@ function reaction(around: Surroundings, row: ReactionDocument): string {
       'listOfModifiers',
       modifiers.map((species) => element('modifierSpeciesReference', { species })),
     ),
-    element('kineticLaw', {}, [writeMathml(law), list('listOfLocalParameters', locals)]),
+    element('kineticLaw', {}, [
+      row.rateLaw.kind === 'expression' ? mark('expression') : '',
+      writeMathml(law),
+      list('listOfLocalParameters', locals),
+    ]),
   ]);
 }
 
@@ -203,17 +208,13 @@ const binary = (
 });
 const number = (value: number): Expression => ({ kind: 'number', value });
 
-/** The count of a species in terms of its id: the id itself, or concentration · size. */
 function countOf({ species }: Surroundings, id: string): Expression {
   const { meaning, compartment } = species.get(id)!;
-  const symbol: Expression = { kind: 'symbol', id };
-  return meaning === 'concentration' ? binary('multiply', symbol, { kind: 'symbol', id: compartment! }) : symbol;
+  return amountOf(id, meaning === 'concentration' ? compartment! : null);
 }
 
-type Counts = { count: number; amount: Expression }[];
-
 /** c · Π x·(x − 1)···/n!, as recognise-mass-action.ts reads it back. */
-function massActionLaw(constant: Expression, counts: Counts): Expression {
+function massActionLaw(constant: Expression, counts: Need[]): Expression {
   let law = constant;
   for (const { count, amount } of counts) {
     let orders = 1;
@@ -224,13 +225,6 @@ function massActionLaw(constant: Expression, counts: Counts): Expression {
     if (orders > 1) law = binary('divide', law, number(orders));
   }
   return law;
-}
-
-function guardedLaw(law: Expression, counts: Counts): Expression {
-  const condition = counts
-    .map(({ count, amount }) => binary('greaterOrEqual', amount, number(count)))
-    .reduce((left, right) => binary('and', left, right));
-  return { kind: 'piecewise', pieces: [{ value: law, condition }], otherwise: number(0) };
 }
 
 function parsed(text: string): Expression {
