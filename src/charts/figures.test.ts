@@ -58,6 +58,14 @@ describe('the time course', () => {
     const option = timeCourseOption({ ...course, fan: false, traces: [] }, darkTheme);
     await expect(pictureOf(option, darkTheme)).toMatchFileSnapshot('snapshots/time-course-dark.svg');
   });
+  it('draws the mean field dashed and names it, in the picture and in the table', async () => {
+    const withCurve = { ...course, traces: [], meanField: mean.map((value) => value * 1.1) };
+    const svg = pictureOf(timeCourseOption(withCurve, lightTheme));
+    await expect(svg).toMatchFileSnapshot('snapshots/time-course-mean-field.svg');
+    expect(svg).toContain('rate equation');
+    const { columns, rows } = timeCourseTable(withCurve);
+    expect(rows[12]![columns.indexOf('rate equation')]).toBeCloseTo(mean[12]! * 1.1, 12);
+  });
   it('names both axes with their units and every band beside it', () => {
     const svg = pictureOf(timeCourseOption(course, lightTheme));
     for (const words of ['time, h', 'Repressor A, count', 'mean ± SE', '5–95 %', '25–75 %'])
@@ -118,6 +126,6 @@ it('sample traces are staircases with the picked one named', async () => {
   const figure = { title: 'Repressor A', times, timeUnit: undefined, traces: [trace(0), trace(4)], highlighted: 4 };
   const svg = pictureOf(tracesOption(figure, lightTheme));
   await expect(svg).toMatchFileSnapshot('snapshots/traces-light.svg');
-  expect(svg).toContain('replicate 5');
+  expect(svg).toContain('replicate 4');
   expect(tracesTable(figure).rows[0]).toHaveLength(3);
 });

@@ -15,6 +15,8 @@ export interface TimeCourse {
   fan: boolean;
   /** Values of one kept trace each, on the same times. */
   traces: readonly { replicate: number; values: readonly number[] }[];
+  /** The solution of the rate equations on the same times, where it is to be shown. */
+  meanField?: readonly number[] | undefined;
 }
 
 const last = <T>(list: readonly T[]): T => list[list.length - 1]!;
@@ -28,6 +30,7 @@ export function timeCourseOption(course: TimeCourse, theme: ChartTheme): ECharts
   const { mean, meanStandardError, quantiles } = observable;
   const end = last(times);
   const labels: DirectLabel[] = [{ x: end, y: last(mean), text: 'mean ± SE', color: theme.bromo }];
+  if (course.meanField) labels.push({ x: end, y: last(course.meanField), text: 'rate equation', color: theme.methyl });
   const series: object[] = [];
 
   const band = (name: string, low: string, high: string, opacity: number) => {
@@ -43,7 +46,7 @@ export function timeCourseOption(course: TimeCourse, theme: ChartTheme): ECharts
   for (const { replicate, values } of course.traces) {
     series.push({
       type: 'line',
-      name: `replicate ${countText(replicate + 1)}`,
+      name: `replicate ${countText(replicate)}`,
       step: 'end',
       showSymbol: false,
       silent: true,
@@ -71,6 +74,7 @@ export function timeCourseOption(course: TimeCourse, theme: ChartTheme): ECharts
       itemStyle: { color: theme.bromo },
       data: times.map((time, index) => [time, mean[index]!]),
     },
+    ...meanFieldSeries(course, theme),
     labelSeries(labels, theme),
   );
 
@@ -86,8 +90,25 @@ export function timeCourseOption(course: TimeCourse, theme: ChartTheme): ECharts
   } as EChartsOption;
 }
 
+/** Dashed and in the colour of approximations; a time without a value leaves a gap. */
+const meanFieldSeries = ({ times, meanField }: TimeCourse, theme: ChartTheme): object[] =>
+  meanField === undefined
+    ? []
+    : [
+        {
+          type: 'line',
+          name: 'rate equation',
+          showSymbol: false,
+          z: 3,
+          tooltip: { show: false },
+          lineStyle: { color: theme.methyl, width: 2, type: [6, 4] },
+          itemStyle: { color: theme.methyl },
+          data: times.map((time, index) => [time, meanField[index] ?? NaN]),
+        },
+      ];
+
 /** What the pointer reads at a time: the mean with its error and the fan's values. */
-function readout({ times, timeUnit, observable, replicates }: TimeCourse) {
+function readout({ times, timeUnit, observable, replicates, meanField }: TimeCourse) {
   return (items: unknown): string => {
     const [first] = items as { dataIndex: number }[];
     if (first === undefined) return '';
@@ -98,6 +119,7 @@ function readout({ times, timeUnit, observable, replicates }: TimeCourse) {
       `at ${numberText(times[at]!, 6)}${timeUnit ? ` ${timeUnit}` : ''}`,
       `mean ${value} ± ${error}`,
       `5–95 %  ${quantile('0.05')} – ${quantile('0.95')}`,
+      ...(meanField ? [`rate equation ${numberText(meanField[at] ?? NaN, 5)}`] : []),
       `from ${countText(replicates)} replicates`,
     ].join('\n');
   };
@@ -105,7 +127,7 @@ function readout({ times, timeUnit, observable, replicates }: TimeCourse) {
 
 /** The same data as a table: one row per grid time. */
 export function timeCourseTable(course: TimeCourse): FigureTable {
-  const { times, observable, replicates, timeUnit, traces } = course;
+  const { times, observable, replicates, timeUnit, traces, meanField } = course;
   const probabilities = Object.keys(observable.quantiles).sort((a, b) => Number(a) - Number(b));
   return {
     caption: `${observableTitle(observable)} over time, from ${countText(replicates)} replicates`,
@@ -116,7 +138,8 @@ export function timeCourseTable(course: TimeCourse): FigureTable {
       'SD',
       'standard error of the SD',
       ...probabilities.map((probability) => `quantile ${probability}`),
-      ...traces.map(({ replicate }) => `replicate ${replicate + 1}`),
+      ...(meanField ? ['rate equation'] : []),
+      ...traces.map(({ replicate }) => `replicate ${replicate}`),
     ],
     rows: times.map((time, index) => [
       time,
@@ -125,6 +148,7 @@ export function timeCourseTable(course: TimeCourse): FigureTable {
       observable.sd[index]!,
       observable.sdStandardError[index]!,
       ...probabilities.map((probability) => observable.quantiles[probability]![index]!),
+      ...(meanField ? [meanField[index] ?? NaN] : []),
       ...traces.map(({ values }) => values[index]!),
     ]),
   };

@@ -21,7 +21,7 @@ export function tracesOption(figure: TracesFigure, theme: ChartTheme): EChartsOp
     const strong = replicate === highlighted;
     return {
       type: 'line',
-      name: `replicate ${countText(replicate + 1)}`,
+      name: `replicate ${countText(replicate)}`,
       step: 'end',
       showSymbol: false,
       z: strong ? 4 : 2,
@@ -42,7 +42,7 @@ export function tracesOption(figure: TracesFigure, theme: ChartTheme): EChartsOp
           {
             x: end,
             y: picked.values[times.length - 1]!,
-            text: `replicate ${countText(picked.replicate + 1)}`,
+            text: `replicate ${countText(picked.replicate)}`,
             color: theme.ink,
           },
         ];
@@ -61,9 +61,7 @@ export function tracesOption(figure: TracesFigure, theme: ChartTheme): EChartsOp
         const shown = picked === undefined ? traces.slice(0, 8) : [picked];
         return [
           `at ${numberText(times[at]!, 6)}${figure.timeUnit ? ` ${figure.timeUnit}` : ''}`,
-          ...shown.map(
-            ({ replicate, values }) => `replicate ${countText(replicate + 1)}  ${numberText(values[at]!, 6)}`,
-          ),
+          ...shown.map(({ replicate, values }) => `replicate ${countText(replicate)}  ${numberText(values[at]!, 6)}`),
         ].join('\n');
       },
     },
@@ -74,7 +72,7 @@ export function tracesOption(figure: TracesFigure, theme: ChartTheme): EChartsOp
 export function tracesTable({ title, times, timeUnit, traces }: TracesFigure): FigureTable {
   return {
     caption: `${title}: ${traces.length} sample traces`,
-    columns: [timeTitle(timeUnit), ...traces.map(({ replicate }) => `replicate ${replicate + 1}`)],
+    columns: [timeTitle(timeUnit), ...traces.map(({ replicate }) => `replicate ${replicate}`)],
     rows: times.map((time, index) => [time, ...traces.map(({ values }) => values[index]!)]),
   };
 }

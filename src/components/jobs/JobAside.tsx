@@ -11,21 +11,26 @@ import { countText, creditsText } from '@/components/ui/amounts-text.ts';
 import type { ProblemDocument } from '@/contracts/errors.ts';
 import { cancelJob, type JobDocument } from '@/contracts/jobs.ts';
 import { paths } from '@/paths.ts';
+import { ExtendPanel, mayBeExtended } from './ExtendPanel.tsx';
 import { isOver, laneWords } from './job-words.ts';
+import { useStatistics } from './use-statistics.ts';
 
 interface Props {
   team: string;
   timeZone: string;
   job: JobDocument;
+  names: Record<string, string>;
   mayLaunch: boolean;
+  mayReadResults: boolean;
   onJob: (job: JobDocument) => void;
 }
 
-export function JobAside({ team, timeZone, job, mayLaunch, onJob }: Props) {
+export function JobAside({ team, timeZone, job, names, mayLaunch, mayReadResults, onJob }: Props) {
   const over = isOver(job);
   return (
     <div className="space-y-8">
       {!over && mayLaunch && <StopButton {...{ team, job, onJob }} />}
+      {mayBeExtended(job) && mayLaunch && mayReadResults && <KnownExtendPanel {...{ team, job, names, onJob }} />}
       <section aria-labelledby="charge-title">
         <h2 id="charge-title" className="text-sm font-semibold">
           Charge
@@ -111,6 +116,12 @@ export function JobAside({ team, timeZone, job, mayLaunch, onJob }: Props) {
       )}
     </div>
   );
+}
+
+function KnownExtendPanel({ team, job, names, onJob }: Pick<Props, 'team' | 'job' | 'names' | 'onJob'>) {
+  const { results } = useStatistics(team, job, names);
+  // A new number of replicates is a new question.
+  return <ExtendPanel key={job.replicatesDone} {...{ team, job, results, onJob }} />;
 }
 
 function chargeWords(job: JobDocument): string {

@@ -6,13 +6,14 @@ import { Notice } from '@/components/ui/Notice.tsx';
 import { Waiting } from '@/components/ui/Progress.tsx';
 import { Tabs } from '@/components/ui/Tabs.tsx';
 import { countText } from '@/components/ui/amounts-text.ts';
-import { jobStatistics, jobTraces, type JobDocument } from '@/contracts/jobs.ts';
+import { jobTraces, type JobDocument } from '@/contracts/jobs.ts';
+import type { NetworkDocument } from '@/domain/network/document.ts';
 import { DistributionTab } from './DistributionTab.tsx';
 import { isOver, resultCaution } from './job-words.ts';
 import { NumbersTab } from './NumbersTab.tsx';
-import { resultsOf } from './results-data.ts';
 import { TimeCourseTab } from './TimeCourseTab.tsx';
 import { TracesTab } from './TracesTab.tsx';
+import { stageOf, useStatistics } from './use-statistics.ts';
 
 const askEveryMs = 4_000;
 const tracesShown = 50;
@@ -22,30 +23,19 @@ interface Props {
   team: string;
   job: JobDocument;
   names: Record<string, string>;
+  /** null when the reader may not see the model. */
+  network: NetworkDocument | null;
 }
 
-export function JobResults({ team, job, names }: Props) {
+export function JobResults({ team, job, names, network }: Props) {
   const over = isOver(job);
   const [tab, setTab] = useInUrl('tab', 'time-course');
   const [observable, setObservable] = useInUrl('observable', job.observables[0] ?? '');
   const [timeIndex, setTimeIndex] = useState(job.gridIntervals);
   const path = { team, job: job.id };
   const enabled = job.replicatesDone > 0;
-  // A finished job's numbers do not change; a new archive revision has new ones.
-  const stage = over ? `${job.state} ${job.archive?.revision ?? 0} ${job.replicatesDone}` : 'running';
-  const statistics = useQuery({
-    queryKey: ['statistics', job.id, stage],
-    enabled,
-    placeholderData: keepPreviousData,
-    refetchInterval: over ? false : askEveryMs,
-    staleTime: over ? Infinity : 0,
-    queryFn: async ({ signal }) => {
-      const called = await callApi(jobStatistics, { path, signal });
-      if (called.ok) return called.value;
-      if (called.problem.code === 'results_not_ready') return null;
-      throw new Error(called.problem.detail);
-    },
-  });
+  const stage = stageOf(job);
+  const { results, problem, askAgain } = useStatistics(team, job, names);
   const traces = useQuery({
     queryKey: ['traces', job.id, stage],
     enabled: enabled && job.keptTraces > 0,
@@ -57,30 +47,20 @@ export function JobResults({ team, job, names }: Props) {
       return called.ok ? called.value : null;
     },
   });
-  const results = useMemo(
-    () => (statistics.data ? resultsOf(statistics.data, names, job.timeUnit) : null),
-    [statistics.data, names, job.timeUnit],
-  );
   const chosen = results?.observables.find(({ id }) => id === observable) ?? results?.observables[0];
   const ownTraces = useMemo(() => {
     const at = traces.data?.observables.indexOf(chosen?.id ?? '') ?? -1;
     return at < 0 ? [] : traces.data!.traces.map(({ replicate, values }) => ({ replicate, values: values[at]! }));
   }, [traces.data, chosen?.id]);
 
-  if (!results || !chosen) {
-    return (
-      <NothingYet
-        job={job}
-        asked={enabled}
-        problem={statistics.error?.message}
-        onRetry={() => void statistics.refetch()}
-      />
-    );
-  }
+  if (!results || !chosen) return <NothingYet {...{ job, problem }} asked={enabled} onRetry={askAgain} />;
   const shared = { results, chosen, onObservable: setObservable };
   const time = { timeIndex: Math.min(timeIndex, results.times.length - 1), onTime: setTimeIndex };
   const contents: Record<(typeof tabIds)[number], { label: string; content: React.ReactNode }> = {
-    'time-course': { label: 'Time course', content: <TimeCourseTab {...shared} traces={ownTraces} job={job} /> },
+    'time-course': {
+      label: 'Time course',
+      content: <TimeCourseTab {...shared} traces={ownTraces} job={job} network={network} />,
+    },
     distribution: {
       label: 'Distribution',
       content: <DistributionTab {...shared} {...time} team={team} job={job} stage={stage} />,

@@ -6,11 +6,15 @@ import { observableTitle, timeCourseOption, timeCourseTable, type TimeCourse } f
 import { Figure } from '@/components/charts/Figure.tsx';
 import type { FigureContent } from '@/components/charts/figure.ts';
 import { CheckField } from '@/components/ui/Field.tsx';
+import { Notice } from '@/components/ui/Notice.tsx';
+import { Waiting } from '@/components/ui/Progress.tsx';
 import type { JobDocument } from '@/contracts/jobs.ts';
+import type { NetworkDocument } from '@/domain/network/document.ts';
 import { timeWithUnit } from './job-words.ts';
 import { NumbersTable } from './NumbersTab.tsx';
 import { allObservables, ObservableSelect } from './ObservableSelect.tsx';
 import type { NamedObservable, ObservableTrace, Results } from './results-data.ts';
+import { useMeanField } from './use-mean-field.ts';
 
 /** Traces drawn over the band. */
 const tracesDrawn = 12;
@@ -20,12 +24,16 @@ export function TimeCourseTab(props: {
   chosen: NamedObservable;
   traces: readonly ObservableTrace[];
   job: JobDocument;
+  network: NetworkDocument | null;
   onObservable: (id: string) => void;
 }) {
-  const { results, chosen, traces, job, onObservable } = props;
+  const { results, chosen, traces, job, network, onObservable } = props;
   const [together, setTogether] = useState(false);
   const [fan, setFan] = useState(true);
   const [withTraces, setWithTraces] = useState(false);
+  const [withMeanField, setWithMeanField] = useState(false);
+  const meanField = useMeanField(job, network, withMeanField);
+  const curve = meanField.curves?.observables.find(({ id }) => id === chosen.id)?.values;
   const content = useMemo((): FigureContent => {
     const { times, timeUnit, replicates } = results;
     if (together) {
@@ -44,6 +52,7 @@ export function TimeCourseTab(props: {
       replicates,
       fan,
       traces: withTraces ? traces.slice(0, tracesDrawn) : [],
+      meanField: curve,
     };
     return {
       description: caption(results, chosen),
@@ -51,7 +60,7 @@ export function TimeCourseTab(props: {
       table: () => timeCourseTable(course),
       fileStem: `${job.id}-${chosen.id}-time-course`,
     };
-  }, [results, chosen, traces, fan, withTraces, together, job.id]);
+  }, [results, chosen, traces, fan, withTraces, curve, together, job.id]);
   return (
     <>
       <div className="mb-2 flex flex-wrap items-end gap-x-6 gap-y-3">
@@ -74,10 +83,29 @@ export function TimeCourseTab(props: {
                 onChange={(event) => setWithTraces(event.target.checked)}
               />
             )}
+            {network && (
+              <CheckField
+                label="Mean field"
+                checked={withMeanField}
+                onChange={(event) => setWithMeanField(event.target.checked)}
+              />
+            )}
           </div>
         )}
       </div>
+      {meanField.solving && <Waiting>Solving the rate equations in this browser</Waiting>}
+      {meanField.problem && (
+        <Notice tone="caution" className="mb-2" title="No mean-field curve">
+          {meanField.problem}
+        </Notice>
+      )}
       <Figure {...content} />
+      {curve && !together && (
+        <p className="mt-1 text-sm text-soft">
+          The rate equations are the large-count limit, an approximation: where they leave the mean, chance matters
+          here.
+        </p>
+      )}
       <div className="mt-6">
         <NumbersTable results={results} at={results.times.length - 1} />
       </div>

@@ -29,7 +29,7 @@ export function TracesTab(props: {
       highlighted: picked,
     };
     return {
-      description: `${figure.title} in ${traces.length === 1 ? 'one replicate' : `the first ${countText(traces.length)} replicates`}${picked === null ? '' : `, replicate ${countText(picked + 1)} picked out`}, at the grid times.`,
+      description: `${figure.title} in ${traces.length === 1 ? 'one replicate' : `the first ${countText(traces.length)} replicates`}${picked === null ? '' : `, replicate ${countText(picked)} picked out`}, at the grid times.`,
       option: (theme) => tracesOption(figure, theme),
       table: () => tracesTable(figure),
       fileStem: `${job.id}-${chosen.id}-traces`,
@@ -60,7 +60,7 @@ export function TracesTab(props: {
             { value: '', label: 'None' },
             ...traces.map(({ replicate }) => ({
               value: String(replicate),
-              label: `Replicate ${countText(replicate + 1)}`,
+              label: `Replicate ${countText(replicate)}`,
             })),
           ]}
           onChange={(event) => setPicked(event.target.value === '' ? null : Number(event.target.value))}

@@ -44,7 +44,7 @@ export function failureWords({ failure, timeUnit }: Pick<JobDocument, 'failure' 
   if (failure === null) return null;
   const { kind, replicate, reaction, time } = failure;
   const where = reaction === null ? '' : ` (reaction ${reaction})`;
-  return `In replicate ${countText(replicate + 1)} at time ${timeWithUnit(time, timeUnit)}, ${failureKinds[kind]}${where}.`;
+  return `In replicate ${countText(replicate)} at time ${timeWithUnit(time, timeUnit)}, ${failureKinds[kind]}${where}.`;
 }
 
 export const resultCaution =
