@@ -72,6 +72,7 @@ const createSession: ApiHandler = ({ store, baseUrl }, { form }) => {
     store.state.lines[id] = lines;
   } else session.setup_intent = makeSetup(store, customer, metadataOf(formOf(form, 'setup_intent_data') ?? {})).id;
   store.state.sessions[id] = session;
+  store.state.openedAtOffset[id] = store.state.clockOffsetSeconds;
   return session;
 };
 

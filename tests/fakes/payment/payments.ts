@@ -53,7 +53,7 @@ export class Payments {
     intent.payment_method = makeDebit(this.store, null).id;
     intent.status = 'processing';
     this.webhooks.emit('payment_intent.processing', intent);
-    this.store.state.debits[intent.id] = { settlesAt: this.store.now() + debitSettlesAfterSeconds, succeeds };
+    this.store.state.debits[intent.id] = { settlesAt: this.store.movedNow() + debitSettlesAfterSeconds, succeeds };
     this.#complete(session, 'unpaid');
     return 'processing';
   }
@@ -62,12 +62,14 @@ export class Payments {
   passTime(): void {
     const { state } = this.store;
     for (const [intentId, { settlesAt, succeeds }] of Object.entries(state.debits)) {
-      if (settlesAt > this.store.now()) continue;
+      if (settlesAt > this.store.movedNow()) continue;
       delete state.debits[intentId];
       this.#settleDebit(intentId, succeeds);
     }
-    for (const session of Object.values(state.sessions))
-      if (session.status === 'open' && session.expires_at <= this.store.now()) this.expire(session);
+    for (const session of Object.values(state.sessions)) {
+      const moved = this.store.movedNow() - (state.openedAtOffset[session.id] ?? 0);
+      if (session.status === 'open' && session.expires_at <= moved) this.expire(session);
+    }
   }
 
   #settleDebit(intentId: string, succeeds: boolean): void {

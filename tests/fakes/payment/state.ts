@@ -125,8 +125,10 @@ export interface Switches {
 
 export interface State {
   count: number;
-  /** How far the movable clock is ahead of the real one. */
+  /** How far the movable clock is ahead of the real one. It moves what waits; dates on objects stay real ones. */
   clockOffsetSeconds: number;
+  /** How far it was ahead when a session was opened. */
+  openedAtOffset: Record<string, number>;
   customers: Record<string, FakeCustomer>;
   sessions: Record<string, FakeSession>;
   lines: Record<string, Line[]>;
@@ -150,6 +152,7 @@ export const calm: Switches = { duplicate: 0, delayMs: 0, reorder: false, lose: 
 const empty = (): State => ({
   count: 0,
   clockOffsetSeconds: 0,
+  openedAtOffset: {},
   customers: {},
   sessions: {},
   lines: {},
@@ -181,9 +184,14 @@ export class Store {
     renameSync(`${this.#file}.new`, this.#file);
   }
 
-  /** Seconds since the epoch on the fake's movable clock. */
+  /** Seconds since the epoch. */
   now(): number {
-    return Math.floor(Date.now() / 1000) + this.state.clockOffsetSeconds;
+    return Math.floor(Date.now() / 1000);
+  }
+
+  /** Seconds since the epoch on the movable clock. */
+  movedNow(): number {
+    return this.now() + this.state.clockOffsetSeconds;
   }
 
   id(prefix: string): string {
