@@ -22,7 +22,7 @@ export interface GridCellProps {
 }
 
 const fieldClass =
-  'block h-9 w-full rounded-none border-0 bg-transparent px-2 text-sm text-ink placeholder:text-soft/70 ' +
+  'block h-9 w-full rounded-none border-0 bg-transparent px-2 text-sm text-ink placeholder:italic placeholder:text-soft ' +
   'focus-visible:bg-panel focus-visible:outline focus-visible:outline-2 focus-visible:-outline-offset-2 focus-visible:outline-bromo';
 
 const marks = { error: '✕', warning: '▲', information: '' } as const;
@@ -68,7 +68,7 @@ export const GridCell = memo(function GridCell(props: GridCellProps) {
           ))}
         </select>
       ) : column.kind === 'choice' ? (
-        <span className="flex h-9 items-center px-2 text-sm text-soft/70" aria-hidden="true">
+        <span className="flex h-9 items-center px-2 text-sm italic text-soft" aria-hidden="true">
           {column.choices?.[0]}
         </span>
       ) : (
