@@ -62,6 +62,9 @@ export function openDatabase(file: string): Sequelize {
   return sequelize;
 }
 
+// Development reloads modules: fresh model classes are bound to the connection that is already open.
+if (house.buretteDatabase) defineModels(house.buretteDatabase);
+
 /** The open database; throws when there is none. */
 export function database(): Sequelize {
   if (!house.buretteDatabase) throw new Error('No database is open in this process.');

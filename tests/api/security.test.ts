@@ -137,7 +137,7 @@ describe('a body', () => {
       'a prototype key',
       '{"__proto__":{"operator":true},"email":"a@b.example","password":"x"}',
       'application/json',
-      401,
+      422,
     ],
   ])('of %s gets a problem document', async (_, body, type, status) => {
     const answer = await callEndpoint({ ...signIn, body, headers: { ...signIn.headers, 'Content-Type': type } });

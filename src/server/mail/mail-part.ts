@@ -1,4 +1,5 @@
 /** Empties the outbox beside the requests: at start, whenever something is queued, and when a retry falls due. */
+import { AsyncResource } from 'node:async_hooks';
 import { log } from '../log.ts';
 import type { Part } from '../part.ts';
 import { mailTransport } from './mail-transport.ts';
@@ -42,7 +43,8 @@ export const mailPart: Part = {
       running = round();
     };
 
-    onMailQueued(wake);
+    // In this part's own context: a request that queues a mail lends it neither its log nor its transaction.
+    onMailQueued(AsyncResource.bind(wake));
     wake();
     return async () => {
       stopping = true;
