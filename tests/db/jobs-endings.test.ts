@@ -1,4 +1,5 @@
 /** How jobs end other than by being let run: the cap, cancelling, the model's failure, our failure, a restart. */
+import { mkdir, rm, writeFile } from 'node:fs/promises';
 import { afterEach, beforeAll, describe, expect, it } from 'vitest';
 import { inWriteTransaction } from '@db/in-write-transaction.ts';
 import { Batch, Job, Quote, Segment } from '@db/models/jobs.ts';
@@ -10,6 +11,7 @@ import { batchTask, networkOf } from '@/server/jobs/batch-task.ts';
 import { cancelJob } from '@/server/jobs/cancel-job.ts';
 import { setExecutor } from '@/server/jobs/executor.ts';
 import { extendJob } from '@/server/jobs/extend-job.ts';
+import { batchFileName, jobFile, jobFolder } from '@/server/jobs/job-folder.ts';
 import { launchJob } from '@/server/jobs/launch-job.ts';
 import { readStatistics } from '@/server/jobs/read-statistics.ts';
 import { readBalance } from '@/server/ledger/read-balance.ts';
@@ -232,6 +234,54 @@ describe('work lost on our side', () => {
       chargedMicrocredits: undisturbed.chargedMicrocredits,
       events: undisturbed.events,
     });
+    await expectReconciled(bench, job);
+  });
+});
+
+describe('files that go wrong', () => {
+  it('are computed again when they were damaged or lost, and the results are the same', async () => {
+    const bench = await makeBench();
+    const undisturbed = await letRun(await prepare(bench, 50));
+    const id = await prepare(bench, 50);
+    stop = await startJobs(inProcessExecutor({ capacity: 1 }));
+    await whenJob(id, ({ replicatesDone }) => replicatesDone >= 150);
+    await halt();
+    forget(id);
+    await writeFile(jobFile(id, batchFileName(0)), 'not what was computed');
+    await rm(jobFile(id, batchFileName(2)));
+    const job = await letRun(id);
+    expect(job).toMatchObject({
+      state: 'done',
+      resultsDigest: undisturbed.resultsDigest,
+      chargedMicrocredits: undisturbed.chargedMicrocredits,
+    });
+    await expectReconciled(bench, job);
+  });
+
+  it('are written once the disk takes them again, and nothing is charged before', async () => {
+    const bench = await makeBench();
+    const id = await prepare(bench, 100);
+    // A file where the folder should be: every write fails, as on a full disk.
+    const obstacle = jobFile(id, 'batches');
+    await mkdir(jobFolder(id), { recursive: true });
+    await writeFile(obstacle, '');
+    let computed = 0;
+    let enough = (): void => undefined;
+    const severalComputed = new Promise<void>((resolve) => (enough = resolve));
+    const executor = inProcessExecutor({
+      around: async (_, run) => {
+        const answer = await run();
+        if (++computed >= 3) enough();
+        return answer;
+      },
+    });
+    stop = await startJobs(executor);
+    await severalComputed;
+    expect((await Job.findByPk(id))!).toMatchObject({ replicatesDone: 0, chargedMicrocredits: 0 });
+    await rm(obstacle);
+    const job = await whenOver(id);
+    await halt();
+    expect(job).toMatchObject({ state: 'done', replicatesDone: 1_000 });
     await expectReconciled(bench, job);
   });
 });

@@ -51,7 +51,7 @@ async function call<T>(route: string, body?: unknown): Promise<T> {
     body: body === undefined ? null : JSON.stringify(body),
   });
   const text = await response.text();
-  if (!response.ok) throw new Error(`${route}: ${response.status} ${text}`);
+  if (!response.ok) throw new Error(`${route}: ${response.status} ${text}\n${server.log}`);
   return JSON.parse(text) as T;
 }
 
