@@ -2,6 +2,9 @@
 import type { KernelName } from './ensemble.ts';
 import type { PreparedNetwork } from './kernel/prepared-network.ts';
 
-export function chooseKernel(_prepared: PreparedNetwork): KernelName {
-  return 'direct-scalar';
+/** Up to this many reactions all propensities are worked out at every firing, in SIMD lanes. */
+export const largestSimdNetwork = 64;
+
+export function chooseKernel({ reactions }: PreparedNetwork): KernelName {
+  return reactions.length <= largestSimdNetwork ? 'direct-simd' : 'direct-scalar';
 }

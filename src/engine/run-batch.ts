@@ -4,7 +4,7 @@ import { chooseKernel } from './choose-kernel.ts';
 import type { BatchResult, BatchTask, KernelName, ModelFailure, Trace } from './ensemble.ts';
 import { gridTimes, largestHorizon } from './exact/direct-method.ts';
 import { referenceRunner } from './exact/reference-runner.ts';
-import { directScalarRunner } from './kernel/direct-runner.ts';
+import { directScalarRunner, directSimdRunner } from './kernel/direct-runner.ts';
 import { constantValues, prepareNetwork } from './kernel/prepare-network.ts';
 import { streamBase } from './random/stream-key.ts';
 import { groupSlots, modelFailure, type GroupOutcome, type GroupRunner, type PointTask } from './replicate-group.ts';
@@ -45,6 +45,8 @@ function runnerOf(kernel: KernelName, point: PointTask): GroupRunner | Promise<G
       return referenceRunner(point);
     case 'direct-scalar':
       return directScalarRunner(point);
+    case 'direct-simd':
+      return directSimdRunner(point);
     default:
       throw new RangeError(`the kernel ${kernel} is not part of this engine version`);
   }

@@ -15,7 +15,7 @@ import {
   species,
 } from '@tests/factories/networks.ts';
 
-const kernels: KernelName[] = ['reference', 'direct-scalar'];
+const kernels: KernelName[] = ['reference', 'direct-scalar', 'direct-simd'];
 const bytes = (summary: { encode(): Uint8Array }): string => Buffer.from(summary.encode()).toString('base64');
 
 /** Two-species network with a named observable that is not whole. */

@@ -17,7 +17,7 @@ async function outcome(task: BatchTask, kernel: KernelName): Promise<unknown> {
   };
 }
 
-const generatedKernels: KernelName[] = ['direct-scalar'];
+const generatedKernels: KernelName[] = ['direct-scalar', 'direct-simd'];
 
 describe.each(generatedKernels)('%s', (kernel) => {
   for (const tame of [true, false]) {

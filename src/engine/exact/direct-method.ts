@@ -13,8 +13,9 @@
  *    replicate, and so does a total above 1e300.
  * 4. Draws, always both and in this order, each from the upper 52 bits of one output, u = bits · 2⁻⁵²:
  *    waiting time −ln(1 − u) / total, with the logarithm of kernel/elementary/logarithm.ts; choice u · total.
- * 5. Time. t' = t − ln(1 − u) / total; infinity where the total is 0. The state is written at every grid time g < t' that is
- *    not yet written; grid time i is (i · horizon) / n. After the last grid time the replicate ends.
+ * 5. Time. t' = t − ln(1 − u) / total; infinity where the total is 0. The state is written at grid time 0 before the first
+ *    firing, and at every other grid time g < t' that is not yet written; grid time i is (i · horizon) / n. After the last grid
+ *    time the replicate ends.
  * 6. A replicate that has fired as often as its event limit allows fails here.
  * 7. Choice. The first k with p_k > u · total. Its changes are applied; a count above 2^31 − 1 fails the replicate. Time becomes
  *    t', and so on from 2.

@@ -75,7 +75,7 @@ export function runReferenceReplicate(task: ReferenceTask): ReferenceReplicate {
     const waitingDraw = uniform52(generator.next());
     const choiceDraw = uniform52(generator.next());
     const newTime = total === 0 ? Infinity : time - logarithm(1 - waitingDraw) / total;
-    while (gridTimes[replicate.counts.length]! < newTime) {
+    while (replicate.counts.length === 0 || gridTimes[replicate.counts.length]! < newTime) {
       replicate.counts.push(prepared.countObservables.map((species) => counts[species]!));
       replicate.reals.push(prepared.realObservables.map((term) => evaluateTerm(term, state)));
       if (replicate.counts.length === gridTimes.length) return replicate;

@@ -6,6 +6,8 @@ export interface CompiledKernel {
   memory: WebAssembly.Memory;
   /** Goes on for at most so many firings; answers a `status` of memory-layout.ts. */
   run(firings: number): number;
+  /** The SIMD kernel: advances all lanes by at most so many steps. Absent in scalar modules. */
+  runLanes?: (steps: number) => number;
   /** Whose task stands in the memory: whoever runs next writes its own first. */
   owner: unknown;
 }
@@ -17,7 +19,8 @@ async function compile(build: () => ModuleBuilder): Promise<CompiledKernel> {
   const module = await WebAssembly.compile(encodeModule(build()));
   const memory = new WebAssembly.Memory({ initial: 1 });
   const instance = await WebAssembly.instantiate(module, { env: { memory } });
-  return { memory, run: instance.exports.run as CompiledKernel['run'], owner: null };
+  const { run, runLanes } = instance.exports as Pick<CompiledKernel, 'run' | 'runLanes'>;
+  return { memory, run, runLanes, owner: null };
 }
 
 /** `key` names the code that `build` makes. A memory may be used by one synchronous run at a time. */

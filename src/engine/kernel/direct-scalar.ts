@@ -4,6 +4,7 @@
  */
 import { emitLogarithmOfNormal } from './elementary/logarithm.ts';
 import { ExpressionEmitter } from './emit-expression.ts';
+import { emitGridTime, emitRecording, emitReplicateKey, emitStoreFirings } from './emit-recording.ts';
 import { emitNext, emitSeeding, generatorLocals, onePlusUniform } from './emit-random.ts';
 import { scalarLanes as lanes } from './lanes.ts';
 import { control, largestCount, largestTotal, status, structureLayout } from './memory-layout.ts';
@@ -83,9 +84,8 @@ class State {
  * `run(events: i32): i32` goes on for at most so many firings and answers a `status`. Called in chunks, so that the
  * runtime can change to optimised code between calls and the host can look at its budgets.
  */
-export function directScalarModule(prepared: PreparedNetwork): ModuleBuilder {
+export function directScalarModule(prepared: PreparedNetwork, module = new ModuleBuilder()): ModuleBuilder {
   const layout = structureLayout(prepared);
-  const module = new ModuleBuilder();
   const fn = module.function('run', [['chunk', 'i32']], 'i32', { exported: true });
   const chunk = fn.parameter(0, 'i32');
   const time = fn.local('f64', 'time');
@@ -108,9 +108,6 @@ export function directScalarModule(prepared: PreparedNetwork): ModuleBuilder {
     assigned: (index) => get(assigned[index]!),
   });
   const field = (at: number): Node<'i32'> => memory('i32.load', at, address);
-  const gridTime = (): Node<'f64'> =>
-    memory('f64.load', 0, op('i32.add', field(control.gridTimes), op('i32.shl', get(gridIndex), i32(3))));
-
   const save = (): Node[] => [
     memory('f64.store', control.time, address, get(time)),
     memory('i32.store', control.gridIndex, address, get(gridIndex)),
@@ -127,22 +124,10 @@ export function directScalarModule(prepared: PreparedNetwork): ModuleBuilder {
 
   const nextReplicate = label('nextReplicate');
   const nextEvent = label('nextEvent');
+  const nextGridPoint = label('nextGridPoint');
   const begin: Node[] = [
     when(op('i32.eq', get(slot), field(control.slotCount)), [...save(), giveBack(i32(status.finished))]),
-    ...emitSeeding(
-      module,
-      fn,
-      generator.state,
-      op(
-        'i64.add',
-        op(
-          'i64.add',
-          memory('i64.load', control.streamBase, address),
-          memory('i64.load', control.firstReplicate, address),
-        ),
-        op('i64.extend_i32_u', get(slot)),
-      ),
-    ),
+    ...emitSeeding(module, fn, generator.state, emitReplicateKey(slot)),
     ...state.reset(),
     set(time, f64(0)),
     set(firings, f64(0)),
@@ -176,31 +161,25 @@ export function directScalarModule(prepared: PreparedNetwork): ModuleBuilder {
     loop(
       nextReplicate,
       when(op('i32.eqz', field(control.active)), begin),
-      set(nextGridTime, gridTime()),
+      set(nextGridTime, emitGridTime(gridIndex)),
       loop(
         nextEvent,
         ...propensities,
         ...advance,
         when(op('i32.eqz', op('f64.le', get(newTime), get(nextGridTime))), [
-          ...emitRecording(prepared, fn, expressions, {
-            newTime,
-            nextGridTime,
-            gridIndex,
-            slot,
-            gridTime,
-            species: (index) => state.get(index),
-            finish: [
-              memory(
-                'f64.store',
-                0,
-                op('i32.add', field(control.events), op('i32.shl', get(slot), i32(3))),
-                get(firings),
-              ),
+          loop(
+            nextGridPoint,
+            ...emitRecording(prepared, fn, expressions, (index) => state.get(index), gridIndex, slot),
+            set(gridIndex, op('i32.add', get(gridIndex), i32(1))),
+            when(op('i32.gt_s', get(gridIndex), field(control.gridIntervals)), [
+              emitStoreFirings(slot, get(firings)),
               set(slot, op('i32.add', get(slot), i32(1))),
               memory('i32.store', control.active, address, i32(0)),
               branch(nextReplicate),
-            ],
-          }),
+            ]),
+            set(nextGridTime, emitGridTime(gridIndex)),
+            branchIf(nextGridPoint, op('f64.gt', get(newTime), get(nextGridTime))),
+          ),
         ]),
         when(op('f64.ge', get(firings), get(eventLimit)), stop(status.eventLimit, newTime)),
         set(threshold, op('f64.mul', get(drawn), get(total))),
@@ -262,60 +241,6 @@ function emitPropensities(
     ),
   );
   return { statements, prefixes };
-}
-
-interface Recording {
-  newTime: Local<'f64'>;
-  nextGridTime: Local<'f64'>;
-  gridIndex: Local<'i32'>;
-  slot: Local<'i32'>;
-  gridTime: () => Node<'f64'>;
-  species: (index: number) => Node<'f64'>;
-  /** What happens after the last grid time; must leave the loop. */
-  finish: Node[];
-}
-
-/** Writes the state at every grid time that lies before the new time. */
-function emitRecording(
-  prepared: PreparedNetwork,
-  fn: FunctionBuilder,
-  expressions: ExpressionEmitter<'scalar'>,
-  recording: Recording,
-): Node[] {
-  const { newTime, nextGridTime, gridIndex, slot } = recording;
-  const place = fn.local('i32', 'place');
-  const value = fn.local('f64', 'value');
-  const again = label('nextGridPoint');
-  const field = (at: number): Node<'i32'> => memory('i32.load', at, address);
-  /** Address of this slot in the first cell of the grid point; `scale` is 1 for counts and 2 for reals. */
-  const firstCell = (table: number, cells: number, shift: number): Node<'i32'> =>
-    op(
-      'i32.add',
-      op('i32.add', field(table), op('i32.shl', get(slot), i32(2 + shift))),
-      op('i32.mul', op('i32.mul', get(gridIndex), i32(cells)), op('i32.shl', field(control.cellBytes), i32(shift))),
-    );
-  const counts = prepared.countObservables.flatMap((species) => [
-    memory('i32.store', 0, get(place), op('i32.trunc_sat_f64_s', recording.species(species))),
-    set(place, op('i32.add', get(place), field(control.cellBytes))),
-  ]);
-  const reals = prepared.realObservables.flatMap((term) => [
-    ...expressions.assign(value, term),
-    memory('f64.store', 0, get(place), get(value)),
-    set(place, op('i32.add', get(place), op('i32.shl', field(control.cellBytes), i32(1)))),
-  ]);
-  return [
-    loop(
-      again,
-      ...(counts.length > 0
-        ? [set(place, firstCell(control.counts, prepared.countObservables.length, 0)), ...counts]
-        : []),
-      ...(reals.length > 0 ? [set(place, firstCell(control.reals, prepared.realObservables.length, 1)), ...reals] : []),
-      set(gridIndex, op('i32.add', get(gridIndex), i32(1))),
-      when(op('i32.gt_s', get(gridIndex), field(control.gridIntervals)), recording.finish),
-      set(nextGridTime, recording.gridTime()),
-      branchIf(again, op('f64.gt', get(newTime), get(nextGridTime))),
-    ),
-  ];
 }
 
 /** Applies the chosen reaction's changes; a count above the largest leaves through `overflow` with the state as before. */

@@ -55,7 +55,7 @@ export class ExpressionEmitter<W extends Width> {
       );
       if (holds.length > 0) {
         const possible = holds.reduce((all, one) => lanes.both(all, one));
-        value = lanes.choose(possible, value, lanes.real(0));
+        value = lanes.orZero(possible, value);
       }
     }
     return [...this.#take(), set(target, value)];

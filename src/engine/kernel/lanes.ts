@@ -44,6 +44,8 @@ export interface Lanes<W extends Width> {
   truthAsReal(truth: Node<Truth<W>>): Node<Real<W>>;
   /** `yes` where true, `no` elsewhere; both are evaluated. */
   choose(truth: Node<Truth<W>>, yes: Node<Real<W>>, no: Node<Real<W>>): Node<Real<W>>;
+  /** `value` where true, 0 elsewhere. */
+  orZero(truth: Node<Truth<W>>, value: Node<Real<W>>): Node<Real<W>>;
   word(value: bigint): Node<Word<W>>;
   addWords: Binary<Word<W>>;
   andWords: Binary<Word<W>>;
@@ -89,6 +91,7 @@ export const scalarLanes: Lanes<'scalar'> = {
   not: (a) => op('i32.eqz', a),
   truthAsReal: (truth) => op('f64.convert_i32_u', truth),
   choose: (truth, yes, no) => select(yes, no, truth),
+  orZero: (truth, value) => select(value, f64(0), truth),
   word: i64,
   addWords: (a, b) => op('i64.add', a, b),
   andWords: (a, b) => op('i64.and', a, b),
@@ -126,6 +129,7 @@ export const vectorLanes: Lanes<'vector'> = {
   not: (a) => op('v128.not', a),
   truthAsReal: (truth) => op('v128.and', truth, f64x2(1)),
   choose: (truth, yes, no) => op('v128.bitselect', yes, no, truth),
+  orZero: (truth, value) => op('v128.and', truth, value),
   word: i64x2,
   addWords: (a, b) => op('i64x2.add', a, b),
   andWords: (a, b) => op('v128.and', a, b),
