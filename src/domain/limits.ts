@@ -8,6 +8,9 @@ export const limits = {
   expressionCharacters: 4_000,
   expressionDepth: 100,
   stoichiometry: 1_000,
+  changesPerNetwork: 1_000,
+  /** Of all timed changes of a network together. */
+  changeTimes: 10_000,
   initialCount: 2 ** 31 - 1,
   identifierCharacters: 100,
   nameCharacters: 200,

@@ -15,12 +15,19 @@ const reactionsLookedInto = 2_000;
 
 /** Advice on `document`, of which `network` is the resolved form without overrides. */
 export function adviseOnNetwork(document: NetworkDocument, network: ResolvedNetwork): Problem[] {
+  // What a timed or triggered change sets is neither conserved nor idle for good.
+  const set = new Set(
+    (network.changes ?? []).flatMap(({ sets }) =>
+      sets.flatMap(({ target }) => (target.kind === 'species' ? [target.index] : [])),
+    ),
+  );
   const advice = [...neverFiring(network), ...idleConstants(network), ...badStarts(network), ...shadowing(document)];
   if (network.reactions.length > reactionsLookedInto) {
     const message = `With more than ${reactionsLookedInto.toLocaleString('en')} reactions, conserved totals, growth and laws without reactants are not looked into.`;
     return [...advice, information('reactions', 'not_looked_into', message)];
   }
-  const totals = conservedTotals(network);
+  const totals =
+    conservedTotals(network)?.filter(({ terms }) => terms.every(({ species }) => !set.has(species))) ?? null;
   return [
     ...advice,
     ...guarded(network),
@@ -45,6 +52,7 @@ function neverFiring(network: ResolvedNetwork): Problem[] {
 }
 
 function idleConstants(network: ResolvedNetwork): Problem[] {
+  if ((network.changes ?? []).some(({ sets }) => sets.some(({ target }) => target.kind === 'parameter'))) return [];
   const parameters = parameterValuesAt(
     network,
     network.species.map(({ initialCount }) => initialCount),

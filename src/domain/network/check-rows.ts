@@ -22,6 +22,7 @@ export function checkSizes(document: NetworkDocument): Problem[] {
     ],
     ['assignmentRules', document.assignmentRules?.length ?? 0, limits.parametersPerNetwork, 'assignment rules'],
     ['observables', document.observables?.length ?? 0, limits.speciesPerNetwork, 'observables'],
+    ['changes', document.changes?.length ?? 0, limits.changesPerNetwork, 'changes'],
   ];
   return sizes
     .filter(([, count, most]) => count > most)
@@ -125,6 +126,7 @@ function checkIds(document: NetworkDocument): Problem[] {
   check(document.parameters, 'parameters', bearers);
   check(document.reactions, 'reactions', bearers);
   check(document.observables, 'observables', bearers);
+  check(document.changes, 'changes', bearers);
   document.reactions.forEach(({ localParameters }, index) =>
     check(localParameters, `reactions[${index}].localParameters`, new Map()),
   );

@@ -1,5 +1,5 @@
 /** The readable difference between two networks: which rows came, went or changed, and in which field. */
-import type { NetworkDocument } from './document.ts';
+import type { ChangeMoment, NetworkDocument } from './document.ts';
 import { normaliseDocument } from './normalise-document.ts';
 
 export type RowKind =
@@ -10,7 +10,8 @@ export type RowKind =
   | 'assignment rule'
   | 'reaction'
   | 'local parameter'
-  | 'observable';
+  | 'observable'
+  | 'change';
 
 export interface FieldChange {
   /** In words: “initial count”, “equation”, “rate law”. */
@@ -66,6 +67,7 @@ const kinds: RowKind[] = [
   'reaction',
   'local parameter',
   'observable',
+  'change',
 ];
 const keyOf = ({ kind, id }: Row): string => `${kind} ${id}`;
 
@@ -100,7 +102,16 @@ function rowsOf(document: NetworkDocument): Row[] {
       add('local parameter', `${id}.${local.id}`, { name: local.name, value: local.value, unit: local.unit });
   }
   for (const { id, name, expression } of network.observables ?? []) add('observable', id, { name, expression });
+  for (const { id, name, when, assignments } of network.changes ?? []) {
+    const sets = assignments.map(({ variable, expression }) => `${variable} = ${expression}`).join('; ');
+    add('change', id, { name, when: wordsForMoment(when), sets });
+  }
   return rows;
+}
+
+function wordsForMoment(when: ChangeMoment): string {
+  if (when.kind === 'condition') return `when ${when.condition}${when.happensAtStart ? ', at the start too' : ''}`;
+  return `at ${when.time}${when.every === undefined ? '' : `, every ${when.every}, ${when.times ?? 1} times`}`;
 }
 
 function fields(values: Record<string, string | number | boolean | null | undefined>): Fields {

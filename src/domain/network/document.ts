@@ -64,6 +64,32 @@ export interface ObservableDocument {
   expression: string;
 }
 
+/** When a change happens. Times are in the network's unit of time, from 0 up. */
+export type ChangeMoment =
+  /**
+   * At `time`, and then `times` times in all, `every` apart (once when these are left out). `time` and `every` are
+   * expressions of parameters and compartments, so that scenarios can move a dose.
+   */
+  | { kind: 'time'; time: string; every?: string | undefined; times?: number | undefined }
+  /**
+   * Whenever `condition` becomes true: looked at after each firing and each change. Where it holds at time 0 already,
+   * `happensAtStart` says whether that counts as becoming true (default: no).
+   */
+  | { kind: 'condition'; condition: string; happensAtStart?: boolean | undefined };
+
+/**
+ * Sets counts or parameters at a time or on a condition: a dose, a wash-out, a switch. All expressions of a change are
+ * worked out before any is put in place. Changes at one moment happen one after the other in the document's order.
+ * Screens say “timed change” and “triggered change”, never “event”, which is a firing.
+ */
+export interface ChangeDocument {
+  id: Identifier;
+  name?: string | undefined;
+  when: ChangeMoment;
+  /** Species (in what their id means: count or concentration) and parameters; none that a rule sets. At least one. */
+  assignments: { variable: Identifier; expression: string }[];
+}
+
 export interface NetworkDocument {
   /** Unit of time in words, for axes and captions only: "s", "h", "day". */
   timeUnit?: string | undefined;
@@ -73,6 +99,7 @@ export interface NetworkDocument {
   assignmentRules?: AssignmentRuleDocument[] | undefined;
   reactions: ReactionDocument[];
   observables?: ObservableDocument[] | undefined;
+  changes?: ChangeDocument[] | undefined;
 }
 
 /** Values that a scenario or sweep point puts in place of the document's own. */

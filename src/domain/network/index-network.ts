@@ -52,6 +52,16 @@ export function indexNetwork(parsed: ParsedNetwork, overrides: Overrides, ruleOr
   };
 }
 
+/** Resolves expressions outside reactions against a network that `indexNetwork` made of `parsed`. */
+export function expressionResolver(
+  parsed: ParsedNetwork,
+  network: ResolvedNetwork,
+): (expression: Expression) => Expression {
+  const indices = (rows: { id: string }[]): Index => new Map(rows.map(({ id }, index) => [id, index]));
+  const leaf = leafResolver(parsed, indices(network.species), indices(network.parameters));
+  return (expression) => resolve(expression, leaf);
+}
+
 const resolve = (expression: Expression, leaf: (id: string) => Expression): Expression =>
   mapLeaves(expression, (node) => (node.kind === 'symbol' ? leaf(node.id) : node));
 

@@ -1,6 +1,8 @@
 /** The one canonical form of a document, so that equal networks have equal JSON and therefore equal content hashes. */
 import type {
   AssignmentRuleDocument,
+  ChangeDocument,
+  ChangeMoment,
   CompartmentDocument,
   NetworkDocument,
   ObservableDocument,
@@ -25,6 +27,8 @@ export function normaliseDocument(document: NetworkDocument): NetworkDocument {
     assignmentRules: (document.assignmentRules ?? []).map(assignmentRule),
     reactions: document.reactions.map(reaction),
     observables: (document.observables ?? []).map(observable),
+    // Left out when there are none, so that networks from before changes existed keep their hash.
+    ...((document.changes ?? []).length === 0 ? {} : { changes: document.changes!.map(change) }),
   };
 }
 
@@ -78,6 +82,21 @@ const observable = ({ id, name, expression }: ObservableDocument): ObservableDoc
   ...optional('name', name),
   expression: expression.trim(),
 });
+
+const change = ({ id, name, when, assignments }: ChangeDocument): ChangeDocument => ({
+  id: id.trim(),
+  ...optional('name', name),
+  when: moment(when),
+  assignments: assignments.map(assignmentRule),
+});
+
+function moment(when: ChangeMoment): ChangeMoment {
+  if (when.kind === 'condition') {
+    return { kind: 'condition', condition: when.condition.trim(), happensAtStart: when.happensAtStart ?? false };
+  }
+  const { time, every, times } = when;
+  return { kind: 'time', time: time.trim(), ...optional('every', every), ...(times === undefined ? {} : { times }) };
+}
 
 function canonicalEquation(text: string): string {
   const parsed = parseEquation(text);

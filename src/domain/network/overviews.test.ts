@@ -33,6 +33,7 @@ describe('summariseNetwork', () => {
       compartments: 1,
       assignmentRules: 0,
       observables: 0,
+      changes: 0,
       initialMolecules: 12,
       text: '2 species · 2 reactions · 2 parameters',
     });

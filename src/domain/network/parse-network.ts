@@ -14,7 +14,17 @@ export interface ParsedReaction {
   localParameters: Map<string, ParameterDocument>;
 }
 
-export type NameKind = 'species' | 'parameter' | 'compartment' | 'reaction' | 'observable';
+export interface ParsedChange {
+  /** Of a timed change; `every` is null when it happens once, too. */
+  time: Expression | null;
+  every: Expression | null;
+  /** Of a triggered change. */
+  condition: Expression | null;
+  /** By index of its assignments. */
+  values: (Expression | null)[];
+}
+
+export type NameKind = 'species' | 'parameter' | 'compartment' | 'reaction' | 'observable' | 'change';
 
 export interface ParsedNetwork {
   document: NetworkDocument;
@@ -24,6 +34,8 @@ export interface ParsedNetwork {
   /** By index of the document's assignment rules and observables. */
   rules: (Expression | null)[];
   observables: (Expression | null)[];
+  /** By index of the document's changes. */
+  changes: ParsedChange[];
   /** Index of the rule of each assigned id. */
   ruleOf: Map<string, number>;
   /** Texts that could not be read. */
@@ -64,11 +76,23 @@ export function parseNetwork(document: NetworkDocument): ParsedNetwork {
   const observables = (document.observables ?? []).map((observable, index) =>
     expression(observable.expression, `observables[${index}].expression`),
   );
+  const changes = (document.changes ?? []).map(({ when, assignments }, index): ParsedChange => {
+    const path = `changes[${index}]`;
+    const isTimed = when.kind === 'time';
+    return {
+      time: isTimed ? expression(when.time, `${path}.when.time`) : null,
+      every: isTimed && when.every !== undefined ? expression(when.every, `${path}.when.every`) : null,
+      condition: isTimed ? null : expression(when.condition, `${path}.when.condition`),
+      values: assignments.map(({ expression: text }, row) =>
+        expression(text, `${path}.assignments[${row}].expression`),
+      ),
+    };
+  });
   const ruleOf = new Map<string, number>();
   document.assignmentRules?.forEach(({ variable }, index) => {
     if (!ruleOf.has(variable)) ruleOf.set(variable, index);
   });
-  return { document, names: namesOf(document), reactions, rules, observables, ruleOf, problems };
+  return { document, names: namesOf(document), reactions, rules, observables, changes, ruleOf, problems };
 }
 
 function namesOf(document: NetworkDocument): ParsedNetwork['names'] {
@@ -82,5 +106,6 @@ function namesOf(document: NetworkDocument): ParsedNetwork['names'] {
   add('parameter', document.parameters);
   add('reaction', document.reactions);
   add('observable', document.observables);
+  add('change', document.changes);
   return names;
 }

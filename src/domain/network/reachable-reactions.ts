@@ -2,12 +2,15 @@
 import type { ResolvedNetwork } from './resolved.ts';
 
 /**
- * Indices of reactions that can never fire. Sound, not complete: a species that some reachable reaction makes is taken
- * to reach any count, one that none makes to keep at most its initial count; laws are not looked into. Each round adds
+ * Indices of reactions that can never fire. Sound, not complete: a species that some reachable reaction makes, or a
+ * change sets, is taken to reach any count, one that none makes to keep at most its initial count; laws are not looked into. Each round adds
  * at least one reaction, and a reaction is looked at again only when one of its reactants became available: linear.
  */
 export function unreachableReactions(network: ResolvedNetwork): number[] {
   const most = network.species.map(({ initialCount }) => initialCount);
+  for (const { sets } of network.changes ?? []) {
+    for (const { target } of sets) if (target.kind === 'species') most[target.index] = Infinity;
+  }
   const usersOf = network.species.map((): number[] => []);
   network.reactions.forEach(({ reactants }, index) =>
     reactants.forEach(({ species }) => usersOf[species]!.push(index)),

@@ -1,9 +1,11 @@
 /** Turns a document into the indexed network that the engine runs, or into the errors that keep it from running. */
+import { checkChanges } from './check-changes.ts';
 import { checkOverrides } from './check-overrides.ts';
 import { checkReferences, ruleUses } from './check-references.ts';
 import { checkRows, checkSizes } from './check-rows.ts';
 import type { NetworkDocument, Overrides, Problem } from './document.ts';
 import { evaluateExpression } from './evaluate-expression.ts';
+import { indexChanges } from './index-changes.ts';
 import { indexNetwork } from './index-network.ts';
 import { orderAssignmentRules } from './order-assignment-rules.ts';
 import { parameterValuesAt } from './parameter-values.ts';
@@ -27,20 +29,22 @@ export function resolveNetwork(document: NetworkDocument, overrides: Overrides =
     ...checkRows(document),
     ...parsed.problems,
     ...checkReferences(parsed),
+    ...checkChanges(parsed),
     ...checkOverrides(parsed, overrides),
   ];
   const ordered = orderAssignmentRules(ruleUses(parsed));
   if (problems.length > 0 || !ordered.ok) return { ok: false, problems: orderedProblems(problems) };
 
   const network = indexNetwork(parsed, overrides, ordered.order);
-  const faults = checkConstantValues(
-    network,
-    parsed.reactions.map(({ lawPath }) => lawPath),
-  );
-  return faults.length > 0 ? { ok: false, problems: orderedProblems(faults) } : { ok: true, network };
+  const { changes, problems: timeFaults } = indexChanges(parsed, network);
+  const lawPaths = parsed.reactions.map(({ lawPath }) => lawPath);
+  const faults = [...checkConstantValues(network, lawPaths), ...timeFaults];
+  return faults.length > 0
+    ? { ok: false, problems: orderedProblems(faults) }
+    : { ok: true, network: changes.length === 0 ? network : { ...network, changes } };
 }
 
-/** A constant of mass action does not change during a run, so a negative or undefined one is known to be wrong now. */
+/** A constant of mass action holds no species, so a negative or undefined one is known to be wrong before the run. */
 function checkConstantValues(network: ResolvedNetwork, lawPaths: string[]): Problem[] {
   const parameters = parameterValuesAt(
     network,

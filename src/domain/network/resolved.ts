@@ -26,6 +26,20 @@ export interface ResolvedReaction {
   law: ResolvedLaw;
 }
 
+export interface ResolvedChange {
+  id: string;
+  when:
+    | { kind: 'times'; times: number[] }
+    /** Happens whenever `condition` goes from false to true; before time 0 it counts as `before`. */
+    | { kind: 'condition'; condition: Expression; before: boolean };
+  /**
+   * All expressions are evaluated, with the assignments of the network up to date, before any target is set. A count must
+   * come out as a whole number from 0 to 2^31 − 1, give or take a few units in the last place of a product; anything
+   * else is a failure of the model.
+   */
+  sets: { target: { kind: 'species' | 'parameter'; index: number }; expression: Expression }[];
+}
+
 /**
  * Symbols inside expressions are resolved to `{ kind: 'species' | 'parameter', index }`; a species that means a
  * concentration has become count / compartment size. Compartments and local parameters have been appended to
@@ -40,4 +54,9 @@ export interface ResolvedNetwork {
   reactions: ResolvedReaction[];
   /** What is reported: each species, then each named observable. */
   observables: { id: string; expression: Expression }[];
+  /**
+   * In document order, which is the order of those at one moment; none when left out. A parameter that one sets keeps its
+   * value until the next change, and starts each replicate anew; constants of mass action may depend on it.
+   */
+  changes?: ResolvedChange[];
 }

@@ -12,6 +12,8 @@ export interface NetworkSummary {
   compartments: number;
   assignmentRules: number;
   observables: number;
+  /** Timed and triggered changes. */
+  changes: number;
   /** Σ of the initial counts that are whole numbers. */
   initialMolecules: number;
   /** For example “4 species · 4 reactions · 4 parameters”. */
@@ -32,6 +34,7 @@ export function summariseNetwork(document: NetworkDocument): NetworkSummary {
     compartments: document.compartments?.length ?? 0,
     assignmentRules: document.assignmentRules?.length ?? 0,
     observables: document.observables?.length ?? 0,
+    changes: document.changes?.length ?? 0,
     initialMolecules: species.reduce(
       (sum, { initialCount }) => sum + (Number.isSafeInteger(initialCount) ? initialCount : 0),
       0,
