@@ -2,6 +2,7 @@
 import node from '@astrojs/node';
 import react from '@astrojs/react';
 import tailwind from '@astrojs/tailwind';
+import { fileURLToPath } from 'node:url';
 import { defineConfig } from 'astro/config';
 import { buretteServer } from './astro.integration.mjs';
 
@@ -17,6 +18,9 @@ export default defineConfig({
   devToolbar: { enabled: false },
   server: { port: Number(process.env.PORT ?? 4321), host: process.env.HOST ?? '127.0.0.1' },
   vite: {
+    // The framework reads tsconfig's aliases for pages; bundles of browser workers need this one said again.
+    resolve: { alias: [{ find: /^@\//, replacement: fileURLToPath(new URL('./src/', import.meta.url)) }] },
+    worker: { format: 'es' },
     ssr: {
       noExternal: ['echarts-for-react'],
       external: ['sequelize', 'sqlite3', 'umzug', 'piscina', 'pdfkit', 'pino'],
