@@ -33,7 +33,7 @@ const schema = z.object({
   MAIL_FROM: z.string().default('Burette <no-reply@burette.example>'),
   /** The seller on invoices. */
   SELLER_NAME: z.string().default('Burette Compute Ltd (sample seller)'),
-  SELLER_ADDRESS: z.string().default('1 Sample Quay\nExampleton EX1 1EX\nUnited Kingdom'),
+  SELLER_ADDRESS: z.string().default('1 Sample Quay\nExampleton EX1 1EX'),
   SELLER_COUNTRY: z.string().length(2).default('GB'),
   SELLER_VAT_NUMBER: z.string().default('GB999999973'),
   /** ISO 4217 currency of the seller's books. */

@@ -11,6 +11,8 @@ const ink = '#13212B';
 const soft = '#4B5C69';
 const rule = '#CBD7DE';
 const accent = '#B8105A';
+/** Figures of one width, so that columns of amounts align. */
+const figures: PDFKit.Mixins.OpenTypeFeatures[] = ['tnum'];
 
 interface TextOptions {
   x: number;
@@ -52,8 +54,8 @@ class Sheet {
               .font(run.font)
               .fontSize(size)
               .fillColor(colour)
-              .text(run.text, place, bottom, { lineBreak: false });
-            place += document.font(run.font).fontSize(size).widthOfString(run.text);
+              .text(run.text, place, bottom, { lineBreak: false, features: figures });
+            place += document.font(run.font).fontSize(size).widthOfString(run.text, { features: figures });
           }
           bottom += lineHeight;
         }
@@ -76,7 +78,10 @@ class Sheet {
   #widthOf(text: string, size: number, weight: Weight): number {
     return this.#type
       .runs(text, weight)
-      .reduce((sum, run) => sum + this.#document.font(run.font).fontSize(size).widthOfString(run.text), 0);
+      .reduce(
+        (sum, run) => sum + this.#document.font(run.font).fontSize(size).widthOfString(run.text, { features: figures }),
+        0,
+      );
   }
 
   /** Breaks at spaces, and inside a word only when it alone is wider than the column. */
