@@ -36,9 +36,7 @@ export function weaknessOfPassword(password: string, surroundings: PasswordSurro
     return `Use at least ${limits.passwordCharactersMinimum} characters; a few unrelated words work well.`;
   if (new Set(lower).size < leastDistinctCharacters || /^(.{1,6})\1+$/u.test(lower))
     return 'This repeats the same few characters; a few unrelated words work well.';
-  const parts = [...wordsAround(surroundings), ...commonPasswordParts];
-  const plain = [...lower].map((character) => lookAlikes[character] ?? character).join('');
-  if (ownCharacters(lower, parts) < leastOwnCharacters || ownCharacters(plain, parts) < leastOwnCharacters)
+  if (ownCharacters(lower, [...wordsAround(surroundings), ...commonPasswordParts]) < leastOwnCharacters)
     return 'This is built from parts that are guessed first: common passwords, sequences, names or dates. A few unrelated words work well.';
   return null;
 }
@@ -51,26 +49,42 @@ function wordsAround({ email = '', names = [] }: PasswordSurroundings): string[]
     .sort((a, b) => b.length - a.length);
 }
 
-/** How many letters and figures are left when everything guessable is taken out. */
+/** How many letters and figures belong to no guessable part, as written or with look-alike figures read as letters. */
 function ownCharacters(text: string, parts: string[]): number {
-  let rest = text;
-  for (const part of parts) rest = rest.replaceAll(part, ' ');
-  rest = withoutRuns(rest)
-    .replaceAll(/(.)\1{2,}/gu, ' ')
-    .replaceAll(/(19|20)\d\d/g, ' ');
-  return [...rest.replaceAll(/[^\p{L}\p{N}]/gu, '')].length;
+  const guessable = new Array<boolean>(text.length).fill(false);
+  const plain = text.replaceAll(/[013457@$!]/g, (figure) => lookAlikes[figure] ?? figure);
+  for (const [start, length] of [
+    ...[text, plain].flatMap((reading) => parts.flatMap((part) => occurrences(reading, part))),
+    ...runsIn(text),
+    ...matches(text, /(.)\1{2,}/g),
+    ...matches(text, /(19|20)\d\d/g),
+  ])
+    guessable.fill(true, start, start + length);
+  return [...text.matchAll(/[\p{L}\p{N}]/gu)].filter(({ index }) => !guessable[index]).length;
 }
 
-/** Takes out pieces of four or more neighbours of the alphabet, the figures or a keyboard row. */
-function withoutRuns(text: string): string {
-  let rest = '';
+/** Start and length in UTF-16 units. */
+type Span = [start: number, length: number];
+
+function occurrences(text: string, part: string): Span[] {
+  const found: Span[] = [];
+  for (let at = text.indexOf(part); at >= 0; at = text.indexOf(part, at + 1)) found.push([at, part.length]);
+  return found;
+}
+
+const matches = (text: string, pattern: RegExp): Span[] =>
+  [...text.matchAll(pattern)].map((match) => [match.index, match[0].length]);
+
+/** Pieces of four or more neighbours of the alphabet, the figures or a keyboard row. */
+function runsIn(text: string): Span[] {
+  const found: Span[] = [];
   for (let start = 0; start < text.length;) {
     let length = 1;
     while (start + length < text.length && isRun(text.slice(start, start + length + 1))) length++;
-    rest += length >= 4 ? ' ' : text.slice(start, start + length);
+    if (length >= 4) found.push([start, length]);
     start += length;
   }
-  return rest;
+  return found;
 }
 
 const isRun = (piece: string): boolean => runs.some((run) => run.includes(piece));

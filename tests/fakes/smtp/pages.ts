@@ -12,6 +12,7 @@ export const styles = `
 * { box-sizing: border-box; }
 body { margin: 0; background: var(--paper); color: var(--ink); font: 16px/1.5 Manrope, system-ui, sans-serif; }
 header, main { max-width: 64rem; margin: 0 auto; padding: 1rem; }
+h2 { font-size: 1.125rem; margin: 1.5rem 0 0.5rem; }
 h1 { font-size: 1.5rem; line-height: 1.25; margin: 0.5rem 0; overflow-wrap: anywhere; }
 p.local { color: var(--methyl); margin: 0; }
 a { color: var(--bromo); }
