@@ -66,6 +66,16 @@ describe('the time course', () => {
     const { columns, rows } = timeCourseTable(withCurve);
     expect(rows[12]![columns.indexOf('rate equation')]).toBeCloseTo(mean[12]! * 1.1, 12);
   });
+  it('moves labels apart that would cover each other', () => {
+    const same = { ...observable, quantiles: { ...observable.quantiles, '0.75': mean } };
+    const svg = pictureOf(timeCourseOption({ ...course, observable: same, meanField: mean }, lightTheme));
+    const placed = ['mean ± SE', '25–75 %', 'rate equation'].map((words) =>
+      Number(new RegExp(`translate\\(\\S+ (\\S+)\\)"[^>]*>${words}<`).exec(svg)![1]),
+    );
+    placed.sort((a, b) => a - b);
+    expect(placed[1]! - placed[0]!).toBeGreaterThanOrEqual(12);
+    expect(placed[2]! - placed[1]!).toBeGreaterThanOrEqual(12);
+  });
   it('names both axes with their units and every band beside it', () => {
     const svg = pictureOf(timeCourseOption(course, lightTheme));
     for (const words of ['time, h', 'Repressor A, count', 'mean ± SE', '5–95 %', '25–75 %'])

@@ -83,20 +83,33 @@ export function labelSeries(labels: DirectLabel[], theme: ChartTheme): object {
     tooltip: { show: false },
     clip: false,
     z: 10,
-    labelLayout: { moveOverlap: 'shiftY' },
-    data: labels.map(({ x, y, text, color }) => ({
-      value: [x, y],
-      label: {
-        show: true,
-        position: 'right',
-        distance: 6,
-        formatter: () => text,
-        color,
-        fontFamily: theme.fontFamily,
-        fontSize: 12,
-        fontWeight: 600,
-      },
-    })),
+    labelLayout: stackedDown(),
+    data: [...labels]
+      .sort((one, other) => other.y - one.y)
+      .map(({ x, y, text, color }) => ({
+        value: [x, y],
+        label: {
+          show: true,
+          position: 'right',
+          distance: 6,
+          formatter: () => text,
+          color,
+          fontFamily: theme.fontFamily,
+          fontSize: 12,
+          fontWeight: 600,
+        },
+      })),
+  };
+}
+
+/** From the top down, each label is moved below the one above it where they would overlap. */
+function stackedDown() {
+  let bottomPx = -Infinity;
+  return ({ dataIndex, labelRect }: { dataIndex: number; labelRect: { y: number; height: number } }) => {
+    if (dataIndex === 0) bottomPx = -Infinity;
+    const dy = Math.max(0, bottomPx + 2 - labelRect.y);
+    bottomPx = labelRect.y + dy + labelRect.height;
+    return { dy };
   };
 }
 
