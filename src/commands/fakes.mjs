@@ -38,6 +38,7 @@ function startFake(name, env) {
  */
 export async function startFakes({ port, publicUrl, dataDir }) {
   const children = [];
+  /** @type {Record<string, string>} */
   const env = {};
   if (!process.env.STRIPE_SECRET_KEY) {
     const paymentPort = await freePort(port + 1);

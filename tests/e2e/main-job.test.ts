@@ -183,7 +183,9 @@ describe('the main job', () => {
     await page.getByLabel('Password').fill(finance.password);
     await page.getByRole('button', { name: /join|accept/i }).click();
     await page.waitForURL(/\/t\/marrow-kinetics\//);
-    await page.goto(`${app.url}/sign-out`);
+    await page.locator('details[data-menu] summary').click();
+    await page.getByRole('button', { name: 'Sign out' }).click();
+    await page.waitForURL((url) => !url.pathname.startsWith('/t/'));
     await page.goto(`${app.url}/t/marrow-kinetics/billing/invoices`);
     await page.waitForURL(/\/sign-in/);
     await page.getByLabel('E-mail').fill(finance.email);

@@ -34,7 +34,7 @@ export async function startApp(options: { seed?: boolean } = {}): Promise<Runnin
   const url = `http://localhost:${port}`;
   const { env: fakes, children } = await startFakes({ port, publicUrl: url, dataDir });
   const env: Record<string, string> = {
-    ...(fakes as Record<string, string>),
+    ...fakes,
     NODE_ENV: 'production',
     PORT: String(port),
     PUBLIC_URL: url,

@@ -19,7 +19,7 @@ export default defineConfig({
     pool: 'forks',
     maxWorkers: 1,
     fileParallelism: false,
-    testTimeout: 180_000,
+    testTimeout: 400_000,
     hookTimeout: 120_000,
   },
 });
