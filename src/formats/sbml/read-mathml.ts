@@ -44,8 +44,13 @@ export function readMathml(
   math: XmlElement,
   functions: ReadonlyMap<string, FunctionDefinition> = new Map(),
 ): Expression {
-  checkSize(math);
-  return read(only(math), functions);
+  return readMathElement(only(math), functions);
+}
+
+/** One element inside a `<math>`, as `readMathml` reads the whole. */
+export function readMathElement(element: XmlElement, functions: ReadonlyMap<string, FunctionDefinition>): Expression {
+  checkSize(element);
+  return read(element, functions);
 }
 
 function checkSize(math: XmlElement): void {

@@ -7,6 +7,7 @@ import type { Expression } from '@/domain/network/expression.ts';
 import { symbolsOf } from '@/domain/network/expression-leaves.ts';
 import { limits } from '@/domain/limits.ts';
 import { ModelNames, isMarked } from './model-names.ts';
+import { readChanges } from './read-changes.ts';
 import { readLambda } from './read-mathml.ts';
 import {
   named,
@@ -87,13 +88,16 @@ function readModel(reading: SbmlReading, model: XmlElement): NetworkDocument | n
       value: names.itemsPerSubstance,
     });
   const timeUnit = units.textOf(model.attributes.get('timeUnits'));
+  const changes = changesDuringRun(names, assigned);
+  const stateChanges =
+    reading.options.readChanges === true ? readChanges({ reading, names, start, changes }, model) : [];
   const recognised: XmlElement[] = [];
   const reactions = readReactions({
     reading,
     names,
     units,
     start,
-    changes: changesDuringRun(names, assigned),
+    changes,
     negative: new Set(parameters.filter(({ value }) => value < 0).map(({ id }) => id)),
     recognised,
   });
@@ -118,6 +122,7 @@ function readModel(reading: SbmlReading, model: XmlElement): NetworkDocument | n
         ? [{ id, ...named(names.elements.get(id)!), expression: textOf(reading, rule.element, rule.expression) }]
         : [],
     ),
+    ...(stateChanges.length === 0 ? {} : { changes: stateChanges }),
   };
 }
 

@@ -51,6 +51,8 @@ export function refuseUnsupported(reading: SbmlReading, model: XmlElement): void
   }
   for (const element of model.children) {
     if (element.namespace !== reading.namespace) continue;
+    const readsChanges = reading.options.readChanges === true;
+    if (element.name === 'listOfEvents' && readsChanges) continue;
     if (element.name === 'listOfEvents') refuseEvents(reading, element);
     else if (element.name === 'listOfRules') refuseRules(reading, element);
     else if (element.name === 'listOfConstraints')

@@ -1,5 +1,6 @@
 /** Writes an expression of the document as content MathML. */
 import type { BinaryOperator, Expression, FunctionName } from '@/domain/network/expression.ts';
+import { parseExpression } from '@/domain/network/parse-expression.ts';
 import { mathmlNamespace, writtenNamespace } from './sbml-names.ts';
 
 const operatorElements: Record<BinaryOperator, string> = {
@@ -54,6 +55,13 @@ export function writeMathml(expression: Expression, kind: Kind = 'number'): stri
   return `<math xmlns="${mathmlNamespace}" xmlns:sbml="${writtenNamespace}">${write(expression, kind)}</math>`;
 }
 
+/** A `<math>` element for the trigger “time ≥ `moment`”. */
+export function writeTimeTrigger(moment: Expression): string {
+  const time = '<csymbol encoding="text" definitionURL="http://www.sbml.org/sbml/symbols/time">time</csymbol>';
+  const open = `<math xmlns="${mathmlNamespace}" xmlns:sbml="${writtenNamespace}">`;
+  return `${open}<apply><geq/>${time}${write(moment, 'number')}</apply></math>`;
+}
+
 function write(expression: Expression, wanted: Kind): string {
   const text = element(expression);
   const own = kindOf(expression);
@@ -98,4 +106,11 @@ function numberElement(value: number): string {
   return Number.isInteger(value) && Math.abs(value) < 2 ** 31
     ? `<cn ${unit} type="integer">${value}</cn>`
     : `<cn ${unit}>${significand}</cn>`;
+}
+
+/** The expression of a text in a document without errors; throws on any other. */
+export function parsedLaw(text: string): Expression {
+  const result = parseExpression(text);
+  if (!result.ok) throw new TypeError(result.fault.message);
+  return result.expression;
 }

@@ -3,12 +3,12 @@ import type { NetworkDocument, ReactionDocument, SpeciesDocument } from '@/domai
 import type { Expression } from '@/domain/network/expression.ts';
 import { mapLeaves, symbolsOf } from '@/domain/network/expression-leaves.ts';
 import { parseEquation, type EquationTerm } from '@/domain/network/parse-equation.ts';
-import { parseExpression } from '@/domain/network/parse-expression.ts';
 import { vanishesWithoutReactants } from '@/domain/network/vanishing-law.ts';
 import { amountOf, guardedLaw, type Need } from './guarded-law.ts';
 import { ownNamespace, writtenNamespace } from './sbml-names.ts';
+import { writeChanges } from './write-changes.ts';
 import { UnitsToWrite } from './write-units.ts';
-import { writeMathml } from './write-mathml.ts';
+import { parsedLaw, writeMathml } from './write-mathml.ts';
 import { element, freeId, list } from './xml-writing.ts';
 
 /**
@@ -35,6 +35,7 @@ export function writeSbml(document: NetworkDocument, { modelId, name }: { modelI
   const around: Surroundings = { species, ids, units };
   const home = needsHome(document) ? freeId('everywhere', ids) : null;
   const assigned = new Set(document.assignmentRules?.map(({ variable }) => variable));
+  const set = new Set(document.changes?.flatMap(({ assignments }) => assignments.map(({ variable }) => variable)));
   // Contents first: they ask for the units whose definitions stand before them.
   const timeUnits = units.timeUnit(document.timeUnit);
   const contents = [
@@ -46,12 +47,13 @@ export function writeSbml(document: NetworkDocument, { modelId, name }: { modelI
       'listOfSpecies',
       document.species.map((row) => speciesElement(assigned, row, home)),
     ),
-    list('listOfParameters', parameters(document, assigned, units)),
+    list('listOfParameters', parameters(document, new Set([...assigned, ...set]), units)),
     list('listOfRules', rules(document)),
     list(
       'listOfReactions',
       document.reactions.map((row) => reaction(around, row)),
     ),
+    list('listOfEvents', writeChanges(document.changes ?? [], ids)),
   ];
   const model = element(
     'model',
@@ -69,7 +71,14 @@ function modelIdentifier(id: string): string {
 }
 
 function takenIds(document: NetworkDocument): Set<string> {
-  const rows = [document.compartments, document.species, document.parameters, document.reactions, document.observables];
+  const rows = [
+    document.compartments,
+    document.species,
+    document.parameters,
+    document.reactions,
+    document.observables,
+    document.changes,
+  ];
   return new Set(rows.flatMap((list) => list?.map(({ id }) => id) ?? []));
 }
 
@@ -112,7 +121,7 @@ function speciesElement(assigned: ReadonlySet<string>, species: SpeciesDocument,
   });
 }
 
-function parameters(document: NetworkDocument, assigned: ReadonlySet<string>, units: UnitsToWrite): string[] {
+function parameters(document: NetworkDocument, varying: ReadonlySet<string>, units: UnitsToWrite): string[] {
   return [
     ...(document.parameters ?? []).map(({ id, name, value, unit }) =>
       element('parameter', {
@@ -120,7 +129,7 @@ function parameters(document: NetworkDocument, assigned: ReadonlySet<string>, un
         name,
         value: String(value),
         units: units.unit(unit),
-        constant: String(!assigned.has(id)),
+        constant: String(!varying.has(id)),
       }),
     ),
     ...(document.observables ?? []).map(({ id, name }) =>
@@ -135,7 +144,7 @@ function rules(document: NetworkDocument): string[] {
     ...(document.observables ?? []).map(({ id, expression }) => ({ variable: id, expression })),
   ];
   return rows.map(({ variable, expression }) =>
-    element('assignmentRule', { variable }, [writeMathml(parsed(expression))]),
+    element('assignmentRule', { variable }, [writeMathml(parsedLaw(expression))]),
   );
 }
 
@@ -177,7 +186,7 @@ const reference = ({ species, count }: EquationTerm): string =>
 function writtenLaw(around: Surroundings, { rateLaw, localParameters }: ReactionDocument, reactants: EquationTerm[]) {
   const locals = localParameters ?? [];
   const counts = reactants.map(({ count, species }) => ({ count, amount: countOf(around, species) }));
-  const stated = parsed(rateLaw.kind === 'massAction' ? rateLaw.constant : rateLaw.expression);
+  const stated = parsedLaw(rateLaw.kind === 'massAction' ? rateLaw.constant : rateLaw.expression);
   const isGuarded = rateLaw.kind === 'expression' && !vanishesWithoutReactants(stated, unshadowed(reactants, locals));
   // Names brought in by the written law, and species, which SBML does not let a local parameter hide.
   const broughtIn = new Set(counts.flatMap(({ amount }) => [...symbolsOf(amount)]));
@@ -225,10 +234,4 @@ function massActionLaw(constant: Expression, counts: Need[]): Expression {
     if (orders > 1) law = binary('divide', law, number(orders));
   }
   return law;
-}
-
-function parsed(text: string): Expression {
-  const result = parseExpression(text);
-  if (!result.ok) throw new TypeError(result.fault.message);
-  return result.expression;
 }
