@@ -9,6 +9,9 @@ export const caution =
   'They must not be used alone for dosing, clinical, environmental-release or process-safety decisions, which follow the ' +
   'local codes and the judgement of qualified, licensed practitioners.';
 
+/** Lines of at most 110 characters, broken between words. */
+const wrap = (text: string): string => text.replaceAll(/(.{1,110})(?: |$)/g, '$1\n').trimEnd();
+
 const json = (value: unknown): string => `${JSON.stringify(value, null, 2)}\n`;
 
 export interface ArchiveSubject {
@@ -142,7 +145,7 @@ export function readmeText({ job, model, version, ensemble }: ArchiveSubject, pa
     '',
     'Caution',
     '-------',
-    caution,
+    wrap(caution),
     '',
   ].join('\n');
 }
