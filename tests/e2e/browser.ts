@@ -28,6 +28,8 @@ export async function openPage(
     ...options,
   });
   const page = await context.newPage();
+  // Waiting is for conditions; how long one takes on a busy machine is not what a journey checks.
+  page.setDefaultTimeout(90_000);
   const faults: string[] = [];
   page.on('pageerror', (error) => faults.push(`page error at ${page.url()}: ${error.message}`));
   page.on('console', (message) => {
@@ -51,3 +53,19 @@ export async function axeFaults(page: Page): Promise<string[]> {
 /** Whether the page is wider than its window. */
 export const scrollsSideways = (page: Page): Promise<boolean> =>
   page.evaluate(() => document.documentElement.scrollWidth > document.documentElement.clientWidth + 1);
+
+/** Runs a journey; when it fails, what the page showed stands beside the reports, and its words in the error. */
+export async function journey(page: Page, name: string, walk: () => Promise<void>): Promise<void> {
+  try {
+    await walk();
+  } catch (error) {
+    const picture = `node_modules/.cache/burette-tests/${name}.png`;
+    await page.screenshot({ path: picture, fullPage: true }).catch(() => undefined);
+    const words = await page
+      .locator('body')
+      .innerText()
+      .catch(() => '');
+    console.error(`${name} failed at ${page.url()} (picture: ${picture}):\n${words.slice(0, 4_000)}`);
+    throw error;
+  }
+}

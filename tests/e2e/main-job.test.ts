@@ -8,7 +8,7 @@ import { readFile } from 'node:fs/promises';
 import { unzipSync } from 'fflate';
 import type { Browser, Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
-import { axeFaults, openBrowser, openPage, scrollsSideways } from './browser.ts';
+import { axeFaults, journey, openBrowser, openPage, scrollsSideways } from './browser.ts';
 import { startApp, type RunningApp } from './running-app.ts';
 
 let app: RunningApp;
@@ -68,108 +68,111 @@ describe('the main job', () => {
   it('goes from an empty installation to a checked archive and a downloaded invoice', async () => {
     const { page, faults } = await openPage(browser);
 
-    // Sign up and verify.
-    await page.goto(`${app.url}/sign-up`);
-    await lookAt(page);
-    await page.getByLabel('Your name').fill(owner.name);
-    await page.getByLabel('E-mail').fill(owner.email);
-    await page.getByLabel('Password').fill(owner.password);
-    await page.getByLabel('Team name').fill(owner.team);
-    await page.getByRole('button', { name: 'Sign up' }).click();
-    await page.goto(await linkFromMail(owner.email, '/verify'));
-    await lookAt(page);
-    await page.getByLabel('Password').fill(owner.password);
-    await page.getByRole('button', { name: 'Confirm the address' }).click();
-    await page.waitForURL(/\/t\/marrow-kinetics\/overview/);
-    await lookAt(page);
+    let invitation = '';
+    await journey(page, 'main-job', async () => {
+      // Sign up and verify.
+      await page.goto(`${app.url}/sign-up`);
+      await lookAt(page);
+      await page.getByLabel('Your name').fill(owner.name);
+      await page.getByLabel('E-mail').fill(owner.email);
+      await page.getByLabel('Password').fill(owner.password);
+      await page.getByLabel('Team name').fill(owner.team);
+      await page.getByRole('button', { name: 'Sign up' }).click();
+      await page.goto(await linkFromMail(owner.email, '/verify'));
+      await lookAt(page);
+      await page.getByLabel('Password').fill(owner.password);
+      await page.getByRole('button', { name: 'Confirm the address' }).click();
+      await page.waitForURL(/\/t\/marrow-kinetics\/overview/);
+      await lookAt(page);
 
-    // Top up: declined, then accepted.
-    await page.getByRole('link', { name: 'Buy credits' }).first().click();
-    await page.waitForURL(/\/credits/);
-    await lookAt(page);
-    await page.getByRole('radio', { name: /100 credits/ }).check();
-    await page.getByRole('button', { name: /Go on to pay/ }).click();
-    await page.waitForURL(/\/pay\//);
-    await page.getByLabel('Card number').fill('4000 0000 0000 0002');
-    await page.getByRole('button', { name: /^Pay/ }).click();
-    await page
-      .getByRole('alert')
-      .getByText(/declined/i)
-      .waitFor();
-    await page.getByLabel('Card number').fill('4242 4242 4242 4242');
-    await page.getByRole('button', { name: /^Pay/ }).click();
-    await page.waitForURL(/\/credits\?/);
-    await page.getByText(/^Paid: 100 credits/).waitFor();
-    await lookAt(page);
+      // Top up: declined, then accepted.
+      await page.getByRole('link', { name: 'Buy credits' }).first().click();
+      await page.waitForURL(/\/credits/);
+      await lookAt(page);
+      await page.getByRole('radio', { name: /100 credits/ }).check();
+      await page.getByRole('button', { name: /Go on to pay/ }).click();
+      await page.waitForURL(/\/pay\//);
+      await page.getByLabel('Card number').fill('4000 0000 0000 0002');
+      await page.getByRole('button', { name: /^Pay/ }).click();
+      await page
+        .getByRole('alert')
+        .getByText(/declined/i)
+        .waitFor();
+      await page.getByLabel('Card number').fill('4242 4242 4242 4242');
+      await page.getByRole('button', { name: /^Pay/ }).click();
+      await page.waitForURL(/\/credits\?/);
+      await page.getByText(/^Paid: 100 credits/).waitFor();
+      await lookAt(page);
 
-    // A model, by keyboard alone.
-    await page.goto(`${app.url}/t/marrow-kinetics/models/new`);
-    await page.getByLabel('Name of the model').fill('Dimer in a vesicle');
-    await cell(page, 'Species', 0, 0).focus();
-    await typeRow(page, ['P', '80']);
-    await typeRow(page, ['D', '0']);
-    await cell(page, 'Parameters', 0, 0).focus();
-    await typeRow(page, ['k_join', '0.004']);
-    await typeRow(page, ['k_part', '0.05']);
-    await cell(page, 'Reactions', 0, 0).focus();
-    await typeRow(page, ['join', '2 P -> D', null, 'k_join']);
-    await typeRow(page, ['part', 'D -> 2 P', null, 'k_prt']);
-    await page.getByText(/k_prt/).first().waitFor();
-    await cell(page, 'Reactions', 1, 3).fill('k_part');
-    await page.getByText(/P \+ 2 D = 80/).waitFor();
-    await lookAt(page);
-    await page.getByRole('button', { name: 'Create the model' }).press('Enter');
-    await page.waitForURL(/\/models\/model_/);
-    await lookAt(page);
+      // A model, by keyboard alone.
+      await page.goto(`${app.url}/t/marrow-kinetics/models/new`);
+      await page.getByLabel('Name of the model').fill('Dimer in a vesicle');
+      await cell(page, 'Species', 0, 0).focus();
+      await typeRow(page, ['P', '80']);
+      await typeRow(page, ['D', '0']);
+      await cell(page, 'Parameters', 0, 0).focus();
+      await typeRow(page, ['k_join', '0.004']);
+      await typeRow(page, ['k_part', '0.05']);
+      await cell(page, 'Reactions', 0, 0).focus();
+      await typeRow(page, ['join', '2 P -> D', null, 'k_join']);
+      await typeRow(page, ['part', 'D -> 2 P', null, 'k_prt']);
+      await page.getByText(/k_prt/).first().waitFor();
+      await cell(page, 'Reactions', 1, 3).fill('k_part');
+      await page.getByText(/P \+ 2 D = 80/).waitFor();
+      await lookAt(page);
+      await page.getByRole('button', { name: 'Create the model' }).press('Enter');
+      await page.waitForURL(/\/models\/model_/);
+      await lookAt(page);
 
-    // Quote, launch, watch.
-    await page.getByRole('link', { name: /^Launch version 1/ }).click();
-    await page.waitForURL(/\/jobs\/new/);
-    await page.getByLabel('Replicates').fill('5000');
-    await page.getByLabel('Horizon').fill('20');
-    const launch = page.getByRole('button', { name: /^Launch for up to/ });
-    await launch.waitFor();
-    await lookAt(page);
-    await launch.click();
-    await page.waitForURL(/\/jobs\/job_/);
-    await page.getByText('Done', { exact: true }).first().waitFor({ timeout: 60_000 });
-    await page.getByText(/5,000 of 5,000/).waitFor();
-    await lookAt(page);
+      // Quote, launch, watch.
+      await page.getByRole('link', { name: /^Launch version 1/ }).click();
+      await page.waitForURL(/\/jobs\/new/);
+      await page.getByLabel('Replicates').fill('5000');
+      await page.getByLabel('Horizon').fill('20');
+      const launch = page.getByRole('button', { name: /^Launch for up to/ });
+      await launch.waitFor();
+      await lookAt(page);
+      await launch.click();
+      await page.waitForURL(/\/jobs\/job_/);
+      await page.getByText('Done', { exact: true }).first().waitFor({ timeout: 60_000 });
+      await page.getByText(/5,000 of 5,000/).waitFor();
+      await lookAt(page);
 
-    // Read results: every tab, then after a reload again.
-    for (const tab of ['Distribution', 'Traces', 'Numbers', 'Time course']) {
-      await page.getByRole('tab', { name: tab }).click();
-      await page.getByRole('tabpanel').waitFor();
-    }
-    await page.reload();
-    await page.getByText(/5,000 of 5,000/).waitFor();
+      // Read results: every tab, then after a reload again.
+      for (const tab of ['Distribution', 'Traces', 'Numbers', 'Time course']) {
+        await page.getByRole('tab', { name: tab }).click();
+        await page.getByRole('tabpanel').waitFor();
+      }
+      await page.reload();
+      await page.getByText(/5,000 of 5,000/).waitFor();
 
-    // The archive and its checksums.
-    const [download] = await Promise.all([
-      page.waitForEvent('download'),
-      page.getByRole('link', { name: /^Download,/ }).click(),
-    ]);
-    const archive = await readFile((await download.path())!);
-    const sha256 = (bytes: Uint8Array) => createHash('sha256').update(bytes).digest('hex');
-    await page.getByText(sha256(archive)).waitFor();
-    const files = unzipSync(archive);
-    const sums = new TextDecoder().decode(files['SHA256SUMS']).trim().split('\n');
-    expect(sums.length).toBe(Object.keys(files).length - 1);
-    for (const line of sums) {
-      const [sum, name] = line.split(/\s+\*?/) as [string, string];
-      expect(sha256(files[name]!), name).toBe(sum);
-    }
+      // The archive and its checksums.
+      const [download] = await Promise.all([
+        page.waitForEvent('download'),
+        page.getByRole('link', { name: /^Download,/ }).click(),
+      ]);
+      const archive = await readFile((await download.path())!);
+      const sha256 = (bytes: Uint8Array) => createHash('sha256').update(bytes).digest('hex');
+      await page.getByText(sha256(archive)).waitFor();
+      const files = unzipSync(archive);
+      const sums = new TextDecoder().decode(files['SHA256SUMS']).trim().split('\n');
+      expect(sums.length).toBe(Object.keys(files).length - 1);
+      for (const line of sums) {
+        const [sum, name] = line.split(/\s+\*?/) as [string, string];
+        expect(sha256(files[name]!), name).toBe(sum);
+      }
 
-    // Finance is invited, signs up by the link, and downloads the invoice.
-    await page.goto(`${app.url}/t/marrow-kinetics/team/members`);
-    await lookAt(page);
-    await page.getByLabel('E-mail').fill(finance.email);
-    await page
-      .getByRole('checkbox', { name: /finance/i })
-      .first()
-      .check();
-    await page.getByRole('button', { name: /invit/i }).first().click();
-    const invitation = await linkFromMail(finance.email, '/invitation');
+      // Finance is invited, signs up by the link, and downloads the invoice.
+      await page.goto(`${app.url}/t/marrow-kinetics/team/members`);
+      await lookAt(page);
+      await page.getByLabel('E-mail').fill(finance.email);
+      await page
+        .getByRole('checkbox', { name: /finance/i })
+        .first()
+        .check();
+      await page.getByRole('button', { name: /invit/i }).first().click();
+      invitation = await linkFromMail(finance.email, '/invitation');
+    });
     expect(faults).toEqual([]);
     await page.context().close();
     await financeDownloadsInvoice(invitation);
@@ -177,34 +180,36 @@ describe('the main job', () => {
 
   async function financeDownloadsInvoice(invitation: string): Promise<void> {
     const { page, faults } = await openPage(browser);
-    await page.goto(invitation);
-    await lookAt(page);
-    await page.getByLabel('Your name').fill(finance.name);
-    await page.getByLabel('Password').fill(finance.password);
-    await page.getByRole('button', { name: /join|accept/i }).click();
-    await page.waitForURL(/\/t\/marrow-kinetics\//);
-    await page.locator('details[data-menu] summary').click();
-    await page.getByRole('button', { name: 'Sign out' }).click();
-    await page.waitForURL((url) => !url.pathname.startsWith('/t/'));
-    await page.goto(`${app.url}/t/marrow-kinetics/billing/invoices`);
-    await page.waitForURL(/\/sign-in/);
-    await page.getByLabel('E-mail').fill(finance.email);
-    await page.getByLabel('Password').fill(finance.password);
-    await page.getByRole('button', { name: 'Sign in' }).click();
-    await page.waitForURL(/billing\/invoices/);
-    await lookAt(page);
-    await page
-      .getByRole('link', { name: /BUR-\d{4}-00001/ })
-      .first()
-      .click();
-    await page.waitForURL(/invoices\/invoice_/);
-    await lookAt(page);
-    const [download] = await Promise.all([
-      page.waitForEvent('download'),
-      page.getByRole('link', { name: /PDF/ }).first().click(),
-    ]);
-    const pdf = await readFile((await download.path())!);
-    expect(pdf.subarray(0, 5).toString()).toBe('%PDF-');
+    await journey(page, 'finance', async () => {
+      await page.goto(invitation);
+      await lookAt(page);
+      await page.getByLabel('Your name').fill(finance.name);
+      await page.getByLabel('Password').fill(finance.password);
+      await page.getByRole('button', { name: /join|accept/i }).click();
+      await page.waitForURL(/\/t\/marrow-kinetics\//);
+      await page.locator('details[data-menu] summary').click();
+      await page.getByRole('button', { name: 'Sign out' }).click();
+      await page.waitForURL((url) => !url.pathname.startsWith('/t/'));
+      await page.goto(`${app.url}/t/marrow-kinetics/billing/invoices`);
+      await page.waitForURL(/\/sign-in/);
+      await page.getByLabel('E-mail').fill(finance.email);
+      await page.getByLabel('Password').fill(finance.password);
+      await page.getByRole('button', { name: 'Sign in' }).click();
+      await page.waitForURL(/billing\/invoices/);
+      await lookAt(page);
+      await page
+        .getByRole('link', { name: /BUR-\d{4}-00001/ })
+        .first()
+        .click();
+      await page.waitForURL(/invoices\/invoice_/);
+      await lookAt(page);
+      const [download] = await Promise.all([
+        page.waitForEvent('download'),
+        page.getByRole('link', { name: /PDF/ }).first().click(),
+      ]);
+      const pdf = await readFile((await download.path())!);
+      expect(pdf.subarray(0, 5).toString()).toBe('%PDF-');
+    });
     expect(faults).toEqual([]);
     await page.context().close();
   }
