@@ -98,6 +98,17 @@ export const downloadInvoicePdf = contract({
   refusals: [...team],
 });
 
+export const downloadInvoiceUbl = contract({
+  id: 'downloadInvoiceUbl',
+  feature: 'billing',
+  method: 'GET',
+  path: '/api/v1/teams/{team}/invoices/{invoice}/ubl',
+  summary: 'The invoice as UBL 2.1 in the core of EN 16931',
+  access: { kind: 'team', permission: 'billing:read' },
+  answers: [{ status: 200, description: 'XML', contentType: 'application/xml' }],
+  refusals: [...team],
+});
+
 export const reviewInvoice = contract({
   id: 'reviewInvoice',
   feature: 'billing',
@@ -110,4 +121,4 @@ export const reviewInvoice = contract({
   refusals: [...team, 'team_suspended', 'invalid_input'],
 });
 
-export const invoiceContracts = [listInvoices, readInvoice, downloadInvoicePdf, reviewInvoice];
+export const invoiceContracts = [listInvoices, readInvoice, downloadInvoicePdf, downloadInvoiceUbl, reviewInvoice];

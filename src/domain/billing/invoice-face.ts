@@ -23,6 +23,8 @@ export interface InvoiceTax {
   baseMinor: number;
   taxMinor: number;
   note: string | null;
+  /** The tax in the currency of the seller's books, where that is another one. */
+  inBooks?: { currency: string; taxMinor: number; rateMillionths: number } | null;
 }
 
 export interface InvoiceFace {
@@ -76,9 +78,13 @@ export function composeFace(options: {
     ...(tax.note ? [tax.note] : []),
     'Credits are taxed as a prepayment at the time of purchase. VAT is computed once per rate and rounded half up to the minor unit.',
   ];
-  if (books && books.currency !== currency && price.taxMinor > 0)
+  const inBooks =
+    books && books.currency !== currency && price.taxMinor > 0
+      ? { ...books, taxMinor: convertMinor(price.taxMinor, books.rateMillionths) }
+      : null;
+  if (inBooks)
     notes.push(
-      `VAT in ${books.currency}: ${figure(convertMinor(price.taxMinor, books.rateMillionths))} at ${books.rateMillionths / 1_000_000} ${books.currency} for 1 ${currency}.`,
+      `VAT in ${inBooks.currency}: ${figure(inBooks.taxMinor)} at ${inBooks.rateMillionths / 1_000_000} ${inBooks.currency} for 1 ${currency}.`,
     );
   return {
     ...price,
@@ -102,6 +108,7 @@ export function composeFace(options: {
         baseMinor: price.netMinor,
         taxMinor: price.taxMinor,
         note: tax.note,
+        inBooks,
       },
     ],
     notes,

@@ -2,7 +2,7 @@
 import { accept, type Result } from '@/domain/refusals.ts';
 import type { Actor } from '@/domain/teams/actor.ts';
 import { findInvoice } from './find-invoice.ts';
-import type { PrintedFile } from './pdf-response.ts';
+import type { PrintedFile } from './file-response.ts';
 import { printInvoice } from './print-invoice.ts';
 
 export async function downloadInvoicePdf(options: {

@@ -3,7 +3,7 @@ import { ProForma } from '@db/models/billing.ts';
 import { accept, refuse, type Result } from '@/domain/refusals.ts';
 import type { Actor } from '@/domain/teams/actor.ts';
 import { authorise } from '../teams/authorise.ts';
-import type { PrintedFile } from './pdf-response.ts';
+import type { PrintedFile } from './file-response.ts';
 import { printProForma } from './print-pro-forma.ts';
 
 export async function downloadProFormaPdf(options: {

@@ -5,6 +5,7 @@ import { accept, refuse, type Result } from '@/domain/refusals.ts';
 import type { Actor } from '@/domain/teams/actor.ts';
 import { nowText } from '../clock.ts';
 import { issueBoughtCredits } from '../ledger/issue-bought-credits.ts';
+import { faceOf } from './face-of.ts';
 import { issueInvoice } from './issue-invoice.ts';
 import { wakeReceipts } from './wake-receipts.ts';
 
@@ -34,21 +35,7 @@ export async function markTransferReceived(options: {
       userId: actor.kind === 'user' ? actor.userId : null,
       memo: { proFormaId: row.id },
     });
-    const { taxMinor, totalMinor, seller, buyer, lines, taxes, notes, purchaseOrder } = row;
-    const face = {
-      currency,
-      netMinor,
-      taxMinor,
-      totalMinor,
-      creditsMicrocredits,
-      seller,
-      buyer,
-      lines,
-      taxes,
-      notes,
-      purchaseOrder,
-    };
-    const invoice = await issueInvoice({ teamId, face, paidAt, proFormaId: row.id });
+    const invoice = await issueInvoice({ teamId, face: faceOf(row), paidAt, proFormaId: row.id });
     afterCommit(wakeReceipts);
     return accept({ invoiceId: invoice.id });
   });

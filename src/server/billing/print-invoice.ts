@@ -2,11 +2,11 @@
 import type { Invoice } from '@db/models/billing.ts';
 import { dayText } from '@/domain/billing/money-text.ts';
 import { writePdf } from '@/formats/invoice/write-pdf.ts';
+import { faceOf } from './face-of.ts';
 import { invoiceFonts } from './invoice-fonts.ts';
 
 export async function printInvoice(invoice: Invoice): Promise<Buffer> {
   const { number, issuedAt, taxPoint, paidAt, purchaseOrder } = invoice;
-  const face = invoice.get();
   const way = invoice.topUpId ? 'through the payment service' : 'by bank transfer';
   return writePdf(
     {
@@ -18,14 +18,7 @@ export async function printInvoice(invoice: Invoice): Promise<Buffer> {
         { label: 'Tax point (prepayment)', value: dayText(taxPoint) },
         ...(purchaseOrder ? [{ label: 'Purchase order', value: purchaseOrder }] : []),
       ],
-      face: {
-        ...face,
-        lines: invoice.lines,
-        taxes: invoice.taxes,
-        notes: invoice.notes,
-        seller: invoice.seller,
-        buyer: invoice.buyer,
-      },
+      face: faceOf(invoice),
       standing: `Paid ${way} on ${dayText(paidAt)}. Nothing is due.`,
       cautions: ['Tax treatment shown is configuration, not advice. Check it with your own adviser.'],
     },

@@ -2,10 +2,11 @@
 import type { ProForma } from '@db/models/billing.ts';
 import { dayText } from '@/domain/billing/money-text.ts';
 import { writePdf } from '@/formats/invoice/write-pdf.ts';
+import { faceOf } from './face-of.ts';
 import { invoiceFonts } from './invoice-fonts.ts';
 
 export async function printProForma(row: ProForma): Promise<Buffer> {
-  const { number, issuedAt, dueAt, termsDays, purchaseOrder, seller, buyer, lines, taxes, notes } = row;
+  const { number, issuedAt, dueAt, termsDays, purchaseOrder } = row;
   return writePdf(
     {
       title: 'Pro-forma',
@@ -16,7 +17,7 @@ export async function printProForma(row: ProForma): Promise<Buffer> {
         { label: 'Due', value: `${dayText(dueAt)} (${termsDays} days)` },
         ...(purchaseOrder ? [{ label: 'Purchase order', value: purchaseOrder }] : []),
       ],
-      face: { ...row.get(), seller, buyer, lines, taxes, notes },
+      face: faceOf(row),
       standing: `Please transfer the total and name ${number}. Credits and the tax invoice follow when it has arrived.`,
       cautions: [
         'This is not a tax invoice.',

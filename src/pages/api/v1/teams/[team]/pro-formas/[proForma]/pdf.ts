@@ -1,6 +1,6 @@
 import * as contracts from '@/contracts/billing.ts';
 import { downloadProFormaPdf } from '@/server/billing/download-pro-forma-pdf.ts';
-import { pdfResponse } from '@/server/billing/pdf-response.ts';
+import { pdfResponse } from '@/server/billing/file-response.ts';
 import { endpoint } from '@/server/http/endpoint.ts';
 
 export const GET = endpoint(
