@@ -43,15 +43,15 @@ export function WardFigureView({ figure }: { figure: WardFigure }) {
             </text>
           </g>
         ))}
-        {[0, 30, 60, 90].map((day) => (
+        {[0, 20, 40, 60].map((day) => (
           <text
             key={day}
             x={x(day)}
             y={height - margin.bottom + 24}
-            textAnchor={day === 90 ? 'end' : 'middle'}
+            textAnchor={day === lastDay ? 'end' : 'middle'}
             className={`fill-soft ${text}`}
           >
-            {day === 90 ? '90 days' : day}
+            {day === lastDay ? `${day} days` : day}
           </text>
         ))}
         <text x={0} y={14} className={`fill-soft ${text}`}>
@@ -63,13 +63,13 @@ export function WardFigureView({ figure }: { figure: WardFigure }) {
         ))}
         <path d={line(figure.meanField)} className="fill-none stroke-methyl" strokeWidth="2.4" strokeDasharray="7 5" />
         <path d={line(figure.mean)} className="fill-none stroke-bromo" strokeWidth="2.8" />
-        <text x={x(45)} y={y(9.6)} className={`fill-bromo font-semibold ${text}`}>
+        <text x={x(31)} y={y(9.6)} className={`fill-bromo font-semibold ${text}`}>
           5–95 % of replicates
         </text>
-        <text x={x(45)} y={y(7.6)} className={`fill-methyl font-semibold ${text}`}>
+        <text x={x(31)} y={y(7.6)} className={`fill-methyl font-semibold ${text}`}>
           rate equations (dashed)
         </text>
-        <text x={x(45)} y={y(5.6)} className={`fill-bromo font-semibold ${text}`}>
+        <text x={x(31)} y={y(5.6)} className={`fill-bromo font-semibold ${text}`}>
           mean (heavy), nine traces
         </text>
       </svg>

@@ -23,8 +23,9 @@ export interface WardFigure {
 
 const replicates = 20_000;
 const seed = '2612010001';
-const horizonDays = 90;
-const gridIntervals = 90;
+const horizonDays = 60;
+const gridIntervals = 60;
+const gridPoints = gridIntervals + 1;
 const tracesShown = 9;
 const initiallyInfectious = 2;
 
@@ -62,7 +63,9 @@ export async function computeWardFigure(document: NetworkDocument): Promise<Ward
     mean: rounded(infectious.mean),
     low: rounded(infectious.quantiles['0.05']!),
     high: rounded(infectious.quantiles['0.95']!),
-    traces: result.traces.map(({ values: trace }) => Array.from(trace.subarray(at * 91, at * 91 + 91))),
+    traces: result.traces.map(({ values: trace }) =>
+      Array.from(trace.subarray(at * gridPoints, (at + 1) * gridPoints)),
+    ),
     meanField: rounded(rate.observables.find(({ id }) => id === 'I')!.values),
     smallOutbreaks: small,
   };

@@ -88,7 +88,7 @@ function List({ team, timeZone, initial }: LedgerListProps) {
 }
 
 const signed = (microcredits: number): string =>
-  microcredits === 0 ? '' : `${microcredits > 0 ? '+' : ''}${exactCreditsText(microcredits)}`;
+  microcredits === 0 ? '' : `${microcredits > 0 ? '+' : ''}${exactCreditsText(microcredits, 6)}`;
 
 function LedgerTable({ team, timeZone, entries }: { team: string; timeZone: string; entries: LedgerEntry[] }) {
   return (
@@ -139,7 +139,7 @@ function LedgerTable({ team, timeZone, entries }: { team: string; timeZone: stri
               </td>
               <td className="figure">{signed(entry.availableChangeMicrocredits)}</td>
               <td className="figure hidden sm:table-cell">{signed(entry.heldChangeMicrocredits)}</td>
-              <td className="figure font-medium">{exactCreditsText(entry.availableMicrocredits)}</td>
+              <td className="figure font-medium">{exactCreditsText(entry.availableMicrocredits, 6)}</td>
             </tr>
           ))}
         </tbody>

@@ -20,12 +20,13 @@ describe('creditsText', () => {
 
 describe('exactCreditsText', () => {
   it('shows every digit and at least two decimals', () => {
-    expect([1_000_000, -1_234_567, 500_000, 1_234_567_000_000].map(exactCreditsText)).toEqual([
+    expect([1_000_000, -1_234_567, 500_000, 1_234_567_000_000].map((amount) => exactCreditsText(amount))).toEqual([
       '1.00',
       '−1.234567',
       '0.50',
       '1,234,567.00',
     ]);
+    expect(exactCreditsText(500_000, 6)).toBe('0.500000');
   });
 });
 

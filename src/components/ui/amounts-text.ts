@@ -19,13 +19,14 @@ export function creditsText(microcredits: number, rounding: Rounding = 'nearest'
   return rounded.toLocaleString(locale, { maximumFractionDigits: decimals });
 }
 
-/** All digits, for the ledger: at least two decimals, up to six. */
-export function exactCreditsText(microcredits: number): string {
+/** All digits, for the ledger: at least `leastDecimals`, up to six. In columns six, so that the points stand in line. */
+export function exactCreditsText(microcredits: number, leastDecimals = 2): string {
   const sign = microcredits < 0 ? '−' : '';
   const whole = Math.floor(Math.abs(microcredits) / microcreditsPerCredit);
   const rest = String(Math.abs(microcredits) % microcreditsPerCredit)
     .padStart(6, '0')
-    .replace(/0{1,4}$/, '');
+    .replace(/0+$/, '')
+    .padEnd(leastDecimals, '0');
   return `${sign}${whole.toLocaleString(locale)}.${rest}`;
 }
 
