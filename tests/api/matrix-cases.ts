@@ -9,7 +9,7 @@ export interface Case {
   /** Values of `{…}` but the team; by default the id of something that is not there. */
   parameters?: Record<string, string>;
   query?: string;
-  body?: unknown;
+  body?: object | string | ((ids: Record<string, string>) => object);
   contentType?: string;
 }
 
@@ -83,7 +83,7 @@ export const cases: Record<string, Case> = {
   listJobs: plain,
   readJob: plain,
   cancelJob: { body: {} },
-  extendJob: { body: { quoteId: 'quote_none' } },
+  extendJob: { body: (ids) => ({ quoteId: ids['quote'] ?? 'quote_none' }) },
   jobProgress: plain,
   jobStatistics: plain,
   jobDistribution: { query: '?observable=A&time=1' },
@@ -102,10 +102,12 @@ export const cases: Record<string, Case> = {
   listInvoices: plain,
   readInvoice: plain,
   downloadInvoicePdf: plain,
+  downloadInvoiceUbl: plain,
   reviewInvoice: { body: { state: 'approved' } },
   requestProForma: { body: { pack: 'none', currency: 'GBP', purchaseOrder: 'PO 1' } },
   listProFormas: plain,
   downloadProFormaPdf: plain,
+  markTransferReceived: plain,
   receivePaymentEvent: { body: '{}', contentType: 'application/json' },
 };
 
@@ -184,8 +186,15 @@ export async function headersOf(
   }
 }
 
-export function callOf(contract: Contract, team: string, headers: Record<string, string>): Call {
-  const { parameters = {}, query = '', body, contentType } = cases[contract.id]!;
+/** `ids` are real ones, for telling another team's things from things that are not there. */
+export function callOf(
+  contract: Contract,
+  team: string,
+  headers: Record<string, string>,
+  ids: Record<string, string> = {},
+): Call {
+  const { query = '', body, contentType, ...stated } = cases[contract.id]!;
+  const parameters: Record<string, string> = { ...stated.parameters, ...ids };
   const filled = contract.path.replaceAll(/\{(\w+)\}/g, (_, name: string) =>
     name === 'team' ? team : (parameters[name] ?? `${name}_none`),
   );
@@ -193,7 +202,7 @@ export function callOf(contract: Contract, team: string, headers: Record<string,
     method: contract.method,
     path: filled + query,
     headers: { ...headers, ...(contentType ? { 'Content-Type': contentType } : {}) },
-    ...(body === undefined ? {} : { body }),
+    ...(body === undefined ? {} : { body: typeof body === 'function' ? body(ids) : body }),
   };
 }
 
