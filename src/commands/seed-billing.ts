@@ -1,4 +1,5 @@
 /** The demo's money: billing details, one paid top-up with its invoice, one open pro-forma. */
+import { inWriteTransaction } from '@db/in-write-transaction.ts';
 import type { Actor } from '@/domain/teams/actor.ts';
 import { reconcileTopUps } from '@/server/billing/reconcile-top-ups.ts';
 import { requestProForma } from '@/server/billing/request-pro-forma.ts';
@@ -6,10 +7,11 @@ import { sendReceipts } from '@/server/billing/send-receipts.ts';
 import { setBillingDetails } from '@/server/billing/set-billing-details.ts';
 import { startTopUp } from '@/server/billing/start-top-up.ts';
 import { env } from '@/server/env.ts';
+import { grantCredits } from '@/server/ledger/grant-credits.ts';
 import { must } from './must.ts';
 
-export async function seedBilling(options: { team: string; owner: Actor; finance: Actor }): Promise<void> {
-  const { team, finance } = options;
+export async function seedBilling(options: { teamId: string; team: string; finance: Actor }): Promise<void> {
+  const { teamId, team, finance } = options;
   must(
     await setBillingDetails({
       actor: finance,
@@ -33,8 +35,12 @@ export async function seedBilling(options: { team: string; owner: Actor; finance
       termsDays: 30,
     }),
   );
-  // A real payment service would want a real card.
-  if (env().STRIPE_SECRET_KEY || !env().STRIPE_FAKE_URL) return;
+  if (env().STRIPE_SECRET_KEY || !env().STRIPE_FAKE_URL) {
+    // A real payment service would want a real card; the demo's jobs need credits all the same.
+    const grant = { teamId, amountMicrocredits: 100_000_000, reason: 'Demo credits', grantId: `demo:${teamId}` };
+    await inWriteTransaction(() => grantCredits(grant));
+    return;
+  }
   const { checkoutUrl } = must(await startTopUp({ actor: finance, team, pack: '100', currency: 'GBP' }));
   const paid = await fetch(checkoutUrl, {
     method: 'POST',

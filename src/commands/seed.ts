@@ -3,7 +3,8 @@
  * pro-forma. A database that holds anybody is left alone. Everything goes through the same services as a request would.
  */
 import { randomInt } from 'node:crypto';
-import { mkdir, writeFile } from 'node:fs/promises';
+import { existsSync } from 'node:fs';
+import { mkdir, rm, writeFile } from 'node:fs/promises';
 import path from 'node:path';
 import { closeDatabase, openDatabase } from '@db/connection.ts';
 import { migrate } from '@db/migrate.ts';
@@ -78,14 +79,20 @@ async function isEmpty(): Promise<boolean> {
   return people === 0;
 }
 
+const unfinished = path.join(env().BURETTE_DATA_DIR, 'seeding');
+if (existsSync(unfinished)) {
+  console.error(`The demo was not put in completely the last time. Remove ${env().BURETTE_DATA_DIR} and start again.`);
+  process.exit(1);
+}
 if (await isEmpty()) {
   console.log('Seeding the new database with the demo…');
+  await writeFile(unfinished, '');
   const shutDown = await bootServer();
   const signIns: SignIn[] = [];
-  const { actors } = await seedTeam(tarnFell, signIns);
+  const { team, actors } = await seedTeam(tarnFell, signIns);
   await seedTeam(kestrelBay, signIns);
   await seedPerson(signIns, { ...demoOperator, role: 'operator (Burette staff)', operator: true });
-  await seedBilling({ team: tarnFell.slug, owner: actors.get('owner')!, finance: actors.get('finance')! });
+  await seedBilling({ teamId: team.id, team: team.slug, finance: actors.get('finance')! });
   await seedWork({
     team: tarnFell.slug,
     modellers: [actors.get('modeller')!, actors.get('modeller2')!],
@@ -96,4 +103,5 @@ if (await isEmpty()) {
   await writeFile(path.join(env().BURETTE_DATA_DIR, 'demo-people.json'), JSON.stringify(signIns, null, 2), {
     mode: 0o600,
   });
+  await rm(unfinished);
 }
