@@ -7,6 +7,7 @@ import { QueryTypes } from 'sequelize';
 import { expect, it } from 'vitest';
 import { database } from '@db/connection.ts';
 import { inWriteTransaction } from '@db/in-write-transaction.ts';
+import { accounts } from '@/domain/ledger/accounts.ts';
 import { decideFrozenLot } from '@/server/ledger/decide-frozen-lot.ts';
 import { freezeLot } from '@/server/ledger/freeze-lot.ts';
 import { grantCredits } from '@/server/ledger/grant-credits.ts';
@@ -98,29 +99,27 @@ async function perform(teamId: string, step: string, { act: name, which: place, 
   });
 }
 
-/** The invariants of the design, by plain SQL over the postings and draws: independent of the code that wrote them. */
+/** The invariants of the design, by plain sums over postings, lots and draws: independent of the code that wrote them. */
 async function expectInvariants(teamId: string): Promise<void> {
-  const one = async (text: string) =>
-    (await database().query<{ value: number | null }>(text, { type: QueryTypes.SELECT, bind: { teamId } }))[0]?.value ??
-    0;
-  const balance = await readBalance(teamId);
   const sum = (account: string) =>
-    one(
-      `SELECT sum(amountMicrocredits) AS value FROM ledgerPostings WHERE teamId = $teamId AND account = '${account}'`,
-    );
-  for (const [account, value] of Object.entries(balance)) expect(await sum(account)).toBe(value);
+    `(SELECT coalesce(sum(amountMicrocredits), 0) FROM ledgerPostings WHERE teamId = $teamId AND account = '${account}') AS ${account}`;
+  const [sums] = await database().query<Record<(typeof accounts)[number] | 'issued' | 'drawn', number>>(
+    `SELECT ${accounts.map(sum).join(', ')},
+       (SELECT coalesce(sum(creditsMicrocredits), 0) FROM lots WHERE teamId = $teamId) AS issued,
+       (SELECT coalesce(sum(amountMicrocredits), 0) FROM lotDraws
+        WHERE lotId IN (SELECT id FROM lots WHERE teamId = $teamId)) AS drawn`,
+    { type: QueryTypes.SELECT, bind: { teamId } },
+  );
+  if (!sums) throw new Error('No sums.');
+  const { issued, drawn, ...balance } = sums;
+  expect(await readBalance(teamId)).toEqual(balance);
   const { available, held, frozen, spent, returned, bought, granted, earned } = balance;
   expect(Math.min(available, held, frozen, spent, returned)).toBeGreaterThanOrEqual(0);
   expect(Math.max(bought, granted, earned)).toBeLessThanOrEqual(0);
   expect(available + held + frozen + spent + returned + bought + granted + earned).toBe(0);
-  const issued = await one(`SELECT sum(creditsMicrocredits) AS value FROM lots WHERE teamId = $teamId`);
-  const drawn = await one(
-    `SELECT sum(amountMicrocredits) AS value FROM lotDraws WHERE lotId IN (SELECT id FROM lots WHERE teamId = $teamId)`,
-  );
   expect(issued - drawn).toBe(available + held + frozen);
   expect(drawn).toBe(spent + returned);
-  const segments = [0, 1, 2, 3].map((place) => readSegment(`${teamId}-segment${place}`));
-  const totals = await Promise.all(segments);
+  const totals = await Promise.all([0, 1, 2, 3].map((place) => readSegment(`${teamId}-segment${place}`)));
   expect(totals.reduce((total, { heldMicrocredits }) => total + heldMicrocredits, 0)).toBe(held);
   expect(totals.reduce((total, { spentMicrocredits }) => total + spentMicrocredits, 0)).toBe(spent);
 }
