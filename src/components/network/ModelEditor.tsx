@@ -142,6 +142,12 @@ function Editor({ team, timeZone, readOnly, stored }: ModelEditorProps) {
             </div>
           )}
         </div>
+        {draft.changes && (
+          <Notice still className="mb-4" title="Timed and triggered changes are kept">
+            {draft.changes.map(({ id }) => id).join(', ')}: they are checked and stored with the model, and cannot be
+            edited here yet.
+          </Notice>
+        )}
         <div className="space-y-8">
           {shown.map((grid) => (
             <Grid

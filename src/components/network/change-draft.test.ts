@@ -40,6 +40,17 @@ describe('cells and documents', () => {
     expect(problems).toEqual([]);
   });
 
+  it('timed changes, which the grids do not show, are kept through editing', () => {
+    const dose = {
+      id: 'dose',
+      when: { kind: 'time', time: '10' },
+      assignments: [{ variable: 'S', expression: 'S + 5' }],
+    };
+    const draft = draftOf('Enzyme', { ...enzyme, changes: [dose] } as NetworkDocument);
+    const next = after(draft, { kind: 'insert', grid: 'species', beforeKey: draft.grids.species[0]!.key });
+    expect(writtenDocument(next).document.changes).toEqual([dose]);
+  });
+
   it('reads the numbers that spreadsheets and people write, and nothing else', () => {
     expect(['12', ' 1,200 ', '2e-3', '−4', '.5', '1 000'].map(numberOf)).toEqual([12, 1200, 0.002, -4, 0.5, 1000]);
     for (const text of ['', 'twelve', '1,2', '0x10', 'Infinity', '1e']) expect(numberOf(text)).toBeNaN();

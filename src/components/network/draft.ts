@@ -1,5 +1,5 @@
 /** What the editor holds while somebody types: every cell as text, so that nothing typed is ever lost or rewritten. */
-import type { NetworkDocument, ParameterDocument } from '@/domain/network/document.ts';
+import type { ChangeDocument, NetworkDocument, ParameterDocument } from '@/domain/network/document.ts';
 
 export const gridNames = [
   'species',
@@ -23,6 +23,8 @@ export interface Draft {
   name: string;
   timeUnit: string;
   grids: Record<GridName, Row[]>;
+  /** Timed and triggered changes: the grids do not show them yet, and nothing of them may be lost. */
+  changes?: ChangeDocument[] | undefined;
   /** The number in the next row's key. */
   nextKey: number;
 }
@@ -109,15 +111,17 @@ export function draftOf(name: string, document: NetworkDocument): Draft {
       (document.observables ?? []).map(({ id, name: title, expression }) => ({ id, name: title ?? '', expression })),
     ),
   };
-  return { name, timeUnit: document.timeUnit ?? '', grids, nextKey };
+  const changes = document.changes?.length ? { changes: document.changes } : {};
+  return { name, timeUnit: document.timeUnit ?? '', grids, ...changes, nextKey };
 }
 
 /** Whether two drafts say the same, whatever their row keys. */
 export function sameContent(one: Draft, other: Draft): boolean {
-  const said = ({ name, timeUnit, grids }: Draft): string =>
+  const said = ({ name, timeUnit, grids, changes }: Draft): string =>
     JSON.stringify([
       name,
       timeUnit,
+      changes ?? [],
       gridNames.map((grid) =>
         grids[grid].map(({ cells }) =>
           Object.entries(cells)

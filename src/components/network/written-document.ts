@@ -105,6 +105,7 @@ export function writtenDocument(draft: Draft): WrittenDocument {
       name: optional(row, 'name'),
       expression: cell(row, 'expression'),
     })),
+    ...(draft.changes?.length ? { changes: draft.changes } : {}),
   };
   const keysOf = (list: Row[]): string[] => list.map(({ key }) => key);
   return {
