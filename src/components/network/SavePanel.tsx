@@ -5,7 +5,7 @@ import { intentKey } from '@/components/api/intent-key.ts';
 import { Button, ButtonLink } from '@/components/ui/Button.tsx';
 import { TextField } from '@/components/ui/Field.tsx';
 import { Notice, ProblemNotice } from '@/components/ui/Notice.tsx';
-import { createModel, saveVersion } from '@/contracts/network.ts';
+import { createModel, readModel, saveVersion } from '@/contracts/network.ts';
 import type { ProblemDocument } from '@/contracts/errors.ts';
 import { paths } from '@/paths.ts';
 import { checksOf, type Checks } from './use-checks.ts';
@@ -29,7 +29,8 @@ export function SavePanel({ team, model, draft, changed, keeping, forget, onErro
   const [hindrance, setHindrance] = useState<string | null>(null);
   const intent = useRef<{ body: string; key: string } | null>(null);
 
-  async function save(): Promise<void> {
+  /** `basedOn` is the latest version that the person knows of. */
+  async function save(basedOn = model?.latestNumber ?? 0): Promise<void> {
     setProblem(null);
     const checks = checksOf(draft);
     if (model === null && draft.name.trim() === '') {
@@ -48,7 +49,7 @@ export function SavePanel({ team, model, draft, changed, keeping, forget, onErro
     setSaving(true);
     const network = checks.written.document;
     const words = note.trim() === '' ? {} : { note: note.trim() };
-    const body = JSON.stringify([network, words, draft.name]);
+    const body = JSON.stringify([network, words, draft.name, basedOn]);
     // The same content sent again is the same intent, so that a lost answer stores nothing twice.
     if (intent.current?.body !== body) intent.current = { body, key: intentKey() };
     const idempotencyKey = intent.current.key;
@@ -61,7 +62,7 @@ export function SavePanel({ team, model, draft, changed, keeping, forget, onErro
           })
         : await callApi(saveVersion, {
             path: { team, model: model.id },
-            body: { network, basedOn: model.latestNumber, ...words },
+            body: { network, basedOn, ...words },
             idempotencyKey,
           });
     if (!called.ok) {
@@ -72,6 +73,13 @@ export function SavePanel({ team, model, draft, changed, keeping, forget, onErro
     forget();
     const { model: stored, version } = called.value;
     window.location.assign(`${paths.model(team, stored.id)}?saved=${version.number}`);
+  }
+
+  /** After somebody else saved: theirs stays as it is, and this becomes the version after it. */
+  async function saveAfterTheirs(id: string): Promise<void> {
+    const called = await callApi(readModel, { path: { team, model: id } });
+    if (called.ok) await save(called.value.model.latestVersion.number);
+    else setProblem(called.problem);
   }
 
   return (
@@ -119,9 +127,14 @@ export function SavePanel({ team, model, draft, changed, keeping, forget, onErro
           problem={problem}
           action={
             problem.code === 'version_conflict' && model !== null ? (
-              <ButtonLink size="small" href={paths.model(team, model.id)} target="_blank">
-                Open the latest version beside this
-              </ButtonLink>
+              <>
+                <ButtonLink size="small" href={paths.model(team, model.id)} target="_blank">
+                  Open theirs beside this
+                </ButtonLink>
+                <Button size="small" variant="quiet" onClick={() => void saveAfterTheirs(model.id)}>
+                  Save mine after theirs
+                </Button>
+              </>
             ) : undefined
           }
         />
