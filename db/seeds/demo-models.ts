@@ -45,13 +45,13 @@ export const expressionModel: DemoModel = {
       { id: 'G', name: 'Reporter protein', initialCount: 0 },
     ],
     parameters: [
-      { id: 'k_transcribe', name: 'Transcription', value: 0.6, unit: '1/min' },
+      { id: 'k_make', name: 'mRNA synthesis', value: 0.6, unit: '1/min' },
       { id: 'k_translate', name: 'Translation', value: 1.8, unit: '1/min' },
       { id: 'd_messenger', name: 'Messenger decay', value: 0.22, unit: '1/min' },
       { id: 'd_protein', name: 'Protein dilution', value: 0.024, unit: '1/min' },
     ],
     reactions: [
-      { id: 'transcribe', name: 'Transcription', equation: '∅ → M', rateLaw: massAction('k_transcribe') },
+      { id: 'make', name: 'mRNA is made', equation: '∅ → M', rateLaw: massAction('k_make') },
       { id: 'translate', name: 'Translation', equation: 'M → M + G', rateLaw: massAction('k_translate') },
       { id: 'decay', name: 'Messenger decays', equation: 'M → ∅', rateLaw: massAction('d_messenger') },
       { id: 'dilute', name: 'Protein diluted', equation: 'G → ∅', rateLaw: massAction('d_protein') },

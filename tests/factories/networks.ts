@@ -104,7 +104,7 @@ export const twoStageExpression = (kR = 0.5, gammaR = 0.5, kP = 1, gammaP = 0.1)
   network({
     counts: { mRNA: 0, protein: 0 },
     reactions: [
-      { id: 'transcription', produces: { mRNA: 1 }, rate: kR },
+      { id: 'synthesis', produces: { mRNA: 1 }, rate: kR },
       { id: 'mRNA_decay', consumes: { mRNA: 1 }, rate: gammaR },
       { id: 'translation', consumes: { mRNA: 1 }, produces: { mRNA: 1, protein: 1 }, rate: kP },
       { id: 'protein_decay', consumes: { protein: 1 }, rate: gammaP },
