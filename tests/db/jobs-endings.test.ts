@@ -205,6 +205,32 @@ describe('work lost on our side', () => {
     await expectReconciled(bench, job);
   });
 
+  it('gives out the batch that the prefix waits for, however many later ones are in', async () => {
+    const bench = await makeBench();
+    const id = await prepare(bench, 50);
+    let others = 0;
+    let enough = (): void => undefined;
+    const lookAheadFull = new Promise<void>((resolve) => (enough = resolve));
+    let lost = false;
+    const executor = inProcessExecutor({
+      around: async (task, run) => {
+        if (task.firstReplicate === 0 && !lost) {
+          lost = true;
+          await lookAheadFull;
+          throw new Error('the worker went away, late');
+        }
+        const answer = await run();
+        others += 1;
+        // With two workers the dispatcher looks six batches ahead: the lost one and five others.
+        if (others === 5) enough();
+        return answer;
+      },
+    });
+    const job = await letRun(id, executor);
+    expect(job).toMatchObject({ state: 'done', replicatesDone: 1_000 });
+    await expectReconciled(bench, job);
+  });
+
   it('ends the job as our failure when a batch is lost again and again, with its prefix delivered', async () => {
     const bench = await makeBench();
     const id = await prepare(bench, 100);

@@ -97,14 +97,11 @@ export class Dispatcher {
   #pump(): void {
     while (!this.#stopped && this.#running.pending + this.#running.size < this.#running.concurrency) {
       const lookAhead = 2 * this.#running.concurrency + 2;
-      const candidates = [...this.#jobs.values()].filter(
-        (open) => !open.ending && open.waiting.length > 0 && open.pending < lookAhead,
-      );
+      const candidates = [...this.#jobs.values()].filter((open) => open.hasBatchWithin(lookAhead));
       const open = this.#turns.next(candidates);
       if (!open) return;
       const batch = open.waiting.shift()!;
       this.#turns.serve(open, Math.max(0.01, batch.replicateCount * open.secondsPerReplicate));
-      open.pending++;
       void this.#running.add(() => this.#run(open, batch));
     }
   }
@@ -118,7 +115,6 @@ export class Dispatcher {
         settleBatch({ jobId: open.jobId, batchId: batch.id, ordinal: batch.ordinal, answer }),
       );
     } catch (error) {
-      open.pending--;
       if (!controller.signal.aborted) await this.#lost(open, batch, error);
     } finally {
       open.out.delete(batch.id);
@@ -151,8 +147,8 @@ export class Dispatcher {
       open.stop();
       await finishJob(open.jobId);
     } else {
-      open.pending =
-        open.out.size + open.turn.size + (await Batch.count({ where: { jobId: open.jobId, state: 'done' } }));
+      const unjoined = { jobId: open.jobId, state: { [Op.in]: ['planned', 'done'] } };
+      open.firstUnjoined = await Batch.min<number, Batch>('ordinal', { where: unjoined });
       this.#pump();
       return;
     }

@@ -22,8 +22,8 @@ export class OpenJob implements TurnCandidate {
   readonly out = new Map<string, AbortController>();
   /** Settling, cutting and finishing happen one at a time. */
   readonly turn = new PQueue({ concurrency: 1 });
-  /** Dispatched or computed, but not yet part of the prefix. */
-  pending = 0;
+  /** The ordinal of the first batch that is not part of the prefix yet; dispatching never runs far ahead of it. */
+  firstUnjoined: number;
   /** No more batches are dispatched. */
   ending = false;
   /** Finished: steps that still queue are dropped. */
@@ -37,10 +37,16 @@ export class OpenJob implements TurnCandidate {
     readonly network: ResolvedNetwork,
     readonly secondsPerReplicate: number,
     waiting: WaitingBatch[],
-    done: number,
+    firstUnjoined: number,
   ) {
     this.waiting = waiting;
-    this.pending = done;
+    this.firstUnjoined = firstUnjoined;
+  }
+
+  /** Whether a batch can be given out now; the one that the prefix waits for always can. */
+  hasBatchWithin(lookAhead: number): boolean {
+    const next = this.waiting[0];
+    return !this.ending && next !== undefined && next.ordinal < this.firstUnjoined + lookAhead;
   }
 
   static async load(job: Job): Promise<OpenJob> {
@@ -59,7 +65,7 @@ export class OpenJob implements TurnCandidate {
       await networkOf(job),
       job.secondsPerReplicate,
       waiting,
-      rows.length - waiting.length,
+      rows[0]?.ordinal ?? 0,
     );
   }
 
