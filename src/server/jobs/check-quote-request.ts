@@ -18,13 +18,25 @@ export function checkQuoteRequest(request: QuoteRequest, document: NetworkDocume
       ? refuse('invalid_input', 'Some overrides do not fit the model.', { errors: ofOverrides.map(fault) })
       : refuse('invalid_network', 'This version of the model cannot run.', { errors: resolved.problems.map(fault) });
   }
-  const faults = [...notBuilt(request), ...tooLarge(request, resolved.network)];
+  const faults = [...tooManyReactions(resolved.network), ...notBuilt(request), ...tooLarge(request, resolved.network)];
   return faults.length > 0
     ? refuse('invalid_input', faults.map(({ message }) => message).join(' '), { errors: faults })
     : accept(resolved.network);
 }
 
 const fault = ({ path, code, message }: InputFault): InputFault => ({ path, code, message });
+
+function tooManyReactions({ reactions }: ResolvedNetwork): InputFault[] {
+  if (reactions.length <= limits.reactionsPerJob) return [];
+  const [present, most] = [reactions.length, limits.reactionsPerJob].map((count) => count.toLocaleString('en'));
+  return [
+    {
+      path: 'modelVersionId',
+      code: 'too_many_reactions',
+      message: `The model has ${present} reactions; models of up to ${most} can be run yet. It stays stored as it is.`,
+    },
+  ];
+}
 
 function notBuilt({ method, sweep, stopping }: QuoteRequest): InputFault[] {
   const faults: InputFault[] = [];

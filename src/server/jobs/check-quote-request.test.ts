@@ -1,0 +1,40 @@
+/** What a quote refuses for its size, before any pilot is tried. */
+import { describe, expect, it } from 'vitest';
+import type { NetworkDocument } from '@/domain/network/document.ts';
+import { limits } from '@/domain/limits.ts';
+import { runBatch } from '@/engine/run-batch.ts';
+import { batchTask } from '@tests/factories/batch-tasks.ts';
+import { checkQuoteRequest, type QuoteRequest } from './check-quote-request.ts';
+
+/** X leaves by `count` reactions of the same kind. */
+const leaving = (count: number): NetworkDocument => ({
+  species: [{ id: 'X', initialCount: 50 }],
+  parameters: [{ id: 'k', value: 0.01 }],
+  reactions: Array.from({ length: count }, (_, index) => ({
+    id: `leave${index}`,
+    equation: 'X → ∅',
+    rateLaw: { kind: 'massAction', constant: 'k' },
+  })),
+});
+const request: QuoteRequest = {
+  modelVersionId: 'version_1',
+  replicates: 10,
+  horizon: 1,
+  gridIntervals: 2,
+  method: 'exact',
+  lane: 'steady',
+};
+
+describe('the number of reactions of a job', () => {
+  it('is refused in words one above the limit', () => {
+    const refused = checkQuoteRequest(request, leaving(limits.reactionsPerJob + 1));
+    expect(refused).toMatchObject({ ok: false, code: 'invalid_input', errors: [{ code: 'too_many_reactions' }] });
+  });
+
+  it('runs at the limit', async () => {
+    const checked = checkQuoteRequest(request, leaving(limits.reactionsPerJob));
+    if (!checked.ok) throw new Error(checked.detail);
+    const { replicateCount, kernel } = await runBatch(batchTask(checked.value, { replicateCount: 10, horizon: 1 }));
+    expect({ replicateCount, kernel }).toEqual({ replicateCount: 10, kernel: 'direct-scalar' });
+  });
+});
