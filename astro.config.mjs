@@ -16,6 +16,8 @@ export default defineConfig({
   // Our middleware checks Origin on every unsafe method, JSON included (src/server/http/check-origin.ts).
   security: { checkOrigin: false },
   devToolbar: { enabled: false },
+  // Highlighted code carries inline styles, which the security policy refuses.
+  markdown: { syntaxHighlight: false },
   server: { port: Number(process.env.PORT ?? 4321), host: process.env.HOST ?? '127.0.0.1' },
   vite: {
     // The framework reads tsconfig's aliases for pages; bundles of browser workers need this one said again.

@@ -10,6 +10,17 @@ import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 export type StreamPurpose = 'job' | 'pilot' | 'preview';
 export type KernelName = 'direct-scalar' | 'direct-simd' | 'composition-rejection' | 'tau-leaping' | 'reference';
 
+/**
+ * A first passage: when the observable first is at least (`rises_to`) or at most (`falls_to`) the threshold. Looked at at
+ * time 0, after each firing and after each change. Extinction of a species is `falls_to` 0.
+ */
+export interface Passage {
+  /** Index in the network's observables. */
+  observable: number;
+  direction: 'rises_to' | 'falls_to';
+  threshold: number;
+}
+
 export interface BatchTask {
   network: ResolvedNetwork;
   /** Simulated time at the end of each replicate, in the network's unit of time; above 0. */
@@ -24,6 +35,8 @@ export interface BatchTask {
   replicateCount: number;
   /** Replicates 0 … keptTraces − 1 of the point are kept whole on the grid (those that fall inside this batch). */
   keptTraces: number;
+  /** First passages to time; none when left out. */
+  passages?: Passage[];
   /** Fails the replicate that would exceed it; null for none. A property of the job, never of the batch. */
   eventBudgetPerReplicate: number | null;
   /** Stops the batch early after this many events in all, keeping complete replicates (pilots); null for none. */
@@ -51,6 +64,8 @@ export interface BatchResult {
   summary: EnsembleSummary;
   /** Kept traces that fell in this batch. */
   traces: Trace[];
+  /** Times of first passage, passages × replicateCount, passage by passage; Infinity where not passed by the horizon. */
+  passageTimes: Float64Array;
   failure: ModelFailure | null;
   kernel: KernelName;
 }

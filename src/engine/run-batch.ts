@@ -130,6 +130,7 @@ class Collector {
       eventsPerReplicate: this.#events.slice(0, this.replicates),
       summary: this.#summary,
       traces: this.#traces,
+      passageTimes: new Float64Array(0),
       failure: this.#failure,
     };
   }
@@ -153,4 +154,5 @@ function checkTask(task: BatchTask): void {
   for (const { id, initialCount } of task.network.species)
     demand(whole(initialCount, 0) && initialCount < 2 ** 31, `initial count ${initialCount} of ${id}`);
   demand(task.network.observables.length > 0, 'no observables');
+  demand((task.passages ?? []).length === 0, 'first passages are not part of this engine version');
 }

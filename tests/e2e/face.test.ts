@@ -1,7 +1,7 @@
 /**
  * The face of the product on the seeded demo: every public, account, team and money page in both themes and at both widths
- * without an axe fault (WCAG 2.2 A and AA, axe-core's rules), console error or sideways scroll; what finance and viewers
- * do on their pages.
+ * without an axe fault (WCAG 2.2 A and AA, axe-core's rules), console error or sideways scroll; pages that work without
+ * script; the column's words; what owner and finance do on their pages.
  */
 import { readFile } from 'node:fs/promises';
 import path from 'node:path';
@@ -50,6 +50,7 @@ const publicPages = [
   '/',
   '/pricing',
   '/docs',
+  '/docs/quick-start',
   '/docs/methods',
   '/docs/limits',
   '/security',
@@ -102,7 +103,91 @@ describe.each([
   });
 });
 
+describe('without script', () => {
+  it('somebody signs in, reads overview, credits and an invoice, and signs out', async () => {
+    const { page } = await signIn('finance', { javaScriptEnabled: false });
+    expect(await page.getByRole('heading', { level: 1 }).textContent()).toBe('Tarn & Fell Modelling');
+    await page.getByRole('link', { name: 'Credits', exact: true }).click();
+    expect(await page.getByRole('heading', { name: 'Ledger' }).isVisible()).toBe(true);
+    expect(await page.getByText('Charge', { exact: true }).first().isVisible()).toBe(true);
+    await page.getByRole('link', { name: 'Billing', exact: true }).click();
+    await page.getByRole('link', { name: /^BUR-/ }).first().click();
+    expect(await page.getByRole('link', { name: 'Download the PDF' }).isVisible()).toBe(true);
+    await page.locator('details[data-menu] summary').click();
+    await page.getByRole('button', { name: 'Sign out' }).click();
+    await page.waitForURL(`${app.url}/`);
+    expect(await page.getByRole('link', { name: 'Sign in' }).isVisible()).toBe(true);
+    await page.context().close();
+  });
+});
+
+describe('the graduated column', () => {
+  it('says in words what it shows and follows the quote on the page', async () => {
+    const { page } = await signIn('modeller');
+    const column = page.getByRole('img', { name: /credits available/ }).first();
+    expect(await column.getAttribute('aria-label')).toMatch(/^[\d.,]+ credits available\.$/);
+    await page.evaluate(() =>
+      window.dispatchEvent(
+        new CustomEvent('burette:quote', { detail: { expectedMicrocredits: 5_000_000, highMicrocredits: 6_000_000 } }),
+      ),
+    );
+    await page.waitForFunction(
+      () =>
+        document
+          .querySelector('aside[aria-label="Credits"] div.sticky svg[role=img]')
+          ?.getAttribute('aria-label')
+          ?.includes('after the quote on this page') === true,
+    );
+    await page.context().close();
+  });
+});
+
 describe('what people do', () => {
+  it('an owner makes a project code, a token that works until it is revoked, and invites somebody who joins', async () => {
+    const { page, faults } = await signIn('owner');
+    await page.goto(`${app.url}${team}/team/project-codes`, { waitUntil: 'networkidle' });
+    await page.getByLabel('Code', { exact: true }).fill('not valid');
+    await page.getByRole('button', { name: 'Create the code' }).click();
+    await page.getByText(/starting with a letter or digit/).waitFor();
+    await page.getByLabel('Code', { exact: true }).fill('HELM-3');
+    await page.getByLabel('Client (optional)').fill('Helmsdale Fisheries');
+    await page.getByRole('button', { name: 'Create the code' }).click();
+    await page.getByRole('cell', { name: 'HELM-3', exact: true }).waitFor();
+    await page.getByRole('button', { name: 'Close HELM-3' }).click();
+    await page.getByRole('button', { name: 'Reopen HELM-3' }).waitFor();
+
+    await page.goto(`${app.url}${team}/team/tokens`, { waitUntil: 'networkidle' });
+    await page.getByLabel('Name').fill('nightly report');
+    await page.getByRole('button', { name: 'Create the token' }).click();
+    const secret = (await page.locator('code').first().textContent())!.trim();
+    const credits = (): Promise<Response> =>
+      fetch(`${app.url}/api/v1/teams/tarn-fell/credits`, { headers: { Authorization: `Bearer ${secret}` } });
+    expect((await credits()).status).toBe(200);
+    await page.getByRole('button', { name: 'Done' }).click();
+    expect(await page.getByText(secret).count()).toBe(0);
+    await page.getByRole('button', { name: 'Revoke nightly report' }).click();
+    await page.getByRole('button', { name: 'Revoke the token' }).click();
+    await page.getByRole('heading', { name: 'Revoked' }).waitFor();
+    expect((await credits()).status).toBe(401);
+
+    const guest = 'guest@helmsdale.example';
+    await page.goto(`${app.url}${team}/team/members`, { waitUntil: 'networkidle' });
+    await page.getByLabel('E-mail').fill(guest);
+    await page.getByRole('button', { name: 'Send the invitation', exact: true }).click();
+    await page.getByText(`An invitation is on its way to ${guest}.`).waitFor();
+    expect(faults).toEqual([]);
+    await page.context().close();
+
+    const joining = await openPage(browser);
+    await joining.page.goto(await invitationLink(guest));
+    await joining.page.getByLabel('Your name').fill('Gair Helm');
+    await joining.page.getByLabel('Password').fill('skiff kettle marram nine');
+    await joining.page.getByRole('button', { name: 'Join the team' }).click();
+    await joining.page.waitForURL(`**${team}/overview`);
+    expect(joining.faults).toEqual([]);
+    await joining.page.context().close();
+  });
+
   it('finance sets billing details, asks for a pro-forma and approves an invoice', async () => {
     const { page, faults } = await signIn('finance');
     await page.goto(`${app.url}${team}/billing/details`, { waitUntil: 'networkidle' });
@@ -152,3 +237,15 @@ describe('what people do', () => {
     await page.context().close();
   });
 });
+
+async function invitationLink(to: string): Promise<string> {
+  const deadline = Date.now() + 30_000;
+  while (Date.now() < deadline) {
+    const answer = await fetch(`${app.mailboxUrl}/messages?to=${encodeURIComponent(to)}`);
+    const { messages } = (await answer.json()) as { messages: { text: string }[] };
+    const link = messages.flatMap(({ text }) => text.match(/https?:\/\/\S+\/invitation\S+/g) ?? [])[0];
+    if (link) return link;
+    await new Promise((resolve) => setTimeout(resolve, 200));
+  }
+  throw new Error(`No invitation to ${to} arrived.`);
+}

@@ -6,6 +6,7 @@ import { TextAreaField, TextField } from '@/components/ui/Field.tsx';
 import { Notice, ProblemNotice } from '@/components/ui/Notice.tsx';
 import { setBillingDetails, type BillingDetails } from '@/contracts/billing.ts';
 import type { ProblemDocument } from '@/contracts/errors.ts';
+import { WhenLive } from '@/components/ui/WhenLive.tsx';
 
 export interface BillingDetailsFormProps {
   team: string;
@@ -45,51 +46,53 @@ export function BillingDetailsForm({ team, initial, mayChange }: BillingDetailsF
   }
 
   return (
-    <form
-      className="flex max-w-xl flex-col gap-5"
-      onSubmit={(event) => {
-        event.preventDefault();
-        if (state !== 'saving') void save();
-      }}
-    >
-      <TextField label="Name of the buyer" required autoComplete="organization" {...bind('name')} />
-      <TextAreaField
-        label="Address"
-        hint="Street, town, postcode; up to 6 lines."
-        required
-        rows={4}
-        autoComplete="street-address"
-        {...bind('address')}
-      />
-      <div className="grid gap-5 sm:grid-cols-[9rem_minmax(0,1fr)]">
-        <TextField
-          label="Country"
-          hint="Two letters, such as DE."
+    <WhenLive>
+      <form
+        className="flex max-w-xl flex-col gap-5"
+        onSubmit={(event) => {
+          event.preventDefault();
+          if (state !== 'saving') void save();
+        }}
+      >
+        <TextField label="Name of the buyer" required autoComplete="organization" {...bind('name')} />
+        <TextAreaField
+          label="Address"
+          hint="Street, town, postcode; up to 6 lines."
           required
-          maxLength={2}
-          autoComplete="country"
-          {...bind('country')}
+          rows={4}
+          autoComplete="street-address"
+          {...bind('address')}
         />
-        <TextField label="VAT number (optional)" hint="With its country’s letters." {...bind('vatNumber')} />
-      </div>
-      <TextField
-        label="E-mail for receipts (optional)"
-        hint="Without it, the owners get them."
-        type="email"
-        autoComplete="email"
-        {...bind('email')}
-      />
-      {problem && !problem.errors?.length && <ProblemNotice problem={problem} />}
-      {state === 'saved' && <Notice tone="done">Saved. The next invoice uses these details.</Notice>}
-      {mayChange ? (
-        <div>
-          <Button type="submit" variant="primary" pending={state === 'saving'}>
-            Save the details
-          </Button>
+        <div className="grid gap-5 sm:grid-cols-[9rem_minmax(0,1fr)]">
+          <TextField
+            label="Country"
+            hint="Two letters, such as DE."
+            required
+            maxLength={2}
+            autoComplete="country"
+            {...bind('country')}
+          />
+          <TextField label="VAT number (optional)" hint="With its country’s letters." {...bind('vatNumber')} />
         </div>
-      ) : (
-        <p className="text-sm text-soft">Owners and finance admins change these details.</p>
-      )}
-    </form>
+        <TextField
+          label="E-mail for receipts (optional)"
+          hint="Without it, the owners get them."
+          type="email"
+          autoComplete="email"
+          {...bind('email')}
+        />
+        {problem && !problem.errors?.length && <ProblemNotice problem={problem} />}
+        {state === 'saved' && <Notice tone="done">Saved. The next invoice uses these details.</Notice>}
+        {mayChange ? (
+          <div>
+            <Button type="submit" variant="primary" pending={state === 'saving'}>
+              Save the details
+            </Button>
+          </div>
+        ) : (
+          <p className="text-sm text-soft">Owners and finance admins change these details.</p>
+        )}
+      </form>
+    </WhenLive>
   );
 }

@@ -10,6 +10,7 @@ import { startTopUp } from '@/contracts/billing.ts';
 import type { ProblemDocument } from '@/contracts/errors.ts';
 import { currencies, type CreditPack, type Currency } from '@/domain/pricing/price-book.ts';
 import { currencyWords } from './currency-words.ts';
+import { WhenLive } from '@/components/ui/WhenLive.tsx';
 
 export interface BuyCreditsProps {
   team: string;
@@ -47,41 +48,43 @@ export function BuyCredits({ team, packs }: BuyCreditsProps) {
   }
 
   return (
-    <form
-      className="flex flex-col gap-5"
-      onSubmit={(event) => {
-        event.preventDefault();
-        if (!pending) void buy();
-      }}
-    >
-      <RadioField
-        legend="Pack"
-        name="pack"
-        value={packId}
-        onChange={setPackId}
-        choices={packs.map((one) => ({
-          value: one.id,
-          label: `${countText(one.credits)} credits`,
-          hint: `${moneyText(one.netMinor[currency], currency)} · ${perCredit(one, currency)} a credit`,
-        }))}
-      />
-      <SelectField
-        label="Currency"
-        value={currency}
-        onChange={(event) => setCurrency(event.target.value as Currency)}
-        choices={currencies.map((code) => ({ value: code, label: `${currencyWords[code]} (${code})` }))}
-        fieldClassName="max-w-[16rem]"
-      />
-      {problem && <ProblemNotice problem={problem} />}
-      <div>
-        <Button type="submit" variant="primary" pending={pending} disabled={!pack}>
-          {pack ? `Go on to pay ${moneyText(pack.netMinor[currency], currency)} plus tax` : 'Choose a pack'}
-        </Button>
-        <p className="mt-2 text-xs text-soft">
-          You pay on the payment service’s page. Credits come when the payment is confirmed, with a receipt and an
-          invoice. The tax treatment shown is configuration, not advice.
-        </p>
-      </div>
-    </form>
+    <WhenLive>
+      <form
+        className="flex flex-col gap-5"
+        onSubmit={(event) => {
+          event.preventDefault();
+          if (!pending) void buy();
+        }}
+      >
+        <RadioField
+          legend="Pack"
+          name="pack"
+          value={packId}
+          onChange={setPackId}
+          choices={packs.map((one) => ({
+            value: one.id,
+            label: `${countText(one.credits)} credits`,
+            hint: `${moneyText(one.netMinor[currency], currency)} · ${perCredit(one, currency)} a credit`,
+          }))}
+        />
+        <SelectField
+          label="Currency"
+          value={currency}
+          onChange={(event) => setCurrency(event.target.value as Currency)}
+          choices={currencies.map((code) => ({ value: code, label: `${currencyWords[code]} (${code})` }))}
+          fieldClassName="max-w-[16rem]"
+        />
+        {problem && <ProblemNotice problem={problem} />}
+        <div>
+          <Button type="submit" variant="primary" pending={pending} disabled={!pack}>
+            {pack ? `Go on to pay ${moneyText(pack.netMinor[currency], currency)} plus tax` : 'Choose a pack'}
+          </Button>
+          <p className="mt-2 text-xs text-soft">
+            You pay on the payment service’s page. Credits come when the payment is confirmed, with a receipt and an
+            invoice. The tax treatment shown is configuration, not advice.
+          </p>
+        </div>
+      </form>
+    </WhenLive>
   );
 }

@@ -11,6 +11,7 @@ import type { ProblemDocument } from '@/contracts/errors.ts';
 import { currencies, type CreditPack, type Currency } from '@/domain/pricing/price-book.ts';
 import { paths } from '@/paths.ts';
 import { currencyWords } from './currency-words.ts';
+import { WhenLive } from '@/components/ui/WhenLive.tsx';
 
 const terms = [14, 30, 60] as const;
 
@@ -50,62 +51,64 @@ export function RequestProForma({
   }
 
   return (
-    <form
-      className="flex flex-col gap-4"
-      onSubmit={(event) => {
-        event.preventDefault();
-        if (!pending) void request();
-      }}
-    >
-      <div className="grid gap-4 sm:grid-cols-2">
-        <SelectField
-          label="Pack"
-          value={pack}
-          onChange={(event) => setPack(event.target.value)}
-          choices={packs.map((one) => ({
-            value: one.id,
-            label: `${countText(one.credits)} credits · ${moneyText(one.netMinor[currency], currency)} plus tax`,
-          }))}
-        />
-        <SelectField
-          label="Currency"
-          value={currency}
-          onChange={(event) => setCurrency(event.target.value as Currency)}
-          choices={currencies.map((code) => ({ value: code, label: `${currencyWords[code]} (${code})` }))}
-        />
-        <TextField
-          label="PO number"
-          hint="Stands on the pro-forma and the invoice."
-          required
-          value={purchaseOrder}
-          onChange={(event) => setPurchaseOrder(event.target.value)}
-          error={problem?.errors?.find(({ path }) => path === 'purchaseOrder')?.message}
-        />
-        <SelectField
-          label="To be paid within"
-          value={String(termsDays)}
-          onChange={(event) => setTermsDays(Number(event.target.value) as (typeof terms)[number])}
-          choices={terms.map((days) => ({ value: String(days), label: `${days} days` }))}
-        />
-      </div>
-      {problem && (
-        <ProblemNotice
-          problem={problem}
-          action={
-            problem.code === 'billing_details_missing' && (
-              <ButtonLink size="small" href={paths.billingDetails(team)}>
-                Enter the billing details
-              </ButtonLink>
-            )
-          }
-        />
-      )}
-      {opened && <Notice tone="done">{opened} is open. Download it from the list above.</Notice>}
-      <div>
-        <Button type="submit" variant="primary" pending={pending}>
-          Ask for the pro-forma
-        </Button>
-      </div>
-    </form>
+    <WhenLive>
+      <form
+        className="flex flex-col gap-4"
+        onSubmit={(event) => {
+          event.preventDefault();
+          if (!pending) void request();
+        }}
+      >
+        <div className="grid gap-4 sm:grid-cols-2">
+          <SelectField
+            label="Pack"
+            value={pack}
+            onChange={(event) => setPack(event.target.value)}
+            choices={packs.map((one) => ({
+              value: one.id,
+              label: `${countText(one.credits)} credits · ${moneyText(one.netMinor[currency], currency)} plus tax`,
+            }))}
+          />
+          <SelectField
+            label="Currency"
+            value={currency}
+            onChange={(event) => setCurrency(event.target.value as Currency)}
+            choices={currencies.map((code) => ({ value: code, label: `${currencyWords[code]} (${code})` }))}
+          />
+          <TextField
+            label="PO number"
+            hint="Stands on the pro-forma and the invoice."
+            required
+            value={purchaseOrder}
+            onChange={(event) => setPurchaseOrder(event.target.value)}
+            error={problem?.errors?.find(({ path }) => path === 'purchaseOrder')?.message}
+          />
+          <SelectField
+            label="To be paid within"
+            value={String(termsDays)}
+            onChange={(event) => setTermsDays(Number(event.target.value) as (typeof terms)[number])}
+            choices={terms.map((days) => ({ value: String(days), label: `${days} days` }))}
+          />
+        </div>
+        {problem && (
+          <ProblemNotice
+            problem={problem}
+            action={
+              problem.code === 'billing_details_missing' && (
+                <ButtonLink size="small" href={paths.billingDetails(team)}>
+                  Enter the billing details
+                </ButtonLink>
+              )
+            }
+          />
+        )}
+        {opened && <Notice tone="done">{opened} is open. Download it from the list above.</Notice>}
+        <div>
+          <Button type="submit" variant="primary" pending={pending}>
+            Ask for the pro-forma
+          </Button>
+        </div>
+      </form>
+    </WhenLive>
   );
 }

@@ -119,7 +119,7 @@ function Extension({ team, job, results, onJob }: Props) {
         )}
         <div>
           <dt>Would cost {state.asking && <Spinner className="ml-1 inline h-3 w-3" />}</dt>
-          <dd className={state.stale ? 'opacity-50' : ''}>
+          <dd className={state.stale ? 'border-b border-dashed border-rule' : ''}>
             {quote === null ? '…' : `${creditsText(quote.microcredits.expected)} credits`}
             {quote !== null && (
               <span className="block text-xs font-normal text-soft">

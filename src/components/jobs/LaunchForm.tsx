@@ -20,6 +20,7 @@ import { capOf, faultsOfProblem, numberIn, quoteRequestOf, type LaunchSettings }
 import { OverridesTable } from './OverridesTable.tsx';
 import { QuotePanel } from './QuotePanel.tsx';
 import { useQuote } from './use-quote.ts';
+import { WhenLive } from '@/components/ui/WhenLive.tsx';
 
 interface OpenVersion {
   id: string;
@@ -45,7 +46,9 @@ export interface LaunchFormProps {
 export function LaunchForm(props: LaunchFormProps) {
   return (
     <QueryProvider>
-      <Form {...props} />
+      <WhenLive>
+        <Form {...props} />
+      </WhenLive>
     </QueryProvider>
   );
 }

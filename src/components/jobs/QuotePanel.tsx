@@ -54,7 +54,7 @@ export function QuotePanel(props: Props) {
             : 'A pilot of real replicates is run to find the price. It costs nothing.'}
         </p>
       )}
-      {quote !== null && <QuoteFigures quote={quote} dimmed={stale || asking} timeZone={timeZone} />}
+      {quote !== null && <QuoteFigures quote={quote} outdated={stale || asking} timeZone={timeZone} />}
       {problem !== null && (
         <ProblemNotice
           problem={problem}
@@ -125,7 +125,7 @@ export function QuotePanel(props: Props) {
   );
 }
 
-function QuoteFigures({ quote, dimmed, timeZone }: { quote: QuoteDocument; dimmed: boolean; timeZone: string }) {
+function QuoteFigures({ quote, outdated, timeZone }: { quote: QuoteDocument; outdated: boolean; timeZone: string }) {
   const { microcredits, eventsPerReplicate, pilot, secondsByLane } = quote;
   const events = valueWithError(
     eventsPerReplicate.mean,
@@ -133,7 +133,8 @@ function QuoteFigures({ quote, dimmed, timeZone }: { quote: QuoteDocument; dimme
   );
   const warnings = quote.problems.filter(({ severity }) => severity !== 'information');
   return (
-    <div className={dimmed ? 'opacity-50' : ''} aria-busy={dimmed}>
+    <div className={outdated ? 'border-l-2 border-dashed border-rule pl-3' : ''} aria-busy={outdated}>
+      {outdated && <p className="mt-2 text-xs text-soft">For the inputs as they were; the new price is on its way.</p>}
       <p className="mt-2 text-3xl font-semibold">
         {creditsText(microcredits.expected)} <span className="text-base font-medium">credits</span>
       </p>

@@ -29,7 +29,7 @@ export function ChecksPanel({ draft, checks, pending, readOnly, change, onGoTo }
   const told = checks.problems.filter(({ code }) => !totals.has(code) && !untold.has(code));
   const conserved = checks.problems.filter(({ code }) => totals.has(code));
   return (
-    <section aria-labelledby="checks-title" className={pending ? 'opacity-60' : ''}>
+    <section aria-labelledby="checks-title" aria-busy={pending}>
       <h2 id="checks-title" className="text-sm font-semibold">
         Checks
       </h2>

@@ -17,6 +17,7 @@ import { useChecks, type Checks } from './use-checks.ts';
 import { draftStorageKey, useDraft } from './use-draft.ts';
 import { VersionsPanel, type ListedVersion } from './VersionsPanel.tsx';
 import type { CellPlace } from './written-document.ts';
+import { WhenLive } from '@/components/ui/WhenLive.tsx';
 
 export interface ModelEditorProps {
   team: string;
@@ -40,7 +41,9 @@ const onDemand: readonly GridName[] = ['compartments', 'assignmentRules', 'obser
 export function ModelEditor(props: ModelEditorProps) {
   return (
     <QueryProvider>
-      <Editor {...props} />
+      <WhenLive>
+        <Editor {...props} />
+      </WhenLive>
     </QueryProvider>
   );
 }

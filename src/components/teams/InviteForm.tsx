@@ -7,6 +7,7 @@ import { TextField } from '@/components/ui/Field.tsx';
 import { inviteMember } from '@/contracts/teams.ts';
 import type { Role } from '@/domain/teams/permissions.ts';
 import { RoleChoice } from './RoleChoice.tsx';
+import { WhenLive } from '@/components/ui/WhenLive.tsx';
 
 export function InviteForm({
   team,
@@ -30,28 +31,30 @@ export function InviteForm({
   }
 
   return (
-    <form
-      className="flex flex-col gap-4"
-      onSubmit={(event) => {
-        event.preventDefault();
-        if (!pending) void invite();
-      }}
-    >
-      <TextField
-        label="E-mail"
-        type="email"
-        required
-        autoComplete="off"
-        value={email}
-        onChange={(event) => setEmail(event.target.value)}
-        fieldClassName="max-w-md"
-      />
-      <RoleChoice roles={roles} onChange={setRoles} />
-      <div>
-        <Button type="submit" variant="primary" pending={pending} disabled={roles.length === 0}>
-          Send the invitation
-        </Button>
-      </div>
-    </form>
+    <WhenLive>
+      <form
+        className="flex flex-col gap-4"
+        onSubmit={(event) => {
+          event.preventDefault();
+          if (!pending) void invite();
+        }}
+      >
+        <TextField
+          label="E-mail"
+          type="email"
+          required
+          autoComplete="off"
+          value={email}
+          onChange={(event) => setEmail(event.target.value)}
+          fieldClassName="max-w-md"
+        />
+        <RoleChoice roles={roles} onChange={setRoles} />
+        <div>
+          <Button type="submit" variant="primary" pending={pending} disabled={roles.length === 0}>
+            Send the invitation
+          </Button>
+        </div>
+      </form>
+    </WhenLive>
   );
 }

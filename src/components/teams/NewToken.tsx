@@ -8,6 +8,7 @@ import { Notice, ProblemNotice } from '@/components/ui/Notice.tsx';
 import type { ProblemDocument } from '@/contracts/errors.ts';
 import { createToken } from '@/contracts/teams.ts';
 import type { TokenScope } from '@/domain/teams/permissions.ts';
+import { WhenLive } from '@/components/ui/WhenLive.tsx';
 
 const scopeWords: Record<TokenScope, string> = {
   'team:read': 'Read the team and its project codes',
@@ -77,52 +78,54 @@ export function NewToken({
           <code className="mt-1 block break-all bg-glass px-2 py-1">{secret}</code>
         </Notice>
       )}
-      <form
-        className="flex flex-col gap-4"
-        onSubmit={(event) => {
-          event.preventDefault();
-          if (!pending) void create();
-        }}
-      >
-        <div className="grid gap-4 sm:grid-cols-[minmax(0,1fr)_11rem]">
-          <TextField
-            label="Name"
-            hint="Where it is used, such as “nightly report”."
-            required
-            maxLength={80}
-            value={name}
-            onChange={(event) => setName(event.target.value)}
-          />
-          <SelectField
-            label="Valid for"
-            value={days}
-            choices={lifetimes}
-            onChange={(event) => setDays(event.target.value)}
-          />
-        </div>
-        <fieldset>
-          <legend className="mb-1 text-sm font-medium">Scopes</legend>
-          <div className="grid gap-x-6 gap-y-2.5 border-t border-rule pt-3 sm:grid-cols-2">
-            {grantable.map((scope) => (
-              <CheckField
-                key={scope}
-                label={scope}
-                hint={scopeWords[scope]}
-                checked={scopes.includes(scope)}
-                onChange={(event) =>
-                  setScopes(grantable.filter((one) => (one === scope ? event.target.checked : scopes.includes(one))))
-                }
-              />
-            ))}
+      <WhenLive>
+        <form
+          className="flex flex-col gap-4"
+          onSubmit={(event) => {
+            event.preventDefault();
+            if (!pending) void create();
+          }}
+        >
+          <div className="grid gap-4 sm:grid-cols-[minmax(0,1fr)_11rem]">
+            <TextField
+              label="Name"
+              hint="Where it is used, such as “nightly report”."
+              required
+              maxLength={80}
+              value={name}
+              onChange={(event) => setName(event.target.value)}
+            />
+            <SelectField
+              label="Valid for"
+              value={days}
+              choices={lifetimes}
+              onChange={(event) => setDays(event.target.value)}
+            />
           </div>
-        </fieldset>
-        {problem && <ProblemNotice problem={problem} />}
-        <div>
-          <Button type="submit" variant="primary" pending={pending} disabled={scopes.length === 0}>
-            Create the token
-          </Button>
-        </div>
-      </form>
+          <fieldset>
+            <legend className="mb-1 text-sm font-medium">Scopes</legend>
+            <div className="grid gap-x-6 gap-y-2.5 border-t border-rule pt-3 sm:grid-cols-2">
+              {grantable.map((scope) => (
+                <CheckField
+                  key={scope}
+                  label={scope}
+                  hint={scopeWords[scope]}
+                  checked={scopes.includes(scope)}
+                  onChange={(event) =>
+                    setScopes(grantable.filter((one) => (one === scope ? event.target.checked : scopes.includes(one))))
+                  }
+                />
+              ))}
+            </div>
+          </fieldset>
+          {problem && <ProblemNotice problem={problem} />}
+          <div>
+            <Button type="submit" variant="primary" pending={pending} disabled={scopes.length === 0}>
+              Create the token
+            </Button>
+          </div>
+        </form>
+      </WhenLive>
     </section>
   );
 }

@@ -14,6 +14,7 @@ import { StateLabel } from '@/components/ui/StateLabel.tsx';
 import { Table } from '@/components/ui/Table.tsx';
 import type { ProblemDocument } from '@/contracts/errors.ts';
 import { changeProjectCode, createProjectCode, listProjectCodes, type projectCodeDocument } from '@/contracts/teams.ts';
+import { WhenLive } from '@/components/ui/WhenLive.tsx';
 
 export type ProjectCode = z.output<typeof projectCodeDocument>;
 
@@ -147,29 +148,31 @@ function NewCode({ team, onCreated }: { team: string; onCreated: () => Promise<v
   }
 
   return (
-    <form
-      className="flex max-w-3xl flex-col gap-4"
-      onSubmit={(event) => {
-        event.preventDefault();
-        if (!pending) void create();
-      }}
-    >
-      <div className="grid gap-4 sm:grid-cols-3">
-        <TextField label="Code" required value={fields.code} onChange={set('code')} error={fault('code')} />
-        <TextField label="Client (optional)" value={fields.client} onChange={set('client')} error={fault('client')} />
-        <TextField
-          label="PO number (optional)"
-          value={fields.poNumber}
-          onChange={set('poNumber')}
-          error={fault('poNumber')}
-        />
-      </div>
-      {problem && !problem.errors?.length && <ProblemNotice problem={problem} />}
-      <div>
-        <Button type="submit" variant="primary" pending={pending}>
-          Create the code
-        </Button>
-      </div>
-    </form>
+    <WhenLive>
+      <form
+        className="flex max-w-3xl flex-col gap-4"
+        onSubmit={(event) => {
+          event.preventDefault();
+          if (!pending) void create();
+        }}
+      >
+        <div className="grid gap-4 sm:grid-cols-3">
+          <TextField label="Code" required value={fields.code} onChange={set('code')} error={fault('code')} />
+          <TextField label="Client (optional)" value={fields.client} onChange={set('client')} error={fault('client')} />
+          <TextField
+            label="PO number (optional)"
+            value={fields.poNumber}
+            onChange={set('poNumber')}
+            error={fault('poNumber')}
+          />
+        </div>
+        {problem && !problem.errors?.length && <ProblemNotice problem={problem} />}
+        <div>
+          <Button type="submit" variant="primary" pending={pending}>
+            Create the code
+          </Button>
+        </div>
+      </form>
+    </WhenLive>
   );
 }
