@@ -4,12 +4,12 @@ import { Batch, Segment, type Job } from '@db/models/jobs.ts';
 import { ModelVersion, NetworkModel } from '@db/models/models.ts';
 import { omexFormats, writeManifest } from '@/formats/omex/write-manifest.ts';
 import { writeSbml } from '@/formats/sbml/write-sbml.ts';
+import { ZipWriter, type WrittenEntry } from '@/formats/zip/zip-writer.ts';
 import { nowText } from '../clock.ts';
 import { archiveFileName, jobFile, writeDurably } from '../jobs/job-folder.ts';
 import type { PrefixEnsemble } from '../jobs/prefix-ensemble.ts';
 import { jobJson, provenanceJson, readmeText, type ArchiveSubject } from './archive-texts.ts';
 import { csvPieces, resultTables } from './result-tables.ts';
-import { ZipFile, type WrittenEntry } from './zip-file.ts';
 
 export interface BuiltArchive {
   sha256: string;
@@ -42,7 +42,7 @@ async function write(file: string, subject: ArchiveSubject, provenance: string):
   const { job, model, version, ensemble } = subject;
   const tables = resultTables({ inputs: job.inputs, ensemble });
   const paths = ['job.json', 'provenance.json', 'model.xml', 'model.json', ...tables.map(({ path }) => path)];
-  const zip = new ZipFile(file);
+  const zip = await ZipWriter.create(file);
   const written: WrittenEntry[] = [];
   const add = async (path: string, pieces: Iterable<string>) => void written.push(await zip.add(path, pieces));
 
