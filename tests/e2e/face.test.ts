@@ -109,7 +109,8 @@ describe('without script', () => {
     expect(await page.getByRole('heading', { level: 1 }).textContent()).toBe('Tarn & Fell Modelling');
     await page.getByRole('link', { name: 'Credits', exact: true }).click();
     expect(await page.getByRole('heading', { name: 'Ledger' }).isVisible()).toBe(true);
-    expect(await page.getByText('Charge', { exact: true }).first().isVisible()).toBe(true);
+    const ledger = page.getByRole('table', { name: /Ledger entries/ });
+    expect(await ledger.getByText('Charge', { exact: true }).first().isVisible()).toBe(true);
     await page.getByRole('link', { name: 'Billing', exact: true }).click();
     await page.getByRole('link', { name: /^BUR-/ }).first().click();
     expect(await page.getByRole('link', { name: 'Download the PDF' }).isVisible()).toBe(true);
@@ -126,18 +127,16 @@ describe('the graduated column', () => {
     const { page } = await signIn('modeller');
     const column = page.getByRole('img', { name: /credits available/ }).first();
     expect(await column.getAttribute('aria-label')).toMatch(/^[\d.,]+ credits available\.$/);
+    await page.locator('aside[aria-label="Credits"] astro-island:not([ssr])').waitFor();
     await page.evaluate(() =>
       window.dispatchEvent(
         new CustomEvent('burette:quote', { detail: { expectedMicrocredits: 5_000_000, highMicrocredits: 6_000_000 } }),
       ),
     );
-    await page.waitForFunction(
-      () =>
-        document
-          .querySelector('aside[aria-label="Credits"] div.sticky svg[role=img]')
-          ?.getAttribute('aria-label')
-          ?.includes('after the quote on this page') === true,
-    );
+    await page
+      .getByRole('img', { name: /after the quote on this page/ })
+      .first()
+      .waitFor();
     await page.context().close();
   });
 });

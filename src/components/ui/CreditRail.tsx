@@ -5,7 +5,7 @@ import { callApi } from '@/components/api/call-api.ts';
 import { readCredits } from '@/contracts/ledger.ts';
 import { paths } from '@/paths.ts';
 import { creditsText } from './amounts-text.ts';
-import { balanceEvent, quoteEvent, type QuoteOnScreen } from './column-events.ts';
+import { balanceEvent, quoteEvent, quoteOnScreen, type QuoteOnScreen } from './column-events.ts';
 import { GraduatedBar } from './GraduatedBar.tsx';
 import { GraduatedColumn } from './GraduatedColumn.tsx';
 import { QueryProvider } from './QueryProvider.tsx';
@@ -63,6 +63,7 @@ function useQuoteOnScreen(): QuoteOnScreen | null {
   useEffect(() => {
     const listen = (event: Event): void => setQuote((event as CustomEvent<QuoteOnScreen | null>).detail);
     window.addEventListener(quoteEvent, listen);
+    setQuote(quoteOnScreen());
     return () => window.removeEventListener(quoteEvent, listen);
   }, []);
   return quote;

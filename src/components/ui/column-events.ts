@@ -8,8 +8,13 @@ export interface QuoteOnScreen {
 export const quoteEvent = 'burette:quote';
 export const balanceEvent = 'burette:balance';
 
+/** Kept for a column that comes to life after the quote was given. */
+let onScreen: QuoteOnScreen | null = null;
+export const quoteOnScreen = (): QuoteOnScreen | null => onScreen;
+
 /** Moves the pink meniscus to where the level would be after this quote; null takes it away. */
 export function announceQuote(quote: QuoteOnScreen | null): void {
+  onScreen = quote;
   window.dispatchEvent(new CustomEvent<QuoteOnScreen | null>(quoteEvent, { detail: quote }));
 }
 
