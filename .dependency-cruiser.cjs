@@ -26,7 +26,18 @@ module.exports = {
     layer('formats-import-domain', '^src/formats/', ['^src/formats/', '^src/domain/'], 'formats read and write'),
     layer('contracts-import-domain', '^src/contracts/', ['^src/contracts/', '^src/domain/'], 'contracts speak'),
     layer('db-imports-domain', '^db/', ['^db/', '^src/domain/'], 'db remembers'),
-    layer('workers-import-engine', '^workers/', ['^workers/', '^src/engine/', '^src/domain/'], 'workers carry'),
+    layer(
+      'archives-import-pure-code',
+      '^src/archives/',
+      ['^src/archives/', '^src/domain/', '^src/engine/', '^src/formats/', '^src/charts/'],
+      'archives deliver; they know no database and no server',
+    ),
+    layer(
+      'workers-import-engine',
+      '^workers/',
+      ['^workers/', '^src/engine/', '^src/domain/', '^src/archives/'],
+      'workers carry',
+    ),
     layer(
       'server-imports-below',
       '^src/server/',
@@ -35,6 +46,7 @@ module.exports = {
         '^src/domain/',
         '^src/engine/',
         '^src/formats/',
+        '^src/archives/',
         '^src/contracts/',
         '^src/paths\\.ts',
         '^db/',

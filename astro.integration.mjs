@@ -6,7 +6,7 @@ import * as esbuild from 'esbuild';
 
 const root = path.dirname(fileURLToPath(import.meta.url));
 
-/** Where the simulation worker's bundle goes. `src/server/jobs/worker-file.ts` looks in the same places. */
+/** Where the workers' bundles go. `src/server/jobs/worker-file.ts` looks in the same places. */
 export const workerOutputs = {
   /** @param {string} outDir */
   build: (outDir) => path.join(outDir, 'workers'),
@@ -18,7 +18,7 @@ export const workerOutputs = {
  * @returns {import('esbuild').BuildOptions}
  */
 export const workerBuildOptions = (outdir) => ({
-  entryPoints: [path.join(root, 'workers/run-batch.ts')],
+  entryPoints: ['run-batch', 'write-results'].map((name) => path.join(root, `workers/${name}.ts`)),
   outdir,
   outExtension: { '.js': '.mjs' },
   bundle: true,

@@ -1,7 +1,8 @@
 /** What passes between the server and a simulation worker. Versioned; plain structured-clonable data, no database. */
 import type { BatchTask, KernelName, ModelFailure } from '@/engine/ensemble.ts';
+import type { BlockShare } from '@/engine/statistics/blocks.ts';
 
-export const protocolVersion = 1;
+export const protocolVersion = 2;
 
 export interface RunBatchMessage {
   version: typeof protocolVersion;
@@ -18,6 +19,8 @@ export interface RunBatchAnswer {
   /** Encoded EnsembleSummary (statistics/summary.ts). */
   summary: Uint8Array;
   traces: { replicate: number; values: Float64Array }[];
+  /** Null unless the task asked for them. */
+  blocks: BlockShare | null;
   failure: ModelFailure | null;
   /** Wall seconds inside the worker; for the dispatcher's planning and provenance.json only. */
   seconds: number;

@@ -8,7 +8,10 @@ import { protocolVersion, type RunBatchAnswer, type RunBatchMessage } from './pr
 const handedOver = (answer: RunBatchAnswer): RunBatchAnswer =>
   move({
     get [transferableSymbol]() {
-      const arrays = [answer.eventsPerReplicate, answer.summary, ...answer.traces.map(({ values }) => values)];
+      const { blocks } = answer;
+      const ofBlocks = blocks ? [...blocks.partLeaves, ...blocks.pieces].map(({ bytes }) => bytes) : [];
+      const ofTraces = answer.traces.map(({ values }) => values);
+      const arrays = [answer.eventsPerReplicate, answer.summary, ...ofTraces, ...ofBlocks];
       return arrays.map((array) => array.buffer) as unknown as object;
     },
     get [valueSymbol]() {

@@ -6,6 +6,7 @@
  * interface alone.
  */
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
+import type { BlockShare } from './statistics/blocks.ts';
 
 export type StreamPurpose = 'job' | 'pilot' | 'preview';
 export type KernelName = 'direct-scalar' | 'direct-simd' | 'composition-rejection' | 'tau-leaping' | 'reference';
@@ -41,6 +42,8 @@ export interface BatchTask {
   eventBudgetPerReplicate: number | null;
   /** Stops the batch early after this many events in all, keeping complete replicates (pilots); null for none. */
   eventBudgetPerBatch: number | null;
+  /** Whether the answer carries the batch's share of the blocks (statistics/blocks.ts); default no. */
+  blocks?: boolean;
   /** For tests; normally a fixed, versioned function of the network decides. */
   kernel?: KernelName;
 }
@@ -68,6 +71,8 @@ export interface BatchResult {
   passageTimes: Float64Array;
   failure: ModelFailure | null;
   kernel: KernelName;
+  /** Null unless the task asked for it. */
+  blocks: BlockShare | null;
 }
 
 export interface Trace {

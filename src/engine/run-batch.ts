@@ -8,6 +8,7 @@ import { directScalarRunner, directSimdRunner } from './kernel/direct-runner.ts'
 import { constantValues, prepareNetwork } from './kernel/prepare-network.ts';
 import { streamBase } from './random/stream-key.ts';
 import { groupSlots, modelFailure, type GroupOutcome, type GroupRunner, type PointTask } from './replicate-group.ts';
+import { BlockCollector } from './statistics/block-collector.ts';
 import { largestReal } from './statistics/real-cells.ts';
 import { Summary } from './statistics/summary.ts';
 
@@ -59,6 +60,7 @@ class Collector {
   readonly #task: BatchTask;
   readonly #point: PointTask;
   readonly #summary: Summary;
+  readonly #blocks: BlockCollector | null;
   readonly #events: Float64Array;
   readonly #traces: Trace[] = [];
   #failure: ModelFailure | null = null;
@@ -71,14 +73,16 @@ class Collector {
       id,
       kind: point.prepared.observablePlaces[i]!.kind,
     }));
-    this.#summary = new Summary({ observables, gridPoints: task.gridIntervals + 1 });
+    const shape = { observables, gridPoints: task.gridIntervals + 1 };
+    this.#blocks = task.blocks ? new BlockCollector(shape, task.firstReplicate) : null;
+    this.#summary = this.#blocks?.summary ?? new Summary(shape);
   }
 
   /** Takes in a group; answers the firings of its complete replicates. */
   add(outcome: GroupOutcome): number {
     const first = this.#task.firstReplicate + this.replicates;
     const { completed, end } = this.#withoutBadReals(outcome, first);
-    this.#summary.add({ ...outcome, replicates: completed });
+    (this.#blocks ?? this.#summary).add({ ...outcome, replicates: completed });
     for (let slot = 0; slot < completed && first + slot < this.#task.keptTraces; slot++)
       this.#traces.push(this.#trace(outcome, slot, first + slot));
     this.#events.set(outcome.events.subarray(0, completed), this.replicates);
@@ -124,7 +128,9 @@ class Collector {
   }
 
   result(): Omit<BatchResult, 'kernel'> {
+    const blocks = this.#blocks?.share() ?? null;
     return {
+      blocks,
       firstReplicate: this.#task.firstReplicate,
       replicateCount: this.replicates,
       eventsPerReplicate: this.#events.slice(0, this.replicates),

@@ -2,6 +2,7 @@
 import { inWriteTransaction } from '@db/in-write-transaction.ts';
 import { Batch, Job } from '@db/models/jobs.ts';
 import { isFinal } from '@/domain/jobs/job-state.ts';
+import { writeResults } from '@/archives/write-results.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
 import type { Result } from '@/domain/refusals.ts';
 import type { BatchTask } from '@/engine/ensemble.ts';
@@ -14,6 +15,7 @@ import { Dispatcher } from '@/server/jobs/dispatcher.ts';
 import { setExecutor, type Executor } from '@/server/jobs/executor.ts';
 import { onJobChange } from '@/server/jobs/job-changes.ts';
 import { launchJob } from '@/server/jobs/launch-job.ts';
+import { setResultsWriter } from '@/server/jobs/results-writer.ts';
 import { forgetPrefix } from '@/server/jobs/prefix-ensemble.ts';
 import { grantCredits } from '@/server/ledger/grant-credits.ts';
 import { createModel } from '@/server/network/create-model.ts';
@@ -140,6 +142,7 @@ export function inProcessExecutor(
 /** Starts dispatching; resolves to what stops it. */
 export async function startJobs(executor: Executor): Promise<() => Promise<void>> {
   setExecutor(executor);
+  setResultsWriter({ write: writeResults, close: async () => undefined });
   const dispatcher = new Dispatcher({ retryMs: () => 1 });
   await dispatcher.resume();
   return () => dispatcher.stop();

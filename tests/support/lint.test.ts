@@ -26,6 +26,7 @@ describe('the import directions', () => {
   it.each([
     ['src/domain', "import '@/server/env.ts';", 'domain-imports-itself'],
     ['src/engine', "import '@/domain/pricing/price-of.ts';", 'engine-imports-network'],
+    ['src/archives', "import '@db/connection.ts';", 'archives-import-pure-code'],
     ['src/components', "import '@db/connection.ts';", 'components-import-pure-code'],
     ['src/pages', "import '@db/connection.ts';", 'pages-do-not-touch-db'],
     ['src/domain', "import 'node:fs';", 'pure-code-has-no-node'],

@@ -121,6 +121,12 @@ export class CountCells {
     return { first: this.#first[cell]! + start, counts: this.#pool.subarray(offset + start, offset + end) };
   }
 
+  /** The exact sums as doubles where all of them are below 2^53; null for others. */
+  smallSums(cell: number): SmallSums | null {
+    const { first, counts } = this.window(cell);
+    return first + counts.length > exactBelow ? null : smallSumsOfWindow(counts, first, counts.length);
+  }
+
   /** Exact sums of the powers of all values of a cell. */
   sums(cell: number): PowerSums {
     const { first, counts } = this.window(cell);
@@ -158,23 +164,30 @@ export class CountCells {
   }
 }
 
-/** Sums over the bins that hold one count each, in doubles where that is exact. */
-function exactSumsOfWindow(counts: Uint32Array, first: number, end: number): PowerSums {
+type SmallSums = [number, number, number, number];
+
+/** Sums over bins that hold one count each; null where a double could not hold them. */
+function smallSumsOfWindow(counts: Uint32Array, first: number, end: number): SmallSums | null {
   let total = 0;
   for (let i = 0; i < end; i++) total += counts[i]!;
   const most = first + end - 1;
-  if (total * most ** 4 < Number.MAX_SAFE_INTEGER) {
-    let [s1, s2, s3, s4] = [0, 0, 0, 0];
-    for (let i = 0; i < end; i++) {
-      const x = first + i;
-      const first1 = counts[i]! * x;
-      s1 += first1;
-      s2 += first1 * x;
-      s3 += first1 * x * x;
-      s4 += first1 * x * x * x;
-    }
-    return [BigInt(s1), BigInt(s2), BigInt(s3), BigInt(s4)];
+  if (total * most ** 4 >= Number.MAX_SAFE_INTEGER) return null;
+  let [s1, s2, s3, s4] = [0, 0, 0, 0];
+  for (let i = 0; i < end; i++) {
+    const x = first + i;
+    const first1 = counts[i]! * x;
+    s1 += first1;
+    s2 += first1 * x;
+    s3 += first1 * x * x;
+    s4 += first1 * x * x * x;
   }
+  return [s1, s2, s3, s4];
+}
+
+/** Sums over the bins that hold one count each, in doubles where that is exact. */
+function exactSumsOfWindow(counts: Uint32Array, first: number, end: number): PowerSums {
+  const small = smallSumsOfWindow(counts, first, end);
+  if (small) return small.map(BigInt) as PowerSums;
   const sums = noSums();
   for (let i = 0; i < end; i++) if (counts[i]! > 0) addPowers(sums, BigInt(first + i), BigInt(counts[i]!));
   return sums;

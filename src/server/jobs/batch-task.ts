@@ -39,5 +39,6 @@ export function batchTask(options: {
     keptTraces,
     eventBudgetPerReplicate,
     eventBudgetPerBatch: options.eventBudgetPerBatch ?? null,
+    blocks: true,
   };
 }

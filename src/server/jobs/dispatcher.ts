@@ -130,9 +130,9 @@ export class Dispatcher {
       try {
         await this.#follow(open, await step());
       } catch (error) {
+        if (this.#stopped) return;
         log().error({ err: error, jobId: open.jobId, attempt }, 'settling failed; trying again');
-        if (!this.#stopped)
-          this.#later(this.#retryMs(Math.min(attempt, 4)), () => this.#settleTurn(open, step, attempt + 1));
+        this.#later(this.#retryMs(Math.min(attempt, 4)), () => this.#settleTurn(open, step, attempt + 1));
       }
     });
   }

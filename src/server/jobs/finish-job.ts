@@ -1,24 +1,22 @@
 /** Writes the results and the archive of a job whose end is settled, then puts the end in force: hold, state, mail. */
-import { writeFile } from 'node:fs/promises';
 import { afterCommit, inWriteTransaction } from '@db/in-write-transaction.ts';
 import { Job, Segment } from '@db/models/jobs.ts';
 import { Team, User } from '@db/models/people.ts';
 import { isFinal, stepJob } from '@/domain/jobs/job-state.ts';
-import { buildArchive } from '../archives/build-archive.ts';
 import { nowText } from '../clock.ts';
 import { releaseHold } from '../ledger/release-hold.ts';
 import { queueMail } from '../mail/queue-mail.ts';
-import { encodeBatch } from './batch-file.ts';
 import { announceJobChange } from './job-changes.ts';
-import { jobFile, mergedFileName, removeOutdatedFiles, sha256Hex, writeDurably } from './job-folder.ts';
+import { removeOutdatedFiles } from './job-folder.ts';
 import { jobEndedMail } from './job-ended-mail.ts';
-import { asBatch, prefixEnsemble } from './prefix-ensemble.ts';
+import { writeResults } from './write-results.ts';
 
 /** Finishing again, after a crash anywhere in between, writes the same results and releases nothing twice. */
 export async function finishJob(jobId: string): Promise<void> {
   const job = await Job.findByPk(jobId);
   if (!job || isFinal(job.state) || !job.ending) return;
-  const written = job.replicatesDone > 0 ? await writeResults(job) : null;
+  const finishedAt = nowText();
+  const written = job.replicatesDone > 0 ? await writeResults(job, finishedAt) : null;
   await inWriteTransaction(async () => {
     await job.reload();
     const { ending } = job;
@@ -27,26 +25,11 @@ export async function finishJob(jobId: string): Promise<void> {
     const step = stepJob(job.state, state);
     if (!step.ok) throw new Error(step.detail);
     await releaseSegments(job);
-    await job.update({ ...written, state, heldMicrocredits: 0, finishedAt: nowText() });
+    await job.update({ ...written, state, heldMicrocredits: 0, finishedAt });
     await tellLauncher(job);
     afterCommit(() => announceJobChange(jobId));
   });
   await removeOutdatedFiles(jobId, job.archiveRevision);
-}
-
-async function writeResults(job: Job) {
-  const ensemble = await prefixEnsemble(job);
-  const archiveRevision = job.archiveRevision + 1;
-  const merged = encodeBatch(asBatch(ensemble));
-  await writeDurably(jobFile(job.id, mergedFileName(archiveRevision)), (temporary) => writeFile(temporary, merged));
-  const archive = await buildArchive({ job, ensemble, revision: archiveRevision });
-  return {
-    archiveRevision,
-    prefixSha256: sha256Hex(merged),
-    resultsDigest: archive.resultsDigest,
-    archiveSha256: archive.sha256,
-    archiveBytes: archive.bytes,
-  };
 }
 
 async function releaseSegments(job: Job): Promise<void> {

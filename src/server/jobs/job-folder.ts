@@ -1,5 +1,4 @@
 /** Where the files of a job lie, and how they are written so that a crash leaves the old file or the new one. */
-import { createHash } from 'node:crypto';
 import { mkdir, open, readdir, rename, rm } from 'node:fs/promises';
 import path from 'node:path';
 import { env } from '../env.ts';
@@ -17,8 +16,6 @@ export const cutBatchFileName = (ordinal: number): string => path.join('batches'
 /** The whole delivered prefix as one batch. */
 export const mergedFileName = (revision: number): string => `prefix-${revision}.batch`;
 export const archiveFileName = (revision: number): string => `archive-${revision}.zip`;
-
-export const sha256Hex = (bytes: Uint8Array | string): string => createHash('sha256').update(bytes).digest('hex');
 
 /** Writes under a temporary name, flushes, renames, flushes the folder: after it returns, a power cut loses nothing. */
 export async function writeDurably(file: string, write: (temporary: string) => Promise<void>): Promise<void> {

@@ -7,6 +7,7 @@ import { Dispatcher } from './dispatcher.ts';
 import { setExecutor } from './executor.ts';
 import { sweepFiles } from './sweep-files.ts';
 import { startPiscinaExecutor } from './piscina-executor.ts';
+import { setResultsWriter, startResultsWriter } from './results-writer.ts';
 import { workerFile } from './worker-file.ts';
 
 export const jobsPart: Part = {
@@ -14,16 +15,22 @@ export const jobsPart: Part = {
   async start() {
     const swept = await sweepFiles();
     if (swept > 0) log().info({ swept }, 'files left by a crash removed');
-    const executor = startPiscinaExecutor({ workerFile: workerFile(), threads: env().BURETTE_WORKERS });
+    const executor = startPiscinaExecutor({ workerFile: workerFile('run-batch'), threads: env().BURETTE_WORKERS });
     setExecutor(executor);
+    const writer = startResultsWriter({ workerFile: workerFile('write-results') });
+    setResultsWriter(writer);
     const dispatcher = new Dispatcher();
     setDispatcherWatch(dispatcher);
     await dispatcher.resume();
     return async () => {
-      await dispatcher.stop();
+      const stopped = dispatcher.stop();
+      // What it was writing is written again at the next start.
+      await writer.close();
+      await stopped;
       setDispatcherWatch(null);
       await executor.close();
       setExecutor(null);
+      setResultsWriter(null);
     };
   },
 };

@@ -1,27 +1,19 @@
 /** The ensemble of a job's complete prefix, merged batch by batch and kept for the next question. */
 import { Op } from 'sequelize';
 import { Batch, Job } from '@db/models/jobs.ts';
-import type { EnsembleSummary, Trace } from '@/engine/ensemble.ts';
-import { decodeSummary } from '@/engine/statistics/summary.ts';
-import { loadBatch, type BatchContent } from './batch-file.ts';
+import { addBatch, emptyEnsemble, type Ensemble } from '@/archives/ensemble.ts';
+import { loadBatch } from './batch-file.ts';
 import { mergedFileName } from './job-folder.ts';
 import { storedBatch } from './stored-batch.ts';
 
-export interface PrefixEnsemble {
-  replicates: number;
-  /** Null while no replicate is complete. */
-  summary: EnsembleSummary | null;
-  /** Events per replicate, in order, in pieces. */
-  events: Float64Array[];
-  traces: Trace[];
-  kernel: string;
-  engineVersion: string;
-}
+export type PrefixEnsemble = Ensemble;
 
 interface Kept {
   ensemble: PrefixEnsemble;
   /** Batches up to and with this one are merged. */
   lastOrdinal: number;
+  /** The job's archive when this was read; a later one replaces the batches' files. */
+  revision: number;
   queue: Promise<unknown>;
 }
 
@@ -30,8 +22,9 @@ const keptMost = 4;
 const kept = new Map<string, Kept>();
 
 const empty = (): Kept => ({
-  ensemble: { replicates: 0, summary: null, events: [], traces: [], kernel: '', engineVersion: '' },
+  ensemble: emptyEnsemble(),
   lastOrdinal: -1,
+  revision: 0,
   queue: Promise.resolve(),
 });
 
@@ -50,6 +43,11 @@ export async function prefixEnsemble(job: Job): Promise<PrefixEnsemble> {
 export const forgetPrefix = (jobId: string): void => void kept.delete(jobId);
 
 async function catchUp(job: Job, entry: Kept): Promise<PrefixEnsemble> {
+  if (entry.revision !== job.archiveRevision && entry.ensemble.replicates < job.replicatesDone) {
+    entry.ensemble = emptyEnsemble();
+    entry.lastOrdinal = -1;
+  }
+  entry.revision = job.archiveRevision;
   const { ensemble } = entry;
   if (ensemble.replicates === 0 && job.archiveRevision > 0) await startFromMerged(job, ensemble);
   const joined = await Batch.findAll({
@@ -63,7 +61,7 @@ async function catchUp(job: Job, entry: Kept): Promise<PrefixEnsemble> {
   });
   for (const batch of joined) {
     if (batch.completeReplicates > 0) {
-      add(ensemble, await storedBatch(job, batch));
+      addBatch(ensemble, await storedBatch(job, batch));
       // Decoding and merging block the thread; let requests in between.
       await new Promise((resolve) => setImmediate(resolve));
     }
@@ -76,39 +74,5 @@ async function startFromMerged(job: Job, ensemble: PrefixEnsemble): Promise<void
   const name = mergedFileName(job.archiveRevision);
   const merged = await loadBatch({ jobId: job.id, name, sha256: job.prefixSha256 ?? null });
   if (!merged) throw new Error(`The stored results of ${job.id} are missing or damaged.`);
-  add(ensemble, merged);
-}
-
-function add(ensemble: PrefixEnsemble, content: BatchContent): void {
-  if (content.firstReplicate !== ensemble.replicates)
-    throw new Error(`Replicate ${ensemble.replicates} was expected next, not ${content.firstReplicate}.`);
-  const summary = decodeSummary(content.summary);
-  if (ensemble.summary) ensemble.summary.merge(summary);
-  else ensemble.summary = summary;
-  ensemble.replicates += content.replicateCount;
-  ensemble.events.push(content.eventsPerReplicate);
-  ensemble.traces.push(...content.traces);
-  ensemble.kernel = content.kernel;
-  ensemble.engineVersion = content.engineVersion;
-}
-
-/** The prefix as one batch, for its file. */
-export function asBatch(ensemble: PrefixEnsemble): BatchContent {
-  if (!ensemble.summary) throw new Error('An empty prefix has no results.');
-  const eventsPerReplicate = new Float64Array(ensemble.replicates);
-  let at = 0;
-  for (const piece of ensemble.events) {
-    eventsPerReplicate.set(piece, at);
-    at += piece.length;
-  }
-  return {
-    firstReplicate: 0,
-    replicateCount: ensemble.replicates,
-    kernel: ensemble.kernel,
-    engineVersion: ensemble.engineVersion,
-    eventsPerReplicate,
-    summary: ensemble.summary.encode(),
-    traces: ensemble.traces,
-    failure: null,
-  };
+  addBatch(ensemble, merged);
 }

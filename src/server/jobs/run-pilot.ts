@@ -14,7 +14,7 @@ import type { RunBatchAnswer } from '@workers/protocol.ts';
 import { nowText } from '../clock.ts';
 import { newId } from '../ids.ts';
 import { executor } from './executor.ts';
-import { sha256Hex } from './job-folder.ts';
+import { sha256Hex } from '@/archives/batch-file.ts';
 
 /** One pilot at a time, so that pilots take at most one worker. */
 const queue = new PQueue({ concurrency: 1 });

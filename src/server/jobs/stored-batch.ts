@@ -1,5 +1,5 @@
 /** Gives the content of a batch that is in: from its file, or computed again when the file was lost or damaged. */
-import type { Batch, Job } from '@db/models/jobs.ts';
+import { Job, type Batch } from '@db/models/jobs.ts';
 import { log } from '../log.ts';
 import { batchTask, networkOf } from './batch-task.ts';
 import { loadBatch, storeBatch, type BatchContent } from './batch-file.ts';
@@ -11,6 +11,9 @@ export async function storedBatch(job: Job, batch: Batch): Promise<BatchContent>
   if (!name) throw new Error(`Batch ${batch.id} is ${batch.state} and has no file.`);
   const stored = await loadBatch({ jobId: job.id, name, sha256: batch.fileSha256 ?? null });
   if (stored) return stored;
+  const present = await Job.findByPk(job.id);
+  if (present?.archiveRevision !== job.archiveRevision)
+    throw new Error(`The batches of ${job.id} have made room for its results.`);
   log().warn({ jobId: job.id, batchId: batch.id }, 'batch file lost or damaged; computing it again');
   const content = await executor().run(
     batchTask({

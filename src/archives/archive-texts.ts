@@ -1,8 +1,5 @@
-/** The words and the JSON of an archive: README for a person, job.json to repeat the job, provenance.json for its history. */
-import { arch, cpus, platform } from 'node:os';
-import type { Batch, Job, Segment } from '@db/models/jobs.ts';
-import type { ModelVersion, NetworkModel } from '@db/models/models.ts';
-import type { PrefixEnsemble } from '../jobs/prefix-ensemble.ts';
+/** The words and the JSON of an archive: README for a person, job.json to repeat the job. */
+import type { ArchiveSubject, Results } from './subject.ts';
 
 export const caution =
   'Simulation results depend on the model and its parameters. They are decision support, not evidence of safety or efficacy. ' +
@@ -14,16 +11,8 @@ const wrap = (text: string): string => text.replaceAll(/(.{1,110})(?: |$)/g, '$1
 
 const json = (value: unknown): string => `${JSON.stringify(value, null, 2)}\n`;
 
-export interface ArchiveSubject {
-  job: Job;
-  model: NetworkModel;
-  version: ModelVersion;
-  ensemble: PrefixEnsemble;
-  revision: number;
-}
-
 /** All that is needed to repeat the job, and the digest that a repetition must reach. No times, no ids of ours. */
-export function jobJson({ job, model, version, ensemble }: ArchiveSubject, resultsDigest: string): string {
+export function jobJson({ job, model, version }: ArchiveSubject, { ensemble }: Results, resultsDigest: string): string {
   const { inputs, ending } = job;
   return json({
     format: 'burette-job-1',
@@ -47,56 +36,13 @@ export function jobJson({ job, model, version, ensemble }: ArchiveSubject, resul
   });
 }
 
-/** When, where and in which pieces it was computed: none of it shapes a number under results/. */
-export function provenanceJson(
-  { job, version, revision }: ArchiveSubject,
-  segments: Segment[],
-  batches: Batch[],
-  writtenAt: string,
-): string {
-  return json({
-    format: 'burette-provenance-1',
-    jobId: job.id,
-    modelVersionId: version.id,
-    revision,
-    launchedAt: job.createdAt,
-    startedAt: job.startedAt,
-    archiveWrittenAt: writtenAt,
-    chargedMicrocredits: job.chargedMicrocredits,
-    capMicrocredits: job.capMicrocredits,
-    segments: segments.map((segment) => ({
-      quoteId: segment.quoteId,
-      priceBookId: segment.priceBookId,
-      microcreditsPerMillionEvents: segment.microcreditsPerMillionEvents,
-      firstReplicate: segment.firstReplicate,
-      replicates: segment.replicateCount,
-      events: segment.events,
-      chargedMicrocredits: segment.chargedMicrocredits,
-    })),
-    batches: batches.map((batch) => ({
-      firstReplicate: batch.firstReplicate,
-      replicatesPlanned: batch.replicateCount,
-      replicatesDelivered: batch.state === 'joined' ? batch.completeReplicates : 0,
-      events: batch.state === 'joined' ? batch.events : 0,
-      absorbedEvents: batch.absorbedEvents,
-      workerSeconds: batch.seconds,
-    })),
-    machine: {
-      platform: platform(),
-      architecture: arch(),
-      processor: cpus()[0]?.model ?? null,
-      node: process.version,
-    },
-  });
-}
-
 const endings: Partial<Record<string, string>> = {
   done: 'All replicates asked for are complete.',
   stopped_at_cap: 'The job stopped at its cap: the replicates are the longest prefix that the cap could pay for.',
   cancelled: 'The job was cancelled: the replicates are the prefix that was complete then.',
 };
 
-export function readmeText({ job, model, version, ensemble }: ArchiveSubject, paths: string[]): string {
+export function readmeText({ job, model, version }: ArchiveSubject, { ensemble }: Results, paths: string[]): string {
   const { inputs, ending } = job;
   const unit = version.document.timeUnit ? ` ${version.document.timeUnit}` : '';
   const overridden = [
@@ -112,6 +58,8 @@ export function readmeText({ job, model, version, ensemble }: ArchiveSubject, pa
     'results/quantiles.csv': 'quantiles (type 1, the inverse of the sample distribution)',
     'results/histograms.csv': 'how many replicates had each value; width 1 means exactly this value',
     'results/events.csv': 'reaction events of each replicate: what was metered',
+    'results/blocks.csv': 'digests of blocks of replicates, for whoever re-runs some of them',
+    'results/block-sums.csv': 'exact sums of each block: together they give every number of summary.csv',
     'results/traces.csv': 'the first replicates, whole, on the grid',
   };
   const rows = [

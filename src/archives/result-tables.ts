@@ -9,8 +9,12 @@ import { gridTimes, histogramTimes } from '@/domain/jobs/result-outputs.ts';
 import type { JobInputs } from '@/domain/jobs/job-inputs.ts';
 import type { EnsembleStatistics, EnsembleSummary } from '@/engine/ensemble.ts';
 import { distributionOf } from '@/engine/statistics/distribution-of.ts';
-import { statisticsOf } from '@/engine/statistics/statistics-of.ts';
-import type { PrefixEnsemble } from '../jobs/prefix-ensemble.ts';
+import { asSummary, statisticsOf } from '@/engine/statistics/statistics-of.ts';
+import { joined } from '@/engine/statistics/block-collector.ts';
+import { scaleOf, sumText } from '@/engine/statistics/block-sums.ts';
+import { blocksOf } from '@/engine/statistics/merge-blocks.ts';
+import type { Ensemble } from './ensemble.ts';
+import type { Results } from './subject.ts';
 
 type Cell = string | number;
 type Row = Cell[];
@@ -34,8 +38,8 @@ export function* csvPieces(rows: Iterable<Row>): Iterable<string> {
   if (piece.length > 0) yield stringify(piece);
 }
 
-export function resultTables(options: { inputs: JobInputs; ensemble: PrefixEnsemble }): ResultTable[] {
-  const { inputs, ensemble } = options;
+export function resultTables({ inputs, results }: { inputs: JobInputs; results: Results }): ResultTable[] {
+  const { ensemble } = results;
   if (!ensemble.summary) throw new Error('An empty prefix has no results.');
   const summary = ensemble.summary;
   const times = gridTimes(inputs.horizon, inputs.gridIntervals);
@@ -45,6 +49,8 @@ export function resultTables(options: { inputs: JobInputs; ensemble: PrefixEnsem
     { path: 'results/quantiles.csv', rows: () => quantileRows(statistics) },
     { path: 'results/histograms.csv', rows: () => histogramRows(summary, times, histogramTimes(inputs.gridIntervals)) },
     { path: 'results/events.csv', rows: () => eventRows(ensemble.events) },
+    { path: 'results/blocks.csv', rows: () => blockRows(results) },
+    { path: 'results/block-sums.csv', rows: () => blockSumRows(results, times) },
   ];
   if (ensemble.traces.length > 0)
     tables.push({ path: 'results/traces.csv', rows: () => traceRows(ensemble, summary.observables, times) });
@@ -81,9 +87,34 @@ function* eventRows(pieces: Float64Array[]): Iterable<Row> {
   for (const piece of pieces) for (const events of piece) yield [0, replicate++, events];
 }
 
-function* traceRows({ traces }: PrefixEnsemble, observables: string[], times: number[]): Iterable<Row> {
+function* traceRows({ traces }: Ensemble, observables: string[], times: number[]): Iterable<Row> {
   yield ['point', 'replicate', 'time', ...observables];
   for (const { replicate, values } of traces)
     for (const [i, time] of times.entries())
       yield [0, replicate, time, ...observables.map((_, observable) => values[observable * times.length + i]!)];
 }
+
+const blocksIn = ({ ensemble, blocks }: Results) => {
+  const { shape } = asSummary(ensemble.summary!);
+  return blocksOf({ shape, share: blocks, eventsPerReplicate: joined(ensemble.events) });
+};
+
+function* blockRows(results: Results): Iterable<Row> {
+  yield ['point', 'first_replicate', 'replicates', 'events', 'digest'];
+  const events = joined(results.ensemble.events);
+  for (const { firstReplicate, replicates, digest } of blocksIn(results)) {
+    const sum = events.subarray(firstReplicate, firstReplicate + replicates).reduce((total, value) => total + value, 0);
+    yield [0, firstReplicate, replicates, sum, digest];
+  }
+}
+
+function* blockSumRows(results: Results, times: number[]): Iterable<Row> {
+  yield ['point', 'first_replicate', 'observable', 'time', 'sum', 'sum_of_squares', 'sum_of_cubes', 'sum_of_fourths'];
+  const { observables } = asSummary(results.ensemble.summary!).shape;
+  for (const { firstReplicate, sums } of blocksIn(results))
+    for (const [observable, { id, kind }] of observables.entries())
+      for (const [gridPoint, time] of times.entries())
+        yield [0, firstReplicate, id, time, ...powerSumTexts(sums.sums(observable, gridPoint), scaleOf(kind))];
+}
+
+const powerSumTexts = (sums: bigint[], scale: bigint): string[] => sums.map((sum) => sumText(sum, scale));

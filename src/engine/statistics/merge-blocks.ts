@@ -1,0 +1,110 @@
+/** Joins the shares of consecutive batches into the blocks of the whole prefix. */
+import { joined } from './block-collector.ts';
+import { BlockSums } from './block-sums.ts';
+import { blockDigest, leafDigest, replicatesPerLeaf, type BlockPart, type BlockShare } from './blocks.ts';
+import { decodeSummary, type Summary, type SummaryShape } from './summary.ts';
+
+export interface Block {
+  firstReplicate: number;
+  replicates: number;
+  digest: string;
+  sums: BlockSums;
+}
+
+export class BlockMerger {
+  readonly #shape: SummaryShape;
+  readonly #blockReplicates: number;
+  /** By leaf, whole ones only. */
+  readonly #digests: Uint8Array[] = [];
+  /** Of the last leaf, while it is not whole. */
+  #partLeaf: { firstReplicate: number; summary: Summary; events: Float64Array[] } | null = null;
+  readonly #pieces: BlockPart[] = [];
+  #block: { firstReplicate: number; sums: BlockSums };
+  #next = 0;
+
+  /** `blockReplicates`: replicatesPerBlock of the whole prefix. */
+  constructor(shape: SummaryShape, blockReplicates: number) {
+    this.#shape = shape;
+    this.#blockReplicates = blockReplicates;
+    this.#block = { firstReplicate: 0, sums: new BlockSums(shape) };
+  }
+
+  /** Takes in the next batch of the prefix. Throws RangeError when it is another one or its share does not fit it. */
+  add(batch: { firstReplicate: number; eventsPerReplicate: Float64Array; share: BlockShare }): void {
+    const { firstReplicate, eventsPerReplicate, share } = batch;
+    for (const part of share.partLeaves) {
+      const from = part.firstReplicate - firstReplicate;
+      this.#addToLeaf(part, eventsPerReplicate.subarray(from, from + part.replicates));
+    }
+    let leaf = Math.ceil(firstReplicate / replicatesPerLeaf);
+    for (let at = 0; at < share.leafDigests.length; at += 32)
+      this.#digests[leaf++] = share.leafDigests.slice(at, at + 32);
+    for (const piece of share.pieces) this.#addPiece(piece);
+    if (this.#next !== firstReplicate + eventsPerReplicate.length)
+      throw new RangeError(`the sums end at replicate ${this.#next}, not with their batch`);
+  }
+
+  #addToLeaf(part: BlockPart, events: Float64Array): void {
+    const summary = decodeSummary(part.bytes);
+    const leaf = (this.#partLeaf ??= { firstReplicate: part.firstReplicate, summary, events: [] });
+    if (leaf.summary !== summary) leaf.summary.merge(summary);
+    leaf.events.push(events);
+    if (leaf.summary.replicates < replicatesPerLeaf) return;
+    this.#digests[leaf.firstReplicate / replicatesPerLeaf] = digestOf(leaf);
+    this.#partLeaf = null;
+  }
+
+  #addPiece({ firstReplicate, replicates, bytes }: BlockPart): void {
+    if (firstReplicate !== this.#next) throw new RangeError(`replicate ${this.#next} was expected next`);
+    if (
+      Math.floor(this.#next / this.#blockReplicates) !==
+      Math.floor((this.#next + replicates - 1) / this.#blockReplicates)
+    )
+      throw new RangeError(`the sums from replicate ${this.#next} reach into another block`);
+    this.#block.sums.add(bytes);
+    this.#next += replicates;
+    if (this.#next % this.#blockReplicates === 0) this.#endBlock();
+  }
+
+  #endBlock(): void {
+    const { firstReplicate, sums } = this.#block;
+    const replicates = this.#next - firstReplicate;
+    if (replicates === 0) return;
+    this.#pieces.push({ firstReplicate, replicates, bytes: sums.encode() });
+    this.#block = { firstReplicate: this.#next, sums: new BlockSums(this.#shape) };
+  }
+
+  /** The share of the whole prefix; nothing can be added after it. */
+  share(): BlockShare {
+    this.#endBlock();
+    const leafDigests = new Uint8Array(32 * this.#digests.length);
+    this.#digests.forEach((digest, i) => leafDigests.set(digest, 32 * i));
+    const leaf = this.#partLeaf;
+    const { replicates } = leaf?.summary ?? { replicates: 0 };
+    const partLeaves = leaf ? [{ firstReplicate: leaf.firstReplicate, replicates, bytes: leaf.summary.encode() }] : [];
+    return { leafDigests, partLeaves, pieces: this.#pieces };
+  }
+}
+
+const digestOf = ({ summary, events }: { summary: Summary; events: Float64Array[] }): Uint8Array =>
+  leafDigest(summary.encode(), joined(events));
+
+/** The blocks of a whole prefix, from its share; sums are decoded as they are asked for. */
+export function* blocksOf(prefix: {
+  shape: SummaryShape;
+  share: BlockShare;
+  eventsPerReplicate: Float64Array;
+}): Iterable<Block> {
+  const { shape, share, eventsPerReplicate } = prefix;
+  const [part] = share.partLeaves;
+  const last = part ? [leafDigest(part.bytes, eventsPerReplicate.slice(part.firstReplicate))] : [];
+  const digests = new Uint8Array(share.leafDigests.length + 32 * last.length);
+  digests.set(share.leafDigests);
+  for (const digest of last) digests.set(digest, share.leafDigests.length);
+  for (const { firstReplicate, replicates, bytes } of share.pieces) {
+    const sums = new BlockSums(shape);
+    sums.add(bytes);
+    const [from, end] = [firstReplicate, firstReplicate + replicates].map((n) => 32 * Math.ceil(n / replicatesPerLeaf));
+    yield { firstReplicate, replicates, digest: blockDigest(digests.subarray(from, end)), sums };
+  }
+}
