@@ -119,6 +119,7 @@ describe('the main job', () => {
       await page.getByText(/k_prt/).first().waitFor();
       await cell(page, 'Reactions', 1, 3).fill('k_part');
       await page.getByText(/P \+ 2 D = 80/).waitFor();
+      await page.getByRole('img', { name: /^Preview: P in 24 replicates, rate equation dashed/ }).waitFor();
       await lookAt(page);
       await page.getByRole('button', { name: 'Create the model' }).press('Enter');
       await page.waitForURL(/\/models\/model_/);

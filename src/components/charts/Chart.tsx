@@ -10,10 +10,11 @@ import type { FigureContent } from './figure.ts';
 import { useChartTheme } from './use-chart-theme.ts';
 
 const heightPx = 340;
+const compactHeightPx = 210;
 /** Rows shown on the page; the CSV has them all. */
 const rowsShown = 500;
 
-export default function Chart({ description, option, table, fileStem }: FigureContent) {
+export default function Chart({ description, option, table, fileStem, compact = false }: FigureContent) {
   const theme = useChartTheme();
   const chart = useRef<EChartsReactCore>(null);
   const drawn = useMemo(() => option(theme), [option, theme]);
@@ -37,7 +38,13 @@ export default function Chart({ description, option, table, fileStem }: FigureCo
   return (
     <figure>
       <div role="img" aria-label={description}>
-        <EChartsReactCore ref={chart} echarts={echarts} option={drawn} notMerge style={{ height: heightPx }} />
+        <EChartsReactCore
+          ref={chart}
+          echarts={echarts}
+          option={drawn}
+          notMerge
+          style={{ height: compact ? compactHeightPx : heightPx }}
+        />
       </div>
       <figcaption className="mt-1 flex flex-wrap items-center justify-between gap-x-4 gap-y-1 text-sm text-soft">
         <span>{description}</span>

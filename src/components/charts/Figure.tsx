@@ -20,7 +20,7 @@ export function Figure(content: FigureContent) {
     return () => observer.disconnect();
   }, []);
   return (
-    <div ref={place} className="min-h-[24rem]">
+    <div ref={place} className={content.compact ? 'min-h-[16rem]' : 'min-h-[24rem]'}>
       {seen && (
         <Suspense fallback={<Waiting>Loading the figure</Waiting>}>
           <Chart {...content} />

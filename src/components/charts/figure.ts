@@ -11,4 +11,6 @@ export interface FigureContent {
   table: () => FigureTable;
   /** Of the downloaded files, without ending. */
   fileStem: string;
+  /** Lower, for the margin of a page. */
+  compact?: boolean;
 }

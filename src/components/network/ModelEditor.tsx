@@ -12,6 +12,7 @@ import { ChecksPanel } from './ChecksPanel.tsx';
 import { draftOf, emptyDraft, type GridName } from './draft.ts';
 import { Grid } from './Grid.tsx';
 import { compartmentColumns, gridDescriptions } from './grid-columns.ts';
+import { PreviewPanel } from './preview/PreviewPanel.tsx';
 import { SavePanel } from './SavePanel.tsx';
 import { useChecks, type Checks } from './use-checks.ts';
 import { draftStorageKey, useDraft } from './use-draft.ts';
@@ -185,6 +186,7 @@ function Editor({ team, timeZone, readOnly, stored }: ModelEditorProps) {
       </div>
       <div className="mt-10 space-y-8 xl:sticky xl:top-6 xl:mt-0 xl:self-start xl:border-l xl:border-rule xl:pl-8">
         <ChecksPanel {...{ draft, checks, pending, readOnly, change }} onGoTo={goToPlace} />
+        <PreviewPanel draft={draft} />
         {!readOnly && (
           <SavePanel
             team={team}
