@@ -29,7 +29,7 @@ module.exports = {
     layer(
       'archives-import-pure-code',
       '^src/archives/',
-      ['^src/archives/', '^src/domain/', '^src/engine/', '^src/formats/', '^src/charts/'],
+      ['^src/archives/', '^src/domain/', '^src/engine/', '^src/formats/', '^src/charts/', '^src/contracts/'],
       'archives deliver; they know no database and no server',
     ),
     layer(

@@ -9,6 +9,7 @@ import { gridTimes, histogramTimes } from '@/domain/jobs/result-outputs.ts';
 import type { JobInputs } from '@/domain/jobs/job-inputs.ts';
 import type { EnsembleStatistics, EnsembleSummary } from '@/engine/ensemble.ts';
 import { distributionOf } from '@/engine/statistics/distribution-of.ts';
+import { standardProbabilities } from '@/engine/statistics/quantile.ts';
 import { asSummary, statisticsOf } from '@/engine/statistics/statistics-of.ts';
 import { joined } from '@/engine/statistics/block-collector.ts';
 import { scaleOf, sumText } from '@/engine/statistics/block-sums.ts';
@@ -24,6 +25,25 @@ export interface ResultTable {
   rows: () => Iterable<Row>;
 }
 
+/** First rows; `verify` reads the tables by them. */
+export const tableHeads = {
+  summary: ['point', 'observable', 'time', 'replicates', 'mean', 'mean_standard_error', 'sd', 'sd_standard_error'],
+  histograms: ['point', 'observable', 'time', 'value', 'width', 'count'],
+  events: ['point', 'replicate', 'events'],
+  blocks: ['point', 'first_replicate', 'replicates', 'events', 'digest'],
+  'block-sums': [
+    'point',
+    'first_replicate',
+    'observable',
+    'time',
+    'sum',
+    'sum_of_squares',
+    'sum_of_cubes',
+    'sum_of_fourths',
+  ],
+  quantiles: ['point', 'observable', 'time', ...standardProbabilities.map((probability) => `q${probability}`)],
+};
+
 const rowsPerPiece = 1_000;
 
 /** The CSV text (RFC 4180 quoting, line feeds) in pieces. */
@@ -38,7 +58,13 @@ export function* csvPieces(rows: Iterable<Row>): Iterable<string> {
   if (piece.length > 0) yield stringify(piece);
 }
 
-export function resultTables({ inputs, results }: { inputs: JobInputs; results: Results }): ResultTable[] {
+export function resultTables({
+  inputs,
+  results,
+}: {
+  inputs: Pick<JobInputs, 'horizon' | 'gridIntervals'>;
+  results: Results;
+}): ResultTable[] {
   const { ensemble } = results;
   if (!ensemble.summary) throw new Error('An empty prefix has no results.');
   const summary = ensemble.summary;
@@ -58,22 +84,21 @@ export function resultTables({ inputs, results }: { inputs: JobInputs; results: 
 }
 
 function* summaryRows({ replicates, times, observables }: EnsembleStatistics): Iterable<Row> {
-  yield ['point', 'observable', 'time', 'replicates', 'mean', 'mean_standard_error', 'sd', 'sd_standard_error'];
+  yield tableHeads.summary;
   for (const { id, mean, meanStandardError, sd, sdStandardError } of observables)
     for (const [i, time] of times.entries())
       yield [0, id, time, replicates, mean[i]!, meanStandardError[i]!, sd[i]!, sdStandardError[i]!];
 }
 
 function* quantileRows({ times, observables }: EnsembleStatistics): Iterable<Row> {
-  const probabilities = Object.keys(observables[0]?.quantiles ?? {});
-  yield ['point', 'observable', 'time', ...probabilities.map((probability) => `q${probability}`)];
+  yield tableHeads.quantiles;
   for (const { id, quantiles } of observables)
     for (const [i, time] of times.entries())
-      yield [0, id, time, ...probabilities.map((probability) => quantiles[probability]![i]!)];
+      yield [0, id, time, ...standardProbabilities.map((probability) => quantiles[probability]![i]!)];
 }
 
 function* histogramRows(summary: EnsembleSummary, times: number[], at: number[]): Iterable<Row> {
-  yield ['point', 'observable', 'time', 'value', 'width', 'count'];
+  yield tableHeads.histograms;
   for (const id of summary.observables)
     for (const gridPoint of at) {
       const { values, widths, counts } = distributionOf(summary, id, gridPoint);
@@ -82,7 +107,7 @@ function* histogramRows(summary: EnsembleSummary, times: number[], at: number[])
 }
 
 function* eventRows(pieces: Float64Array[]): Iterable<Row> {
-  yield ['point', 'replicate', 'events'];
+  yield tableHeads.events;
   let replicate = 0;
   for (const piece of pieces) for (const events of piece) yield [0, replicate++, events];
 }
@@ -100,7 +125,7 @@ const blocksIn = ({ ensemble, blocks }: Results) => {
 };
 
 function* blockRows(results: Results): Iterable<Row> {
-  yield ['point', 'first_replicate', 'replicates', 'events', 'digest'];
+  yield tableHeads.blocks;
   const events = joined(results.ensemble.events);
   for (const { firstReplicate, replicates, digest } of blocksIn(results)) {
     const sum = events.subarray(firstReplicate, firstReplicate + replicates).reduce((total, value) => total + value, 0);
@@ -109,7 +134,7 @@ function* blockRows(results: Results): Iterable<Row> {
 }
 
 function* blockSumRows(results: Results, times: number[]): Iterable<Row> {
-  yield ['point', 'first_replicate', 'observable', 'time', 'sum', 'sum_of_squares', 'sum_of_cubes', 'sum_of_fourths'];
+  yield tableHeads['block-sums'];
   const { observables } = asSummary(results.ensemble.summary!).shape;
   for (const { firstReplicate, sums } of blocksIn(results))
     for (const [observable, { id, kind }] of observables.entries())

@@ -14,19 +14,25 @@ export interface Block {
 export class BlockMerger {
   readonly #shape: SummaryShape;
   readonly #blockReplicates: number;
-  /** By leaf, whole ones only. */
+  /** By leaf, counted from the first, whole ones only. */
   readonly #digests: Uint8Array[] = [];
   /** Of the last leaf, while it is not whole. */
   #partLeaf: { firstReplicate: number; summary: Summary; events: Float64Array[] } | null = null;
   readonly #pieces: BlockPart[] = [];
   #block: { firstReplicate: number; sums: BlockSums };
-  #next = 0;
+  readonly #firstLeaf: number;
+  #next: number;
 
-  /** `blockReplicates`: replicatesPerBlock of the whole prefix. */
-  constructor(shape: SummaryShape, blockReplicates: number) {
+  /**
+   * `blockReplicates`: replicatesPerBlock of the whole prefix; Infinity to make one block of everything. `firstReplicate`, where a
+   * leaf begins, is not 0 when blocks from within a prefix are run again.
+   */
+  constructor(shape: SummaryShape, blockReplicates: number, firstReplicate = 0) {
     this.#shape = shape;
     this.#blockReplicates = blockReplicates;
-    this.#block = { firstReplicate: 0, sums: new BlockSums(shape) };
+    this.#firstLeaf = firstReplicate / replicatesPerLeaf;
+    this.#next = firstReplicate;
+    this.#block = { firstReplicate, sums: new BlockSums(shape) };
   }
 
   /** Takes in the next batch of the prefix. Throws RangeError when it is another one or its share does not fit it. */
@@ -36,7 +42,7 @@ export class BlockMerger {
       const from = part.firstReplicate - firstReplicate;
       this.#addToLeaf(part, eventsPerReplicate.subarray(from, from + part.replicates));
     }
-    let leaf = Math.ceil(firstReplicate / replicatesPerLeaf);
+    let leaf = Math.ceil(firstReplicate / replicatesPerLeaf) - this.#firstLeaf;
     for (let at = 0; at < share.leafDigests.length; at += 32)
       this.#digests[leaf++] = share.leafDigests.slice(at, at + 32);
     for (const piece of share.pieces) this.#addPiece(piece);
@@ -50,7 +56,7 @@ export class BlockMerger {
     if (leaf.summary !== summary) leaf.summary.merge(summary);
     leaf.events.push(events);
     if (leaf.summary.replicates < replicatesPerLeaf) return;
-    this.#digests[leaf.firstReplicate / replicatesPerLeaf] = digestOf(leaf);
+    this.#digests[leaf.firstReplicate / replicatesPerLeaf - this.#firstLeaf] = digestOf(leaf);
     this.#partLeaf = null;
   }
 
@@ -89,22 +95,25 @@ export class BlockMerger {
 const digestOf = ({ summary, events }: { summary: Summary; events: Float64Array[] }): Uint8Array =>
   leafDigest(summary.encode(), joined(events));
 
-/** The blocks of a whole prefix, from its share; sums are decoded as they are asked for. */
+/** The blocks from a share that begins where a leaf does; sums are decoded as they are asked for. */
 export function* blocksOf(prefix: {
   shape: SummaryShape;
   share: BlockShare;
   eventsPerReplicate: Float64Array;
+  firstReplicate?: number;
 }): Iterable<Block> {
-  const { shape, share, eventsPerReplicate } = prefix;
+  const { shape, share, eventsPerReplicate, firstReplicate: start = 0 } = prefix;
   const [part] = share.partLeaves;
-  const last = part ? [leafDigest(part.bytes, eventsPerReplicate.slice(part.firstReplicate))] : [];
+  const last = part ? [leafDigest(part.bytes, eventsPerReplicate.slice(part.firstReplicate - start))] : [];
   const digests = new Uint8Array(share.leafDigests.length + 32 * last.length);
   digests.set(share.leafDigests);
   for (const digest of last) digests.set(digest, share.leafDigests.length);
   for (const { firstReplicate, replicates, bytes } of share.pieces) {
     const sums = new BlockSums(shape);
     sums.add(bytes);
-    const [from, end] = [firstReplicate, firstReplicate + replicates].map((n) => 32 * Math.ceil(n / replicatesPerLeaf));
+    const [from, end] = [firstReplicate, firstReplicate + replicates].map(
+      (n) => 32 * Math.ceil((n - start) / replicatesPerLeaf),
+    );
     yield { firstReplicate, replicates, digest: blockDigest(digests.subarray(from, end)), sums };
   }
 }

@@ -1,6 +1,7 @@
 /** Makes the engine's task for a range of a job's replicates. The same range gives the same answer, whenever it runs. */
 import { ModelVersion } from '@db/models/models.ts';
 import type { Job } from '@db/models/jobs.ts';
+import { jobTask } from '@/archives/job-task.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 import { resolveNetwork } from '@/domain/network/resolve-network.ts';
 import type { BatchTask } from '@/engine/ensemble.ts';
@@ -25,20 +26,6 @@ export function batchTask(options: {
   /** Stops the batch once no further replicate could fit under the cap; it never shapes a replicate. */
   eventBudgetPerBatch?: number | null;
 }): BatchTask {
-  const { job, network, point, firstReplicate, replicateCount } = options;
-  const { horizon, gridIntervals, keptTraces, eventBudgetPerReplicate } = job.inputs;
-  return {
-    network,
-    horizon,
-    gridIntervals,
-    seed: job.seed,
-    purpose: 'job',
-    point,
-    firstReplicate,
-    replicateCount,
-    keptTraces,
-    eventBudgetPerReplicate,
-    eventBudgetPerBatch: options.eventBudgetPerBatch ?? null,
-    blocks: true,
-  };
+  const { job, eventBudgetPerBatch = null, ...range } = options;
+  return { ...jobTask({ ...range, inputs: job.inputs, seed: job.seed }), eventBudgetPerBatch };
 }

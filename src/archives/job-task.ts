@@ -1,0 +1,26 @@
+/** The engine's task for a range of a job's replicates: the one place that says what of a job's inputs shapes a replicate. */
+import type { JobInputs } from '@/domain/jobs/job-inputs.ts';
+import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
+import type { BatchTask } from '@/engine/ensemble.ts';
+
+export function jobTask(options: {
+  inputs: Pick<JobInputs, 'horizon' | 'gridIntervals' | 'keptTraces' | 'eventBudgetPerReplicate'>;
+  seed: string;
+  network: ResolvedNetwork;
+  point: number;
+  firstReplicate: number;
+  replicateCount: number;
+}): BatchTask {
+  const { inputs, ...range } = options;
+  const { horizon, gridIntervals, keptTraces, eventBudgetPerReplicate } = inputs;
+  return {
+    ...range,
+    horizon,
+    gridIntervals,
+    keptTraces,
+    eventBudgetPerReplicate,
+    purpose: 'job',
+    eventBudgetPerBatch: null,
+    blocks: true,
+  };
+}
