@@ -3,9 +3,18 @@ import { createHash } from 'node:crypto';
 import { omexFormats, writeManifest } from '@/formats/omex/write-manifest.ts';
 import { writeSbml } from '@/formats/sbml/write-sbml.ts';
 import { ZipWriter, type Pieces, type WrittenEntry } from '@/formats/zip/zip-writer.ts';
-import { jobJson, readmeText } from './archive-texts.ts';
+import { writeReport } from '@/formats/report/write-report.ts';
+import { writeSedml } from '@/formats/sedml/write-sedml.ts';
+import { readmeText } from './archive-texts.ts';
+import { figuresOf } from './figures.ts';
+import { jobJson } from './job-json.ts';
+import { reportFonts } from './report-fonts.ts';
+import { reportOf } from './report-of.ts';
+
 import { csvPieces, resultTables } from './result-tables.ts';
+import { sedmlJob } from './sedml-job.ts';
 import type { ArchiveSubject, Results } from './subject.ts';
+import { tracesParquet } from './traces-parquet.ts';
 
 export interface WrittenArchive {
   sha256: string;
@@ -34,20 +43,29 @@ async function writeEntries(
   zip: ZipWriter,
   { subject, results, provenance }: { subject: ArchiveSubject; results: Results; provenance: string },
 ): Promise<string> {
-  const { model, version } = subject;
-  const tables = resultTables({ inputs: subject.job.inputs, results });
-  const paths = ['job.json', 'provenance.json', 'model.xml', 'model.json', ...tables.map(({ path }) => path)];
+  const { model, version, job } = subject;
+  const sbmlText = writeSbml(version.document, { modelId: 'model', name: model.name });
+  const tables = resultTables({ inputs: job.inputs, results });
+  const traces = results.ensemble.traces.length > 0 ? [tracesParquet(job.inputs, results.ensemble)] : [];
+  const figures = figuresOf(subject, results);
+  const described = ['job.json', 'provenance.json', 'report.pdf', 'model.xml', 'model.json', 'simulation.sedml'];
+  const paths = [...described, ...[...tables, ...traces, ...figures].map(({ path }) => path)];
   const written: WrittenEntry[] = [];
   const add = async (path: string, pieces: Pieces) => void written.push(await zip.add(path, pieces));
 
   await add('README.txt', [readmeText(subject, results, paths)]);
   await add('manifest.xml', [writeManifest([...paths, 'README.txt', 'SHA256SUMS'].map(manifestEntry))]);
   await add('provenance.json', [provenance]);
-  await add('model.xml', [writeSbml(version.document, { modelId: 'model', name: model.name })]);
+  await add('model.xml', [sbmlText]);
   await add('model.json', [JSON.stringify(version.document)]);
+  await add('simulation.sedml', [writeSedml(sedmlJob(subject, results.ensemble))]);
   for (const { path, rows } of tables) await add(path, csvPieces(rows()));
+  for (const { path, pieces } of traces) await add(path, pieces());
   const resultsDigest = digestOf(written.filter(({ path }) => path.startsWith('results/')));
   await add('job.json', [jobJson(subject, results, resultsDigest)]);
+  for (const { path, svg } of figures) await add(path, [svg()]);
+  const report = reportOf({ subject, results, resultsDigest, figures });
+  await add('report.pdf', [await writeReport(report, await reportFonts())]);
   await zip.add('SHA256SUMS', sumLines(written));
   return resultsDigest;
 }
@@ -61,9 +79,19 @@ const sumLines = (entries: WrittenEntry[]): string[] =>
 export const digestOf = (entries: WrittenEntry[]): string =>
   createHash('sha256').update(sumLines(entries).join('')).digest('hex');
 
-function manifestEntry(path: string) {
-  const extension = path.split('.').at(-1);
-  if (path === 'model.xml') return { path, format: omexFormats.sbml, master: true };
-  const format = extension === 'csv' ? omexFormats.csv : extension === 'json' ? omexFormats.json : omexFormats.text;
-  return { path, format };
-}
+const formats: Record<string, string> = {
+  csv: omexFormats.csv,
+  json: omexFormats.json,
+  parquet: omexFormats.parquet,
+  pdf: omexFormats.pdf,
+  sedml: omexFormats.sedml,
+  svg: omexFormats.svg,
+  xml: omexFormats.sbml,
+};
+
+/** What other programs open first is the description of the simulation, which names the model. */
+const manifestEntry = (path: string) => ({
+  path,
+  format: formats[path.split('.').at(-1)!] ?? omexFormats.text,
+  master: path === 'simulation.sedml',
+});

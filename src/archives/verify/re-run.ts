@@ -11,6 +11,7 @@ import type { ZipReader } from '@/formats/zip/zip-reader.ts';
 import { addBatch, emptyEnsemble } from '../ensemble.ts';
 import { jobTask } from '../job-task.ts';
 import { csvPieces, resultTables } from '../result-tables.ts';
+import { tracesParquet } from '../traces-parquet.ts';
 import type { ListedBlock, ReAdded } from './check-sums.ts';
 import type { JobFile } from './job-file.ts';
 import { readTable } from './read-table.ts';
@@ -73,9 +74,14 @@ class WholeAgain {
     const { job, zip, problem } = this.#options;
     if (!this.#complete || this.#ensemble.replicates !== job.replicates) return;
     const results = { ensemble: this.#ensemble, blocks: this.#merger.share() };
-    for (const { path, rows } of resultTables({ inputs: job, results })) {
+    const tables = resultTables({ inputs: job, results }).map(({ path, rows }) => ({
+      path,
+      pieces: () => csvPieces(rows()),
+    }));
+    const traces = this.#ensemble.traces.length > 0 ? [tracesParquet(job, this.#ensemble)] : [];
+    for (const { path, pieces } of [...tables, ...traces]) {
       const hashes = [createHash('sha256'), createHash('sha256')] as const;
-      for (const piece of csvPieces(rows())) hashes[0].update(piece);
+      for (const piece of pieces()) hashes[0].update(piece);
       for await (const piece of zip.read(path)) hashes[1].update(piece);
       if (hashes[0].digest('hex') !== hashes[1].digest('hex'))
         problem(`Made again from all blocks, ${path} has other bytes.`);

@@ -156,6 +156,16 @@ describe('an altered archive, its checksums made to fit', () => {
     ]);
   });
 
+  it('is found by running all blocks again when a table that re-adding does not read is another', async () => {
+    const altered = forged(zip, (files) => {
+      files['results/traces.parquet']![100]! ^= 1;
+    });
+    expect((await verify(altered, [0, 1])).problems).toEqual([]);
+    expect((await verify(altered)).problems).toEqual([
+      expect.stringMatching(/results\/traces.parquet has other bytes/),
+    ]);
+  });
+
   it('is found by its digest of the model when the model or the job is another', async () => {
     const model = forged(zip, (files) => {
       files['model.json'] = bytesOf(textOf(files['model.json']).replace('"value":20', '"value":21'));

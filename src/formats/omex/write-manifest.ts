@@ -13,8 +13,12 @@ export const omexFormats = {
   omex: 'http://identifiers.org/combine.specifications/omex',
   manifest: 'http://identifiers.org/combine.specifications/omex-manifest',
   sbml: 'http://identifiers.org/combine.specifications/sbml.level-3.version-2',
+  sedml: 'http://identifiers.org/combine.specifications/sed-ml.level-1.version-4',
   csv: 'http://purl.org/NET/mediatypes/text/csv',
   json: 'http://purl.org/NET/mediatypes/application/json',
+  parquet: 'http://purl.org/NET/mediatypes/application/vnd.apache.parquet',
+  pdf: 'http://purl.org/NET/mediatypes/application/pdf',
+  svg: 'http://purl.org/NET/mediatypes/image/svg+xml',
   text: 'http://purl.org/NET/mediatypes/text/plain',
 } as const;
 

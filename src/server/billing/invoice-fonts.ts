@@ -1,7 +1,7 @@
 /** Manrope for documents, from the installed font package: Latin first, then the scripts it has beside. */
 import { readFile } from 'node:fs/promises';
 import path from 'node:path';
-import type { FontSet } from '@/formats/invoice/pdf-text.ts';
+import type { FontSet } from '@/formats/pdf/typeface.ts';
 import { projectRoot } from '../project-root.ts';
 
 const subsets = ['latin', 'latin-ext', 'greek', 'cyrillic', 'vietnamese'];

@@ -1,4 +1,7 @@
-/** The history of an archive: when, where and in which pieces it was computed. None of it shapes a number under results/. */
+/**
+ * The history of an archive: when, where and in which pieces it was computed. None of it
+ * shapes a number under results/, and none of it is money: the archive goes to the client.
+ */
 import { arch, cpus, platform } from 'node:os';
 import type { Batch, Job, Segment } from '@db/models/jobs.ts';
 
@@ -18,16 +21,11 @@ export function provenanceJson(options: {
     launchedAt: job.createdAt,
     startedAt: job.startedAt,
     finishedAt,
-    chargedMicrocredits: job.chargedMicrocredits,
-    capMicrocredits: job.capMicrocredits,
     segments: segments.map((segment) => ({
       quoteId: segment.quoteId,
-      priceBookId: segment.priceBookId,
-      microcreditsPerMillionEvents: segment.microcreditsPerMillionEvents,
       firstReplicate: segment.firstReplicate,
       replicates: segment.replicateCount,
       events: segment.events,
-      chargedMicrocredits: segment.chargedMicrocredits,
     })),
     batches: batches.map((batch) => ({
       firstReplicate: batch.firstReplicate,

@@ -1,0 +1,26 @@
+/** What of a job SED-ML can say. */
+import type { SedmlJob } from '@/formats/sedml/write-sedml.ts';
+import type { Ensemble } from './ensemble.ts';
+import type { ArchiveSubject } from './subject.ts';
+
+export function sedmlJob({ job, version }: ArchiveSubject, ensemble: Ensemble): SedmlJob {
+  const { inputs } = job;
+  return {
+    modelFile: 'model.xml',
+    method:
+      inputs.method === 'leap'
+        ? 'tau-leaping'
+        : ensemble.kernel === 'composition-rejection'
+          ? 'composition-rejection'
+          : 'direct',
+    seed: job.seed,
+    horizon: inputs.horizon,
+    gridIntervals: inputs.gridIntervals,
+    replicates: ensemble.replicates,
+    overrides: {
+      parameters: inputs.overrides.parameters ?? {},
+      initialCounts: inputs.overrides.initialCounts ?? {},
+    },
+    species: version.document.species.map(({ id, name }) => ({ id, name: name ?? id })),
+  };
+}
