@@ -21,7 +21,7 @@ const generatedKernels: KernelName[] = ['direct-scalar', 'direct-simd'];
 
 describe.each(generatedKernels)('%s', (kernel) => {
   for (const tame of [true, false]) {
-    it(`agrees with the reference bit for bit on 150 ${tame ? 'networks whose laws stay positive' : 'networks with any laws, failures included'}`, async () => {
+    it(`agrees with the reference bit for bit on 300 ${tame ? 'networks whose laws stay positive' : 'networks with any laws, failures included'}`, async () => {
       let replicates = 0;
       let failures = 0;
       const agrees = fc.asyncProperty(
@@ -43,7 +43,7 @@ describe.each(generatedKernels)('%s', (kernel) => {
           failures += (expected as { failure: unknown }).failure ? 1 : 0;
         },
       );
-      await fc.assert(agrees, { seed: 20261201, numRuns: 150 });
+      await fc.assert(agrees, { seed: 20261201, numRuns: 300 });
       // The comparison means something only where replicates complete, and where some fail.
       expect(replicates).toBeGreaterThan(200);
       expect(failures).toBeGreaterThan(10);
