@@ -68,9 +68,18 @@ export const quoteDocument = z.object({
 export type QuoteDocument = z.infer<typeof quoteDocument>;
 
 export const modelFailure = z.object({
-  kind: z.enum(['negative_propensity', 'not_a_number', 'count_overflow', 'event_budget']),
+  kind: z.enum([
+    'negative_propensity',
+    'not_a_number',
+    'count_overflow',
+    'event_budget',
+    'bad_assignment',
+    'change_cascade',
+  ]),
   replicate: count,
   reaction: z.string().nullable(),
+  /** The timed or triggered change that could not be made. */
+  change: z.string().optional(),
   time: z.number(),
   state: z.record(z.string(), z.number()),
 });
@@ -83,6 +92,8 @@ export const stopReasons = [
   'not_a_number',
   'count_overflow',
   'event_budget',
+  'bad_assignment',
+  'change_cascade',
   'our_failure',
 ] as const;
 

@@ -13,6 +13,8 @@ export const limits = {
   changesPerNetwork: 1_000,
   /** Of all timed changes of a network together. */
   changeTimes: 10_000,
+  /** Triggered changes that may happen one after the other at one moment. */
+  changeCascade: 1_000,
   initialCount: 2 ** 31 - 1,
   identifierCharacters: 100,
   nameCharacters: 200,
@@ -42,6 +44,8 @@ export const limits = {
   /** Grid points × observables × points of a job. */
   resultCells: 2_000_000,
   keptTraces: 1_000,
+  /** First passages noted by a job; a kernel has a bit for each. */
+  passagesPerJob: 20,
   sweepPoints: 1_000,
   capReplicatesMinimum: 30,
   eventsPerReplicate: 2 ** 40,
@@ -63,6 +67,7 @@ const relations: [string, boolean][] = [
   ['a model body is at least an ordinary body', limits.modelBodyBytes >= limits.bodyBytes],
   ['an idle session ends before the longest one', limits.sessionIdleDays <= limits.sessionDays],
   ['replicates are below the stream key limit of 2^40', limits.replicatesPerJob < 2 ** 40],
+  ['a kernel has a bit for each passage', limits.passagesPerJob < 31],
   ['points are below the stream key limit of 2^24', limits.sweepPoints < 2 ** 24],
   ['the least pilot can support the least cap', limits.pilotReplicatesMinimum >= limits.capReplicatesMinimum],
 ];

@@ -13,7 +13,7 @@ export type KernelName = 'direct-scalar' | 'direct-simd' | 'composition-rejectio
 
 /**
  * A first passage: when the observable first is at least (`rises_to`) or at most (`falls_to`) the threshold. Looked at at
- * time 0, after each firing and after each change. Extinction of a species is `falls_to` 0.
+ * time 0, after each firing and after each change (all of one moment together). Extinction of a species is `falls_to` 0.
  */
 export interface Passage {
   /** Index in the network's observables. */
@@ -50,9 +50,19 @@ export interface BatchTask {
 
 /** The model's own failure: the ensemble is the prefix before `replicate`, conditional on no failure. */
 export interface ModelFailure {
-  kind: 'negative_propensity' | 'not_a_number' | 'count_overflow' | 'event_budget';
+  kind:
+    | 'negative_propensity'
+    | 'not_a_number'
+    | 'count_overflow'
+    | 'event_budget'
+    /** A change set a count that is no whole number from 0 to 2^31 − 1, or a parameter that is no number. */
+    | 'bad_assignment'
+    /** Triggered changes set each other off without an end. */
+    | 'change_cascade';
   replicate: number;
   reaction: string | null;
+  /** The change that could not be made; absent where no change is the cause. */
+  change?: string;
   time: number;
   state: Record<string, number>;
 }

@@ -1,5 +1,6 @@
 /** What every method offers: run a group of consecutive replicates of one point and leave their results side by side. */
 import type { ModelFailure } from './ensemble.ts';
+import type { ChangeFault, ScheduledChange } from './exact/changes.ts';
 import type { PreparedNetwork } from './kernel/prepared-network.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 
@@ -8,6 +9,9 @@ export interface PointTask {
   network: ResolvedNetwork;
   prepared: PreparedNetwork;
   constants: Float64Array;
+  /** The state in which every replicate begins (exact/changes.ts). */
+  initialState: Float64Array;
+  schedule: ScheduledChange[];
   gridTimes: Float64Array;
   /** random/stream-key.ts */
   streamBase: bigint;
@@ -24,6 +28,8 @@ export interface GroupOutcome {
   reals: Float64Array;
   stride: number;
   events: Float64Array;
+  /** Times of first passage, [passage][slot]. */
+  passages: Float64Array;
   /** Why the group ended early: the model failed in the replicate after the last complete one, or the allowance ran out there. */
   end: ModelFailure | 'allowance_spent' | null;
 }
@@ -61,3 +67,15 @@ export function modelFailure(
     state: Object.fromEntries(network.species.map(({ id }, index) => [id, counts[index]!])),
   };
 }
+
+/** A failure that a change brought about. */
+export const changeFailure = (
+  network: ResolvedNetwork,
+  { kind, change }: ChangeFault,
+  replicate: number,
+  time: number,
+  counts: ArrayLike<number>,
+): ModelFailure => ({
+  ...modelFailure(network, kind, replicate, null, time, counts),
+  change: network.changes![change]!.id,
+});

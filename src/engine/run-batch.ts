@@ -2,12 +2,20 @@
 import { limits } from '@/domain/limits.ts';
 import { chooseKernel } from './choose-kernel.ts';
 import type { BatchResult, BatchTask, KernelName, ModelFailure, Trace } from './ensemble.ts';
+import { initialState, scheduleOf } from './exact/changes.ts';
 import { gridTimes, largestHorizon } from './exact/direct-method.ts';
 import { referenceRunner } from './exact/reference-runner.ts';
 import { directScalarRunner, directSimdRunner } from './kernel/direct-runner.ts';
 import { constantValues, prepareNetwork } from './kernel/prepare-network.ts';
 import { streamBase } from './random/stream-key.ts';
-import { groupSlots, modelFailure, type GroupOutcome, type GroupRunner, type PointTask } from './replicate-group.ts';
+import {
+  changeFailure,
+  groupSlots,
+  modelFailure,
+  type GroupOutcome,
+  type GroupRunner,
+  type PointTask,
+} from './replicate-group.ts';
 import { BlockCollector } from './statistics/block-collector.ts';
 import { largestReal } from './statistics/real-cells.ts';
 import { Summary } from './statistics/summary.ts';
@@ -18,19 +26,27 @@ import { Summary } from './statistics/summary.ts';
  */
 export async function runBatch(task: BatchTask): Promise<BatchResult> {
   checkTask(task);
-  const prepared = prepareNetwork(task.network);
+  const prepared = prepareNetwork(task.network, task.passages);
   const kernel = task.kernel ?? chooseKernel(prepared);
+  const constants = constantValues(prepared, task.network);
+  const initial = initialState(prepared, task.network, constants);
   const point: PointTask = {
     network: task.network,
     prepared,
-    constants: constantValues(prepared, task.network),
+    constants,
+    initialState: initial.state,
+    schedule: scheduleOf(task.network),
     gridTimes: gridTimes(task.horizon, task.gridIntervals),
     streamBase: streamBase(task.seed, task.purpose, task.point),
     eventLimit: task.eventBudgetPerReplicate ?? limits.eventsPerReplicate,
     slots: groupSlots(prepared, task.gridIntervals + 1, task.replicateCount),
   };
-  const runner = await runnerOf(kernel, point);
   const collector = new Collector(task, point);
+  if (initial.fault) {
+    const failure = changeFailure(task.network, initial.fault, task.firstReplicate, 0, initial.state);
+    return { ...collector.result(), failure, kernel };
+  }
+  const runner = await runnerOf(kernel, point);
   let allowance = task.eventBudgetPerBatch ?? Infinity;
   while (collector.replicates < task.replicateCount && !collector.ended) {
     const first = task.firstReplicate + collector.replicates;
@@ -63,12 +79,15 @@ class Collector {
   readonly #blocks: BlockCollector | null;
   readonly #events: Float64Array;
   readonly #traces: Trace[] = [];
+  /** By passage; as long as the batch was asked to be. */
+  readonly #passages: Float64Array[];
   #failure: ModelFailure | null = null;
 
   constructor(task: BatchTask, point: PointTask) {
     this.#task = task;
     this.#point = point;
     this.#events = new Float64Array(task.replicateCount);
+    this.#passages = point.prepared.passages.map(() => new Float64Array(task.replicateCount));
     const observables = task.network.observables.map(({ id }, i) => ({
       id,
       kind: point.prepared.observablePlaces[i]!.kind,
@@ -86,6 +105,10 @@ class Collector {
     for (let slot = 0; slot < completed && first + slot < this.#task.keptTraces; slot++)
       this.#traces.push(this.#trace(outcome, slot, first + slot));
     this.#events.set(outcome.events.subarray(0, completed), this.replicates);
+    for (const [passage, times] of this.#passages.entries()) {
+      const from = passage * outcome.stride;
+      times.set(outcome.passages.subarray(from, from + completed), this.replicates);
+    }
     this.replicates += completed;
     this.ended = end !== null;
     if (end !== null && end !== 'allowance_spent') this.#failure = end;
@@ -127,6 +150,13 @@ class Collector {
     return { replicate, values };
   }
 
+  #passageTimes(): Float64Array {
+    const times = new Float64Array(this.#passages.length * this.replicates);
+    for (const [passage, all] of this.#passages.entries())
+      times.set(all.subarray(0, this.replicates), passage * this.replicates);
+    return times;
+  }
+
   result(): Omit<BatchResult, 'kernel'> {
     const blocks = this.#blocks?.share() ?? null;
     return {
@@ -136,7 +166,7 @@ class Collector {
       eventsPerReplicate: this.#events.slice(0, this.replicates),
       summary: this.#summary,
       traces: this.#traces,
-      passageTimes: new Float64Array(0),
+      passageTimes: this.#passageTimes(),
       failure: this.#failure,
     };
   }
@@ -160,5 +190,11 @@ function checkTask(task: BatchTask): void {
   for (const { id, initialCount } of task.network.species)
     demand(whole(initialCount, 0) && initialCount < 2 ** 31, `initial count ${initialCount} of ${id}`);
   demand(task.network.observables.length > 0, 'no observables');
-  demand((task.passages ?? []).length === 0, 'first passages are not part of this engine version');
+  const { passages = [] } = task;
+  demand(passages.length <= limits.passagesPerJob, `${passages.length} passages`);
+  for (const { observable, threshold } of passages)
+    demand(
+      observable in task.network.observables && Number.isFinite(threshold),
+      `a passage of observable ${observable} at ${threshold}`,
+    );
 }

@@ -92,6 +92,20 @@ describe('splitting into batches', () => {
   });
 });
 
+describe.each(kernels)('a network that runs dry by %s', (kernel) => {
+  it('rests at nothing left: 10 of 2 X -> ∅ fire from 20 (or 21), and not one more', async () => {
+    for (const initial of [20, 21]) {
+      const pairs = network({ counts: { X: initial }, reactions: [{ consumes: { X: 2 }, rate: 1 }] });
+      const { eventsPerReplicate, failure, traces } = await runBatch(
+        batchTask(pairs, { kernel, horizon: 1e9, keptTraces: 100 }),
+      );
+      expect(failure).toBeNull();
+      expect(new Set(eventsPerReplicate)).toEqual(new Set([10]));
+      for (const { values } of traces) expect(values.at(-1)).toBe(initial - 20);
+    }
+  });
+});
+
 describe.each(kernels)('budgets and failures by %s', (kernel) => {
   it('keeps the longest prefix of replicates that a batch budget pays for', async () => {
     const task = batchTask(immigrationDeath(), { kernel, replicateCount: 50 });

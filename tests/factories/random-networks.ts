@@ -1,7 +1,7 @@
 /** Randomly generated networks for property tests: mass action of every order, laws of every operator, rules and boundary species. */
 import fc from 'fast-check';
 import type { BinaryOperator, Expression, FunctionName } from '@/domain/network/expression.ts';
-import type { ResolvedNetwork, ResolvedReaction } from '@/domain/network/resolved.ts';
+import type { ResolvedChange, ResolvedNetwork, ResolvedReaction } from '@/domain/network/resolved.ts';
 
 const operators: BinaryOperator[] = ['add', 'subtract', 'multiply', 'divide', 'power', 'equal', 'notEqual'];
 operators.push('less', 'lessOrEqual', 'greater', 'greaterOrEqual', 'and', 'or');
@@ -51,8 +51,59 @@ function expressions(parameters: number, species: number): fc.Arbitrary<Expressi
 
 const absolute = (expression: Expression): Expression => ({ kind: 'call', name: 'abs', arguments: [expression] });
 
+/** Timed and triggered changes of counts and parameters, the former mostly whole. */
+function changes(
+  parameters: number,
+  species: number,
+  withRules: number,
+  kinds: 'timed' | 'any',
+): fc.Arbitrary<ResolvedChange[]> {
+  const value = expressions(withRules, species);
+  const whole = (expression: Expression): Expression => ({
+    kind: 'call',
+    name: 'min',
+    arguments: [
+      { kind: 'call', name: 'floor', arguments: [absolute(expression)] },
+      { kind: 'number', value: 500 },
+    ],
+  });
+  const set = fc.oneof(
+    { weight: 6, arbitrary: fc.tuple(fc.nat(species - 1), value.map(whole)) },
+    { weight: 1, arbitrary: fc.tuple(fc.nat(species - 1), value) },
+  );
+  const ofSpecies = set.map(([index, expression]) => ({ target: { kind: 'species' as const, index }, expression }));
+  const ofParameter = fc.tuple(fc.nat(parameters - 1), value).map(([index, expression]) => ({
+    target: { kind: 'parameter' as const, index },
+    expression: {
+      kind: 'call' as const,
+      name: 'min' as const,
+      arguments: [absolute(expression), { kind: 'number' as const, value: 9 }],
+    },
+  }));
+  const timed = fc
+    .array(fc.constantFrom(0, 0.001, 0.01, 0.1, 0.3, 1, 2, 7.5, 30), { minLength: 1, maxLength: 4 })
+    .map((times) => ({ kind: 'times' as const, times }));
+  const triggered = fc.record({ left: value, right: value, before: fc.boolean() }).map(({ left, right, before }) => ({
+    kind: 'condition' as const,
+    condition: { kind: 'binary' as const, operator: 'greater' as const, left, right },
+    before,
+  }));
+  const when = kinds === 'timed' ? timed : fc.oneof(timed, triggered);
+  const sets = fc.uniqueArray(fc.oneof(ofSpecies, ofParameter), {
+    selector: ({ target }) => `${target.kind} ${target.index}`,
+    minLength: 1,
+    maxLength: 2,
+  });
+  return fc
+    .array(fc.record({ when, sets }), { maxLength: 4 })
+    .map((drawn) => drawn.map((change, index) => ({ id: `change${index}`, ...change })));
+}
+
 /** Any network that the engine accepts; `tame` keeps laws from going negative, so that most replicates run to the end. */
-export function networks(options: { tame: boolean }): fc.Arbitrary<ResolvedNetwork> {
+export function networks(options: {
+  tame: boolean;
+  changes?: 'none' | 'timed' | 'any';
+}): fc.Arbitrary<ResolvedNetwork> {
   const sizes = fc.record({
     species: fc.integer({ min: 1, max: 5 }),
     parameters: fc.integer({ min: 1, max: 4 }),
@@ -101,8 +152,13 @@ export function networks(options: { tame: boolean }): fc.Arbitrary<ResolvedNetwo
         rules: fc.array(expressions(parameters, species), { minLength: rules, maxLength: rules }),
         reactions: fc.array(sketch, { minLength: 1, maxLength: 8 }),
         observable: expressions(parameters + rules, species),
+        changes:
+          (options.changes ?? 'none') === 'none'
+            ? fc.constant<ResolvedChange[]>([])
+            : changes(parameters, species, parameters + rules, options.changes as 'timed' | 'any'),
       })
       .map((drawn): ResolvedNetwork => ({
+        ...(drawn.changes.length > 0 ? { changes: drawn.changes } : {}),
         species: drawn.counts.map((initialCount, i) => ({
           id: `S${i}`,
           initialCount,

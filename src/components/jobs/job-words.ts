@@ -37,13 +37,15 @@ const failureKinds = {
   not_a_number: 'a rate law gave no number',
   count_overflow: 'a count grew beyond 2,147,483,647',
   event_budget: 'a replicate ran over its event budget',
+  bad_assignment: 'a change would have set a count that is no whole number, or a parameter that is no number',
+  change_cascade: 'triggered changes set each other off without an end',
 } as const;
 
 /** What went wrong, where and when: "In replicate 18 at time 3.2 h, a rate law became negative (reaction decay)." */
 export function failureWords({ failure, timeUnit }: Pick<JobDocument, 'failure' | 'timeUnit'>): string | null {
   if (failure === null) return null;
-  const { kind, replicate, reaction, time } = failure;
-  const where = reaction === null ? '' : ` (reaction ${reaction})`;
+  const { kind, replicate, reaction, change, time } = failure;
+  const where = change !== undefined ? ` (change ${change})` : reaction === null ? '' : ` (reaction ${reaction})`;
   return `In replicate ${countText(replicate)} at time ${timeWithUnit(time, timeUnit)}, ${failureKinds[kind]}${where}.`;
 }
 

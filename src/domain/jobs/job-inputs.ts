@@ -20,9 +20,12 @@ export interface JobInputs {
 
 /** The model's own failure, as the engine reports it. */
 export interface BatchFailure {
-  kind: 'negative_propensity' | 'not_a_number' | 'count_overflow' | 'event_budget';
+  kind:
+    'negative_propensity' | 'not_a_number' | 'count_overflow' | 'event_budget' | 'bad_assignment' | 'change_cascade';
   replicate: number;
   reaction: string | null;
+  /** The timed or triggered change that could not be made; absent where none is the cause. */
+  change?: string | undefined;
   time: number;
   state: Record<string, number>;
 }
@@ -50,6 +53,8 @@ export function describeFailure(failure: BatchFailure): string {
     not_a_number: `the propensity of ${failure.reaction} was no number`,
     count_overflow: `a count passed 2,147,483,647 when ${failure.reaction} fired`,
     event_budget: 'the replicate needed more events than a replicate may have',
+    bad_assignment: `the change ${failure.change} would have set a count that is no whole number from 0 to 2,147,483,647, or a parameter that is no number`,
+    change_cascade: `triggered changes set each other off without an end, ${failure.change} among them`,
   }[failure.kind];
   return (
     `Replicate ${failure.replicate}: ${what}, at time ${failure.time}. ` +

@@ -2,13 +2,16 @@
 import { logarithm } from '../kernel/elementary/logarithm.ts';
 import { evaluatePropensity, evaluateTerm, type StateValues } from '../kernel/evaluate.ts';
 import { largestCount, largestTotal } from '../kernel/memory-layout.ts';
+import { makeChange, settleTriggers, stateValues, type ChangeFault, type ScheduledChange } from './changes.ts';
 import type { PreparedNetwork } from '../kernel/prepared-network.ts';
 import { uniform52, Xoshiro256, type Xoshiro256State } from '../random/xoshiro256.ts';
 
 export interface ReferenceTask {
   prepared: PreparedNetwork;
   constants: Float64Array;
-  initialCounts: ArrayLike<number>;
+  /** The state at time 0, after the changes at it (changes.ts). */
+  initialState: ArrayLike<number>;
+  schedule: ScheduledChange[];
   gridTimes: Float64Array;
   generator: Xoshiro256State;
   /** Firings allowed. */
@@ -17,8 +20,10 @@ export interface ReferenceTask {
 
 /** Why a replicate could not go on. `reaction` is an index, null where no single reaction is the cause. */
 export interface Cause {
-  kind: 'negative_propensity' | 'not_a_number' | 'count_overflow' | 'event_limit';
+  kind: 'negative_propensity' | 'not_a_number' | 'count_overflow' | 'event_limit' | ChangeFault['kind'];
   reaction: number | null;
+  /** Index of the change that could not be made; null where none is the cause. */
+  change: number | null;
   time: number;
   counts: number[];
 }
@@ -29,14 +34,9 @@ export interface ReferenceReplicate {
   counts: number[][];
   /** One row per grid point: the other observables. */
   reals: number[][];
+  /** Times of first passage; Infinity where not passed. */
+  passages: number[];
   cause: Cause | null;
-}
-
-/** The values of assigned parameters in the given state, in their order. */
-export function stateValues(prepared: PreparedNetwork, constants: Float64Array, counts: number[]): StateValues {
-  const state: StateValues = { counts, constants, assigned: [] };
-  for (const term of prepared.assigned) state.assigned.push(evaluateTerm(term, state));
-  return state;
 }
 
 /** Prefix sums of the propensities, or the first reaction (null: their sum) that spoils them. */
@@ -56,26 +56,54 @@ export function prefixSums(
   return total <= largestTotal ? prefixes : { kind: 'not_a_number', reaction: null };
 }
 
+/** Notes the passages that the present state, which began at `time`, makes for the first time. */
+function notePassages(prepared: PreparedNetwork, state: StateValues, passages: number[], time: number): void {
+  prepared.passages.forEach(({ value, direction, threshold }, passage) => {
+    if (passages[passage] !== Infinity) return;
+    const present = evaluateTerm(value, state);
+    if (direction === 'rises_to' ? present >= threshold : present <= threshold) passages[passage] = time;
+  });
+}
+
 /** One replicate. */
 export function runReferenceReplicate(task: ReferenceTask): ReferenceReplicate {
-  const { prepared, constants, gridTimes } = task;
+  const { prepared, constants, gridTimes, schedule } = task;
   const generator = new Xoshiro256(task.generator);
-  const counts = Array.from(task.initialCounts);
-  const replicate: ReferenceReplicate = { firings: 0, counts: [], reals: [], cause: null };
+  const counts = Array.from(task.initialState);
+  const passages = prepared.passages.map(() => Infinity);
+  const replicate: ReferenceReplicate = { firings: 0, counts: [], reals: [], passages, cause: null };
   const fail = (kind: Cause['kind'], reaction: number | null, at: number): ReferenceReplicate => ({
     ...replicate,
-    cause: { kind, reaction, time: at, counts: [...counts] },
+    cause: { kind, reaction, change: null, time: at, counts: [...counts] },
+  });
+  const failAtChange = ({ kind, change }: ChangeFault, at: number): ReferenceReplicate => ({
+    ...replicate,
+    cause: { kind, reaction: null, change, time: at, counts: [...counts] },
   });
   let time = 0;
-  for (;;) {
+  let nextChange = 0;
+  const nextGridTime = (): number => (replicate.counts.length === 0 ? -1 : gridTimes[replicate.counts.length]!);
+  nextState: for (;;) {
+    const cascade = settleTriggers(prepared, constants, counts);
+    if (cascade) return failAtChange(cascade, time);
     const state = stateValues(prepared, constants, counts);
+    notePassages(prepared, state, passages, time);
     const prefixes = prefixSums(prepared, state);
     if (!Array.isArray(prefixes)) return fail(prefixes.kind, prefixes.reaction, time);
     const total = prefixes.at(-1) ?? 0;
     const waitingDraw = uniform52(generator.next());
     const choiceDraw = uniform52(generator.next());
     const newTime = total === 0 ? Infinity : time - logarithm(1 - waitingDraw) / total;
-    while (replicate.counts.length === 0 || gridTimes[replicate.counts.length]! < newTime) {
+    while (newTime > Math.min(nextGridTime(), schedule[nextChange]?.time ?? Infinity)) {
+      const moment = schedule[nextChange]?.time ?? Infinity;
+      if (moment <= nextGridTime()) {
+        time = moment;
+        for (; schedule[nextChange]?.time === moment; nextChange++) {
+          const fault = makeChange(prepared, constants, counts, schedule[nextChange]!.change);
+          if (fault) return failAtChange(fault, time);
+        }
+        continue nextState;
+      }
       replicate.counts.push(prepared.countObservables.map((species) => counts[species]!));
       replicate.reals.push(prepared.realObservables.map((term) => evaluateTerm(term, state)));
       if (replicate.counts.length === gridTimes.length) return replicate;

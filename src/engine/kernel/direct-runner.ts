@@ -1,12 +1,20 @@
 /** Groups of replicates by the generated kernels of the direct method. */
-import { prefixSums, stateValues } from '../exact/reference-direct.ts';
+import { stateValues } from '../exact/changes.ts';
+import { prefixSums } from '../exact/reference-direct.ts';
 import type { ModelFailure } from '../ensemble.ts';
-import { modelFailure, type GroupOutcome, type GroupRunner, type PointTask } from '../replicate-group.ts';
+import {
+  changeFailure,
+  modelFailure,
+  type GroupOutcome,
+  type GroupRunner,
+  type PointTask,
+} from '../replicate-group.ts';
 import { compiledKernel, ensureBytes, type CompiledKernel } from './compile-kernel.ts';
 import { directScalarModule } from './direct-scalar.ts';
 import { directSimdModule } from './direct-simd.ts';
+import { hasTriggers, timedChanges } from './emit-changes.ts';
 import { changeTable, handedOver, laneCount, laneLayout, largestLaneChange, largestLaneCount } from './lane-layout.ts';
-import { control, status, structureLayout, taskLayout, type TaskLayout } from './memory-layout.ts';
+import { control, scheduleEntryBytes, status, structureLayout, taskLayout, type TaskLayout } from './memory-layout.ts';
 import type { PreparedNetwork } from './prepared-network.ts';
 
 /** The first calls are short, so that the runtime changes to optimised code early; later ones long. */
@@ -29,16 +37,17 @@ export async function directSimdRunner(task: PointTask): Promise<GroupRunner> {
 }
 
 /** Whether lanes can run the point at all; otherwise the scalar kernel does, with the same bytes. */
-function lanesSuit({ prepared, constants, network }: PointTask): boolean {
+function lanesSuit({ prepared, constants, initialState }: PointTask): boolean {
+  if (hasTriggers(prepared) || prepared.passages.length > 0) return false;
   const smallSteps = prepared.reactions.every(({ changes }) =>
     changes.every(({ count }) => Math.abs(count) <= largestLaneChange),
   );
-  const smallCounts = prepared.changing.every((species) => network.species[species]!.initialCount <= largestLaneCount);
+  const smallCounts = prepared.changing.every((species) => initialState[species]! <= largestLaneCount);
   const positive = prepared.reactions.every(({ law }) => {
     if (law.kind === 'expression') return true;
     const { factor } = law;
     const value = factor.kind === 'number' ? factor.value : factor.kind === 'constant' ? constants[factor.slot]! : 0;
-    return !(value < 0);
+    return !(value < 0 || Object.is(value, -0));
   });
   return prepared.reactions.length > 0 && smallSteps && smallCounts && positive;
 }
@@ -53,9 +62,15 @@ class DirectRunner implements GroupRunner {
   constructor(kernel: CompiledKernel, task: PointTask) {
     this.#kernel = kernel;
     this.#task = task;
-    const { prepared, gridTimes, slots } = task;
+    const { prepared, gridTimes, schedule, slots } = task;
     const structureEnd = kernel.runLanes ? laneLayout(prepared).end : structureLayout(prepared).end;
-    this.#layout = taskLayout(prepared, structureEnd, gridTimes.length - 1, slots);
+    this.#layout = taskLayout({
+      prepared,
+      structureEnd,
+      gridIntervals: gridTimes.length - 1,
+      slots,
+      scheduleEntries: schedule.length,
+    });
     this.#view = new DataView(kernel.memory.buffer);
   }
 
@@ -131,6 +146,7 @@ class DirectRunner implements GroupRunner {
       reals: new Float64Array(buffer, layout.reals, gridTimes.length * prepared.realObservables.length * slots),
       stride: slots,
       events: new Float64Array(buffer, layout.events, slots),
+      passages: new Float64Array(buffer, layout.passages, prepared.passages.length * slots),
       end,
     };
   }
@@ -139,15 +155,20 @@ class DirectRunner implements GroupRunner {
     const { prepared, constants, network } = this.#task;
     const saved = new Float64Array(
       this.#kernel.memory.buffer,
-      structureLayout(prepared).savedCounts,
-      prepared.speciesCount,
+      structureLayout(prepared).savedState,
+      prepared.stateSize,
     );
     const counts = Array.from(saved);
     const time = this.#view.getFloat64(control.failureTime, true);
     if (answer === status.eventLimit) return modelFailure(network, 'event_budget', replicate, null, time, counts);
     if (answer === status.countOverflow) {
-      const reaction = this.#view.getInt32(control.failedReaction, true);
+      const reaction = this.#view.getInt32(control.failedIndex, true);
       return modelFailure(network, 'count_overflow', replicate, reaction, time, counts);
+    }
+    if (answer === status.badAssignment || answer === status.changeCascade) {
+      const change = this.#view.getInt32(control.failedIndex, true);
+      const kind = answer === status.badAssignment ? 'bad_assignment' : 'change_cascade';
+      return changeFailure(network, { kind, change }, replicate, time, counts);
     }
     const cause = prefixSums(prepared, stateValues(prepared, constants, counts));
     if (Array.isArray(cause)) throw new Error('the kernel refused propensities that the reference accepts');
@@ -157,14 +178,12 @@ class DirectRunner implements GroupRunner {
 
 /** Writes everything that stays the same for all groups of a task. */
 function writeTask(memory: WebAssembly.Memory, task: PointTask, layout: TaskLayout): void {
-  const { prepared, network, constants, gridTimes, slots } = task;
+  const { prepared, constants, gridTimes, initialState, slots } = task;
   const structure = structureLayout(prepared);
   const { buffer } = memory;
   const view = new DataView(buffer);
   new Float64Array(buffer, structure.constants, constants.length).set(constants);
-  network.species.forEach(({ initialCount }, i) =>
-    view.setFloat64(structure.initialCounts + 8 * i, initialCount, true),
-  );
+  new Float64Array(buffer, structure.initialState, initialState.length).set(initialState);
   new Float64Array(buffer, layout.gridTimes, gridTimes.length).set(gridTimes);
   // Grid time 0 is always written before the first firing, even one at time 0.
   view.setFloat64(layout.gridTimes, -1, true);
@@ -176,8 +195,20 @@ function writeTask(memory: WebAssembly.Memory, task: PointTask, layout: TaskLayo
     [control.counts, layout.counts],
     [control.reals, layout.reals],
     [control.cellBytes, 4 * slots],
+    [control.schedule, layout.schedule],
+    [control.passages, layout.passages],
   ];
   for (const [at, value] of words) view.setInt32(at, value, true);
+  writeSchedule(view, task, layout.schedule);
+}
+
+/** The timed changes in the order in which they happen, ended by one that never does. */
+function writeSchedule(view: DataView, { prepared, schedule }: PointTask, at: number): void {
+  const timed = timedChanges(prepared);
+  [...schedule, { time: Infinity, change: timed[0] ?? 0 }].forEach(({ time, change }, entry) => {
+    view.setFloat64(at + scheduleEntryBytes * entry, time, true);
+    view.setInt32(at + scheduleEntryBytes * entry + 8, timed.indexOf(change), true);
+  });
 }
 
 function writeChanges(memory: WebAssembly.Memory, prepared: PreparedNetwork): void {

@@ -3,6 +3,14 @@
  * What it computes, operation by operation, is written in exact/direct-method.ts.
  */
 import { emitLogarithmOfNormal } from './elementary/logarithm.ts';
+import {
+  emitChangeTime,
+  emitScheduledChanges,
+  emitSettleTriggers,
+  timedChanges,
+  type ChangeContext,
+} from './emit-changes.ts';
+import { emitNoPassages, emitPassages } from './emit-passages.ts';
 import { ExpressionEmitter } from './emit-expression.ts';
 import { emitGridTime, emitRecording, emitReplicateKey, emitStoreFirings } from './emit-recording.ts';
 import { emitNext, emitSeeding, generatorLocals, onePlusUniform } from './emit-random.ts';
@@ -30,7 +38,7 @@ import {
   type Node,
 } from './wasm/node.ts';
 
-/** Above this many species the state stays in memory, so that functions keep a moderate number of locals. */
+/** Above this size the state stays in memory, so that functions keep a moderate number of locals. */
 const largestStateInLocals = 200;
 
 const address = i32(0);
@@ -41,42 +49,40 @@ class State {
 
   constructor(
     fn: FunctionBuilder,
-    readonly speciesCount: number,
-    readonly savedCounts: number,
-    readonly initialCounts: number,
+    readonly size: number,
+    readonly saved: number,
+    readonly initial: number,
   ) {
     this.#locals =
-      speciesCount <= largestStateInLocals
-        ? Array.from({ length: speciesCount }, (_, index) => fn.local('f64', `x${index}`))
-        : null;
+      size <= largestStateInLocals ? Array.from({ length: size }, (_, index) => fn.local('f64', `x${index}`)) : null;
   }
 
   get(species: number): Node<'f64'> {
-    return this.#locals ? get(this.#locals[species]!) : memory('f64.load', this.savedCounts + 8 * species, address);
+    return this.#locals ? get(this.#locals[species]!) : memory('f64.load', this.saved + 8 * species, address);
   }
 
   set(species: number, value: Node<'f64'>): Node {
     return this.#locals
       ? set(this.#locals[species]!, value)
-      : memory('f64.store', this.savedCounts + 8 * species, address, value);
+      : memory('f64.store', this.saved + 8 * species, address, value);
   }
 
   all(change: (species: number) => Node): Node[] {
-    return Array.from({ length: this.speciesCount }, (_, species) => change(species));
+    return Array.from({ length: this.size }, (_, species) => change(species));
   }
 
   reset(): Node[] {
-    return this.all((species) => this.set(species, memory('f64.load', this.initialCounts + 8 * species, address)));
+    return this.all((species) => this.set(species, memory('f64.load', this.initial + 8 * species, address)));
   }
 
   load(): Node[] {
     if (!this.#locals) return [];
-    return this.all((species) => this.set(species, memory('f64.load', this.savedCounts + 8 * species, address)));
+    return this.all((species) => this.set(species, memory('f64.load', this.saved + 8 * species, address)));
   }
 
   save(): Node[] {
     if (!this.#locals) return [];
-    return this.all((species) => memory('f64.store', this.savedCounts + 8 * species, address, this.get(species)));
+    return this.all((species) => memory('f64.store', this.saved + 8 * species, address, this.get(species)));
   }
 }
 
@@ -91,6 +97,9 @@ export function directScalarModule(prepared: PreparedNetwork, module = new Modul
   const time = fn.local('f64', 'time');
   const newTime = fn.local('f64', 'newTime');
   const nextGridTime = fn.local('f64', 'nextGridTime');
+  const nextChangeTime = fn.local('f64', 'nextChangeTime');
+  const changeIndex = fn.local('i32', 'changeIndex');
+  const passed = fn.local('i32', 'passed');
   const gridIndex = fn.local('i32', 'gridIndex');
   const firings = fn.local('f64', 'firings');
   const eventLimit = fn.local('f64', 'eventLimit');
@@ -100,7 +109,7 @@ export function directScalarModule(prepared: PreparedNetwork, module = new Modul
   const drawn = fn.local('f64', 'drawn');
   const chosen = fn.local('i32', 'chosen');
   const generator = generatorLocals(lanes, fn);
-  const state = new State(fn, prepared.speciesCount, layout.savedCounts, layout.initialCounts);
+  const state = new State(fn, prepared.stateSize, layout.savedState, layout.initialState);
   const assigned = prepared.assigned.map((_, index) => fn.local('f64', `assigned${index}`));
   const expressions = new ExpressionEmitter(lanes, module, fn, {
     species: (index) => state.get(index),
@@ -111,6 +120,8 @@ export function directScalarModule(prepared: PreparedNetwork, module = new Modul
   const save = (): Node[] => [
     memory('f64.store', control.time, address, get(time)),
     memory('i32.store', control.gridIndex, address, get(gridIndex)),
+    memory('i32.store', control.changeIndex, address, get(changeIndex)),
+    memory('i32.store', control.passed, address, get(passed)),
     memory('f64.store', control.firings, address, get(firings)),
     memory('i32.store', control.slot, address, get(slot)),
     ...generator.state.map((word, i) => memory('i64.store', control.generator + 8 * i, address, get(word))),
@@ -122,6 +133,18 @@ export function directScalarModule(prepared: PreparedNetwork, module = new Modul
     giveBack(i32(answer)),
   ];
 
+  const changing: ChangeContext = {
+    prepared,
+    fn,
+    expressions,
+    assigned,
+    state,
+    fail: (answer, change) => [memory('i32.store', control.failedIndex, address, i32(change)), ...stop(answer)],
+  };
+  const timed = timedChanges(prepared).length > 0;
+  /** Where the course of firings is interrupted next. */
+  const nextStopTime = timed ? op('f64.min', get(nextGridTime), get(nextChangeTime)) : get(nextGridTime);
+
   const nextReplicate = label('nextReplicate');
   const nextEvent = label('nextEvent');
   const nextGridPoint = label('nextGridPoint');
@@ -132,6 +155,8 @@ export function directScalarModule(prepared: PreparedNetwork, module = new Modul
     set(time, f64(0)),
     set(firings, f64(0)),
     set(gridIndex, i32(0)),
+    set(changeIndex, i32(0)),
+    ...emitNoPassages(changing, slot, passed),
     memory('i32.store', control.active, address, i32(1)),
   ];
 
@@ -156,19 +181,33 @@ export function directScalarModule(prepared: PreparedNetwork, module = new Modul
     ...state.load(),
     set(time, memory('f64.load', control.time, address)),
     set(gridIndex, field(control.gridIndex)),
+    set(changeIndex, field(control.changeIndex)),
+    set(passed, field(control.passed)),
     set(firings, memory('f64.load', control.firings, address)),
     ...generator.state.map((word, i) => set(word, memory('i64.load', control.generator + 8 * i, address))),
     loop(
       nextReplicate,
       when(op('i32.eqz', field(control.active)), begin),
       set(nextGridTime, emitGridTime(gridIndex)),
+      ...(timed ? [set(nextChangeTime, emitChangeTime(changeIndex))] : []),
       loop(
         nextEvent,
+        ...emitSettleTriggers(changing),
+        ...emitPassages(changing, slot, time, passed),
         ...propensities,
         ...advance,
-        when(op('i32.eqz', op('f64.le', get(newTime), get(nextGridTime))), [
+        when(op('i32.eqz', op('f64.le', get(newTime), nextStopTime)), [
           loop(
             nextGridPoint,
+            ...(timed
+              ? [
+                  when(op('f64.le', get(nextChangeTime), get(nextGridTime)), [
+                    set(time, get(nextChangeTime)),
+                    ...emitScheduledChanges(changing, changeIndex, nextChangeTime),
+                    branch(nextEvent),
+                  ]),
+                ]
+              : []),
             ...emitRecording(prepared, fn, expressions, (index) => state.get(index), gridIndex, slot),
             set(gridIndex, op('i32.add', get(gridIndex), i32(1))),
             when(op('i32.gt_s', get(gridIndex), field(control.gridIntervals)), [
@@ -178,7 +217,7 @@ export function directScalarModule(prepared: PreparedNetwork, module = new Modul
               branch(nextReplicate),
             ]),
             set(nextGridTime, emitGridTime(gridIndex)),
-            branchIf(nextGridPoint, op('f64.gt', get(newTime), get(nextGridTime))),
+            branchIf(nextGridPoint, op('f64.gt', get(newTime), nextStopTime)),
           ),
         ]),
         when(op('f64.ge', get(firings), get(eventLimit)), stop(status.eventLimit, newTime)),
@@ -191,7 +230,7 @@ export function directScalarModule(prepared: PreparedNetwork, module = new Modul
             .reduce<Node<'i32'>>((sum, one) => op('i32.add', sum, one), i32(0)),
         ),
         emitFiring(prepared, state, chosen, (reaction) => [
-          memory('i32.store', control.failedReaction, address, i32(reaction)),
+          memory('i32.store', control.failedIndex, address, i32(reaction)),
           ...stop(status.countOverflow, newTime),
         ]),
         set(time, get(newTime)),

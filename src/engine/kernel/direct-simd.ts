@@ -44,7 +44,7 @@ const everyLane = 2 ** laneCount - 1;
 interface VectorLocals {
   index: number;
   time: Local<'v128'>;
-  nextGridTime: Local<'v128'>;
+  nextStopTime: Local<'v128'>;
   counts: Map<number, Local<'v128'>>;
   generator: GeneratorLocals<'vector'>;
 }
@@ -64,8 +64,8 @@ export function directSimdModule(prepared: PreparedNetwork): ModuleBuilder {
   const all = Array.from({ length: vectors }, (_, index): VectorLocals => ({
     index,
     time: fn.local('v128', `time${index}`),
-    nextGridTime: fn.local('v128', `nextGridTime${index}`),
-    counts: new Map(speciesOf(prepared).map((species) => [species, fn.local('v128', `x${species}_${index}`)])),
+    nextStopTime: fn.local('v128', `nextStopTime${index}`),
+    counts: new Map(placesOf(prepared).map((species) => [species, fn.local('v128', `x${species}_${index}`)])),
     generator: generatorLocals(lanes, fn),
   }));
   const real = (at: number): Node<'f64'> => memory('f64.load', at, zero);
@@ -112,7 +112,7 @@ export function directSimdModule(prepared: PreparedNetwork): ModuleBuilder {
   return module;
 }
 
-const speciesOf = (prepared: PreparedNetwork): number[] => Array.from({ length: prepared.speciesCount }, (_, i) => i);
+const placesOf = (prepared: PreparedNetwork): number[] => Array.from({ length: prepared.stateSize }, (_, i) => i);
 
 const offsetOf = (table: number, vector: VectorLocals): number => table + 16 * vector.index;
 
@@ -121,7 +121,7 @@ function loadVector(vector: VectorLocals, layout: LaneLayout): Node[] {
     set(target, memory('v128.load', offsetOf(table, vector), zero));
   return [
     load(vector.time, layout.time),
-    load(vector.nextGridTime, layout.nextGridTime),
+    load(vector.nextStopTime, layout.nextStopTime),
     ...vector.generator.state.map((word, i) => load(word, layout.generator + i * layout.tableBytes)),
     ...[...vector.counts].map(([species, local]) => load(local, layout.counts + species * layout.tableBytes)),
   ];
@@ -156,7 +156,7 @@ interface StepContext {
 
 /** One step of one vector: propensities, two draws, the new time, a look whether all is ordinary, the firing. */
 function emitStep({ prepared, layout, module, fn, vector, left, length, wanting, sane }: StepContext): Node[] {
-  const { generator, time, nextGridTime, counts } = vector;
+  const { generator, time, nextStopTime, counts } = vector;
   const newTime = fn.local('v128', 'newTime');
   const threshold = fn.local('v128', 'threshold');
   const within = fn.local('v128', 'within');
@@ -178,7 +178,7 @@ function emitStep({ prepared, layout, module, fn, vector, left, length, wanting,
     ...emitNext(lanes, generator),
     set(threshold, lanes.multiply(lanes.subtract(onePlusUniform(lanes, get(generator.output)), f64x2(1)), get(total))),
     set(regular, least ? lanes.both(finite, lanes.lessOrEqual(f64x2(0), get(least))) : finite),
-    set(within, lanes.both(lanes.lessOrEqual(get(newTime), get(nextGridTime)), get(regular))),
+    set(within, lanes.both(lanes.lessOrEqual(get(newTime), get(nextStopTime)), get(regular))),
     when(op('i32.ne', bits(within), i32(3)), [
       ...storeCounts(vector, layout, layout.countsBefore),
       memory('v128.store', offsetOf(layout.newTime, vector), zero, get(newTime)),
@@ -226,7 +226,20 @@ function emitPropensities(
     if (previous) statements.push(set(prefix, lanes.add(get(previous), get(propensity))));
     prefixes.push(prefix);
   });
-  return { statements, prefixes, total: prefixes.at(-1)!, least };
+  let total = prefixes.at(-1)!;
+  if (prepared.reactions.every((_, index) => mightBeMinusZero(prepared, index))) {
+    // 2 A with none left has −0 = c · 0 · (0 − 1): a total of −0 would give a time before all others.
+    total = fn.local('v128', 'total');
+    statements.push(set(total, lanes.add(get(prefixes.at(-1)!), f64x2(0))));
+  }
+  return { statements, prefixes, total, least };
+}
+
+/** A sum is −0 only where every part is; mass action of first order in each reactant is 0 or above. */
+function mightBeMinusZero({ reactions }: PreparedNetwork, index: number): boolean {
+  const { law } = reactions[index]!;
+  if (law.kind === 'expression' || (law.factor.kind !== 'constant' && law.factor.kind !== 'number')) return true;
+  return law.orders.some(({ order }) => order > 1);
 }
 
 /** Mass action with a constant factor is not negative once the host has seen that the factor is not. */

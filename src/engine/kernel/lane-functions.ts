@@ -2,6 +2,7 @@
  * The SIMD kernel's functions for single lanes, called where a lane needs attention: it passed a grid time, finished, met
  * something that only the scalar kernel handles, or has to be filled with the next replicate.
  */
+import { emitChangeTime, emitScheduledChanges, timedChanges, type ChangeContext } from './emit-changes.ts';
 import { ExpressionEmitter } from './emit-expression.ts';
 import { emitSeeding } from './emit-random.ts';
 import { emitGridTime, emitRecording, emitReplicateKey, emitStoreFirings } from './emit-recording.ts';
@@ -68,13 +69,12 @@ function refillFunction(module: ModuleBuilder, prepared: PreparedNetwork, layout
   const lane = laneField(at);
   const slot = fn.local('i32', 'slot');
   const words = ['s0', 's1', 's2', 's3'].map((name) => fn.local('i64', name));
-  const earliest = fn.local('f64', 'earliest');
-  const { initialCounts } = structureLayout(prepared);
+  const { initialState } = structureLayout(prepared);
   fn.emit(
     set(at, op('i32.shl', get(at), i32(3))),
     set(slot, field(control.slot)),
-    ...Array.from({ length: prepared.speciesCount }, (_, species) =>
-      lane.setReal(layout.counts + species * layout.tableBytes, memory('f64.load', initialCounts + 8 * species, zero)),
+    ...Array.from({ length: prepared.stateSize }, (_, place) =>
+      lane.setReal(layout.counts + place * layout.tableBytes, memory('f64.load', initialState + 8 * place, zero)),
     ),
     lane.setReal(layout.time, f64(0)),
     when(
@@ -86,31 +86,31 @@ function refillFunction(module: ModuleBuilder, prepared: PreparedNetwork, layout
         when(op('i32.lt_s', lane.whole(layout.slot), zero), [addToActive(layout, 1)]),
         lane.setWhole(layout.slot, get(slot)),
         lane.setWhole(layout.gridIndex, zero),
-        lane.setReal(layout.nextGridTime, memory('f64.load', 0, field(control.gridTimes))),
+        lane.setWhole(layout.changeIndex, zero),
+        // Grid time 0 comes first of all: its entry in the table lies before every change.
+        lane.setReal(layout.nextStopTime, memory('f64.load', 0, field(control.gridTimes))),
         lane.setReal(layout.start, memory('f64.load', layout.steps, zero)),
       ],
       [
         when(op('i32.ge_s', lane.whole(layout.slot), zero), [addToActive(layout, -1)]),
         lane.setWhole(layout.slot, i32(-1)),
         // An idle lane goes on with a state that nobody reads and never reaches a grid time.
-        lane.setReal(layout.nextGridTime, f64(Infinity)),
+        lane.setReal(layout.nextStopTime, f64(Infinity)),
         lane.setReal(layout.start, f64(never)),
       ],
     ),
-    set(
-      earliest,
-      Array.from({ length: laneCount }, (_, i) => memory('f64.load', layout.start + 8 * i, zero)).reduce((a, b) =>
-        op('f64.min', a, b),
-      ),
-    ),
-    memory(
-      'f64.store',
-      layout.limitAt,
-      zero,
-      op('f64.add', get(earliest), memory('f64.load', control.eventLimit, zero)),
-    ),
+    ...emitLimit(layout),
   );
   return fn;
+}
+
+/** Works out when the lane that began first reaches its event limit. */
+function emitLimit(layout: LaneLayout): Node[] {
+  const earliest = Array.from({ length: laneCount }, (_, i) => memory('f64.load', layout.start + 8 * i, zero)).reduce(
+    (a, b) => op('f64.min', a, b),
+  );
+  const limit = op('f64.add', earliest, memory('f64.load', control.eventLimit, zero));
+  return [memory('f64.store', layout.limitAt, zero, limit)];
 }
 
 function attendFunction(
@@ -132,6 +132,8 @@ function attendFunction(
   const gridIndex = fn.local('i32', 'gridIndex');
   const newTime = fn.local('f64', 'newTime');
   const nextGridTime = fn.local('f64', 'nextGridTime');
+  const nextChangeTime = fn.local('f64', 'nextChangeTime');
+  const changeIndex = fn.local('i32', 'changeIndex');
   const species = (index: number): Node<'f64'> => lane.real(layout.countsBefore + index * layout.tableBytes);
   const assigned = prepared.assigned.map((_, index) => fn.local('f64', `assigned${index}`));
   const { constants } = structureLayout(prepared);
@@ -142,19 +144,54 @@ function attendFunction(
   });
   const refillAndReturn = (): Node[] => [call(refill, get(laneNumber)), giveBack()];
   const again = label('nextGridPoint');
+  const handOver = (): Node[] => [emitStoreFirings(slot, f64(handedOver)), ...refillAndReturn()];
+  const changing: ChangeContext = {
+    prepared,
+    fn,
+    expressions,
+    assigned,
+    state: {
+      get: species,
+      set: (place, value) => lane.setReal(layout.countsBefore + place * layout.tableBytes, value),
+    },
+    // Rare: the scalar kernel finds the same fault and tells it.
+    fail: handOver,
+  };
+  const timed = timedChanges(prepared).length > 0;
+  const nextStopTime = timed ? op('f64.min', get(nextGridTime), get(nextChangeTime)) : get(nextGridTime);
   const firings = op('f64.sub', op('f64.sub', memory('f64.load', layout.steps, zero), f64(1)), lane.real(layout.start));
   fn.emit(
     set(at, op('i32.shl', get(laneNumber), i32(3))),
     set(slot, lane.whole(layout.slot)),
     when(op('i32.lt_s', get(slot), zero), refillAndReturn()),
-    when(op('i32.eqz', get(sane)), [emitStoreFirings(slot, f64(handedOver)), ...refillAndReturn()]),
+    when(op('i32.eqz', get(sane)), handOver()),
     set(newTime, lane.real(layout.newTime)),
     set(gridIndex, lane.whole(layout.gridIndex)),
     ...(prepared.realObservables.length > 0
       ? prepared.assigned.flatMap((term, index) => expressions.assign(assigned[index]!, term))
       : []),
+    ...(timed
+      ? [
+          set(nextGridTime, emitGridTime(gridIndex)),
+          set(changeIndex, lane.whole(layout.changeIndex)),
+          set(nextChangeTime, emitChangeTime(changeIndex)),
+        ]
+      : []),
     loop(
       again,
+      ...(timed
+        ? [
+            when(op('f64.le', get(nextChangeTime), get(nextGridTime)), [
+              lane.setReal(layout.time, get(nextChangeTime)),
+              ...emitScheduledChanges(changing, changeIndex, nextChangeTime),
+              ...emitGoOnAfterChange({ prepared, layout, lane, handOver }),
+              lane.setWhole(layout.changeIndex, get(changeIndex)),
+              lane.setWhole(layout.gridIndex, get(gridIndex)),
+              lane.setReal(layout.nextStopTime, nextStopTime),
+              giveBack(),
+            ]),
+          ]
+        : []),
       ...emitRecording(prepared, fn, expressions, species, gridIndex, slot),
       set(gridIndex, op('i32.add', get(gridIndex), i32(1))),
       when(op('i32.gt_s', get(gridIndex), field(control.gridIntervals)), [
@@ -162,12 +199,39 @@ function attendFunction(
         ...refillAndReturn(),
       ]),
       // A time that is not a number belongs to a total of 0: nothing fires any more.
-      branchIf(again, op('i32.eqz', op('f64.le', get(newTime), tee(nextGridTime, emitGridTime(gridIndex))))),
+      set(nextGridTime, emitGridTime(gridIndex)),
+      branchIf(again, op('i32.eqz', op('f64.le', get(newTime), nextStopTime))),
     ),
     lane.setWhole(layout.gridIndex, get(gridIndex)),
-    lane.setReal(layout.nextGridTime, get(nextGridTime)),
+    lane.setReal(layout.nextStopTime, nextStopTime),
   );
   return fn;
+}
+
+/**
+ * The lane goes on from the state after a change: the step that reached beyond it was no firing, and its draws are gone. A lane
+ * that now holds large counts is handed over.
+ */
+function emitGoOnAfterChange(options: {
+  prepared: PreparedNetwork;
+  layout: LaneLayout;
+  lane: ReturnType<typeof laneField>;
+  handOver: () => Node[];
+}): Node[] {
+  const { prepared, layout, lane, handOver } = options;
+  const before = (place: number): Node<'f64'> => lane.real(layout.countsBefore + place * layout.tableBytes);
+  const counts = new Set(
+    prepared.changes.flatMap(({ sets }) => sets.filter(({ isCount }) => isCount)).map((s) => s.place),
+  );
+  const large = [...counts].map((place) => op('f64.gt', before(place), f64(largestLaneCount)));
+  return [
+    ...large.map((condition) => when(condition, handOver())),
+    ...Array.from({ length: prepared.stateSize }, (_, place) =>
+      lane.setReal(layout.counts + place * layout.tableBytes, before(place)),
+    ),
+    lane.setReal(layout.start, op('f64.add', lane.real(layout.start), f64(1))),
+    ...emitLimit(layout),
+  ];
 }
 
 function checkFunction(

@@ -30,14 +30,16 @@ export interface LaneLayout {
   /** f64 by lane. */
   time: number;
   newTime: number;
-  nextGridTime: number;
+  /** The next grid time or timed change, whichever comes first. */
+  nextStopTime: number;
   start: number;
   /** i32 by lane, each in 8 bytes; slot −1 is an idle lane. */
   gridIndex: number;
+  changeIndex: number;
   slot: number;
   /** i64: four tables by lane. */
   generator: number;
-  /** f64: one table by lane for each species: after the last firing, and before it where a lane needs attention. */
+  /** f64: one table by lane for each place of the state: after the last firing, and before it where a lane needs attention. */
   counts: number;
   countsBefore: number;
   /** f64 rows: for each reaction the changes of `prepared.changing`, in order. */
@@ -62,13 +64,14 @@ export function laneLayout(prepared: PreparedNetwork): LaneLayout {
     limitAt: take(8),
     time: take(tableBytes),
     newTime: take(tableBytes),
-    nextGridTime: take(tableBytes),
+    nextStopTime: take(tableBytes),
     start: take(tableBytes),
     gridIndex: take(tableBytes),
+    changeIndex: take(tableBytes),
     slot: take(tableBytes),
     generator: take(4 * tableBytes),
-    counts: take(prepared.speciesCount * tableBytes),
-    countsBefore: take(prepared.speciesCount * tableBytes),
+    counts: take(prepared.stateSize * tableBytes),
+    countsBefore: take(prepared.stateSize * tableBytes),
     changes: take(prepared.reactions.length * changeRowBytes),
     changeRowBytes,
     tableBytes,

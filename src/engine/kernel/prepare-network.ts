@@ -3,9 +3,16 @@
  * the kernel's memory, so that one module serves every sweep point.
  */
 import type { Expression } from '@/domain/network/expression.ts';
-import type { ResolvedNetwork, ResolvedReaction } from '@/domain/network/resolved.ts';
+import type { ResolvedChange, ResolvedNetwork, ResolvedReaction } from '@/domain/network/resolved.ts';
+import type { Passage } from '../ensemble.ts';
 import { evaluateConstant } from './evaluate.ts';
-import { largestHoistedOrder, type PreparedNetwork, type PreparedReaction, type Term } from './prepared-network.ts';
+import {
+  largestHoistedOrder,
+  type PreparedChange,
+  type PreparedNetwork,
+  type PreparedReaction,
+  type Term,
+} from './prepared-network.ts';
 
 class Preparation {
   readonly constants: Expression[] = [];
@@ -15,7 +22,11 @@ class Preparation {
   #assignedTerm = new Map<number, Term>();
   #assignedConstant = new Map<number, Expression>();
 
-  constructor(network: ResolvedNetwork) {
+  /** Parameters that changes set, by their place in the state. */
+  readonly #variables: ReadonlyMap<number, number>;
+
+  constructor(network: ResolvedNetwork, variables: ReadonlyMap<number, number>) {
+    this.#variables = variables;
     for (const { parameter, expression } of network.assignments) {
       if (this.#isConstant(expression)) {
         this.#assignedConstant.set(parameter, this.#inlined(expression));
@@ -29,7 +40,8 @@ class Preparation {
 
   #isConstant(expression: Expression): boolean {
     if (expression.kind === 'species') return false;
-    if (expression.kind === 'parameter') return !this.#assignedTerm.has(expression.index);
+    if (expression.kind === 'parameter')
+      return !this.#assignedTerm.has(expression.index) && !this.#variables.has(expression.index);
     return children(expression).every((child) => this.#isConstant(child));
   }
 
@@ -54,8 +66,10 @@ class Preparation {
     switch (expression.kind) {
       case 'species':
         return expression;
-      case 'parameter':
-        return this.#assignedTerm.get(expression.index)!;
+      case 'parameter': {
+        const place = this.#variables.get(expression.index);
+        return place === undefined ? this.#assignedTerm.get(expression.index)! : { kind: 'species', index: place };
+      }
       case 'unary':
         return { ...expression, operand: this.term(expression.operand) };
       case 'binary':
@@ -74,6 +88,18 @@ class Preparation {
       case 'number':
         throw new Error('a number is constant');
     }
+  }
+
+  change({ when, sets }: ResolvedChange, held: number | null): PreparedChange {
+    return {
+      condition: when.kind === 'condition' ? this.term(when.condition) : null,
+      held,
+      sets: sets.map(({ target, expression }) => ({
+        place: target.kind === 'species' ? target.index : this.#variables.get(target.index)!,
+        isCount: target.kind === 'species',
+        value: this.term(expression),
+      })),
+    };
   }
 
   reaction({ reactants, changes, law }: ResolvedReaction): PreparedReaction {
@@ -134,8 +160,15 @@ function mapChildren(expression: Expression, change: (child: Expression) => Expr
 const mentionsParameter = (expression: Expression): boolean =>
   expression.kind === 'parameter' || children(expression).some(mentionsParameter);
 
-export function prepareNetwork(network: ResolvedNetwork): PreparedNetwork {
-  const preparation = new Preparation(network);
+export function prepareNetwork(network: ResolvedNetwork, passages: readonly Passage[] = []): PreparedNetwork {
+  const speciesCount = network.species.length;
+  const variables = variablesOf(network);
+  const places = new Map(variables.map((parameter, position) => [parameter, speciesCount + position]));
+  const preparation = new Preparation(network, places);
+  let stateSize = speciesCount + variables.length;
+  const changes = (network.changes ?? []).map((change) =>
+    preparation.change(change, change.when.kind === 'condition' ? stateSize++ : null),
+  );
   const reactions = network.reactions.map((reaction) => preparation.reaction(reaction));
   const countObservables: number[] = [];
   const realObservables: Term[] = [];
@@ -146,7 +179,15 @@ export function prepareNetwork(network: ResolvedNetwork): PreparedNetwork {
   );
   const changing = new Set(reactions.flatMap(({ changes }) => changes.map(({ species }) => species)));
   return {
-    speciesCount: network.species.length,
+    speciesCount,
+    stateSize,
+    variables,
+    changes,
+    passages: passages.map(({ observable, direction, threshold }) => ({
+      value: preparation.term(network.observables[observable]!.expression),
+      direction,
+      threshold,
+    })),
     changing: [...changing].sort((a, b) => a - b),
     constants: preparation.constants,
     assigned: preparation.assigned,
@@ -155,6 +196,14 @@ export function prepareNetwork(network: ResolvedNetwork): PreparedNetwork {
     realObservables,
     observablePlaces,
   };
+}
+
+/** The parameters that changes set, each once. */
+function variablesOf({ changes = [] }: ResolvedNetwork): number[] {
+  const targets = changes.flatMap(({ sets }) => sets.map(({ target }) => target));
+  return [...new Set(targets.flatMap(({ kind, index }) => (kind === 'parameter' ? [index] : [])))].sort(
+    (a, b) => a - b,
+  );
 }
 
 /** The values of the constants at a point, in order. */

@@ -6,6 +6,7 @@ import type { Stoichiometry } from '@/domain/network/resolved.ts';
 export type Term =
   | { kind: 'number'; value: number }
   | { kind: 'constant'; slot: number }
+  /** Place in the state: a species, or a parameter that changes set. */
   | { kind: 'species'; index: number }
   /** The value of `PreparedNetwork.assigned[index]`. */
   | { kind: 'assigned'; index: number }
@@ -23,8 +24,33 @@ export interface PreparedReaction {
     | { kind: 'expression'; value: Term; guards: { species: number; atLeast: number }[] };
 }
 
+/** A change of the state that is not a firing. */
+export interface PreparedChange {
+  /** Null: happens at times, which are the point's and not the code's. Otherwise: whenever this becomes true. */
+  condition: Term | null;
+  /** Where a triggered change keeps whether its condition held (1 or 0) when last looked at. */
+  held: number | null;
+  /** All values are worked out before any is put in place. */
+  sets: { place: number; isCount: boolean; value: Term }[];
+}
+
+export interface PreparedPassage {
+  value: Term;
+  direction: 'rises_to' | 'falls_to';
+  threshold: number;
+}
+
 export interface PreparedNetwork {
   speciesCount: number;
+  /**
+   * Numbers that make up a replicate's state: the counts of the species, then parameters that changes set, then what
+   * triggered changes remember. Terms read all of them as `species`, by place.
+   */
+  stateSize: number;
+  /** The parameters that changes set, by place after the species. */
+  variables: number[];
+  changes: PreparedChange[];
+  passages: PreparedPassage[];
   /** Species that some reaction changes; only they can overflow. */
   changing: number[];
   constants: Expression[];
