@@ -186,8 +186,10 @@ describe('first passages', () => {
     return passageTimes;
   };
   const mean = (values: Float64Array): number => values.reduce((sum, value) => sum + value, 0) / values.length;
-  const sd = (values: Float64Array): number =>
-    Math.sqrt(values.reduce((sum, value) => sum + (value - mean(values)) ** 2, 0) / (values.length - 1));
+  const sd = (values: Float64Array): number => {
+    const middle = mean(values);
+    return Math.sqrt(values.reduce((sum, value) => sum + (value - middle) ** 2, 0) / (values.length - 1));
+  };
 
   it('of immigration-death from 0 to 50 take 6.83658932625 on average (Karlin & Taylor 1975 ch. 4, birth-death chain)', async () => {
     const n = 20_000;
