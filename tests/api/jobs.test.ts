@@ -12,6 +12,7 @@ import {
   type JobDocument,
   type QuoteDocument,
 } from '@/contracts/jobs.ts';
+import { archiveFiles } from '@/contracts/archives.ts';
 import { limits } from '@/domain/limits.ts';
 import { nowText } from '@/server/clock.ts';
 import { newId } from '@/server/ids.ts';
@@ -128,6 +129,18 @@ describe('the main path', () => {
     const response = await get(`jobs/${id}/progress`);
     await response.body!.cancel();
     await whenOver(id);
+  });
+
+  it('lists what the archive holds, with sizes that are those of the files', async () => {
+    const { id } = await launched(await quoted());
+    await whenOver(id);
+    const { sha256, files } = archiveFiles.parse(await (await get(`jobs/${id}/archive/files`)).json());
+    const archive = await get(`jobs/${id}/archive`);
+    expect(archive.headers.get('etag')).toBe(`"${sha256}"`);
+    const unpacked = unzipSync(new Uint8Array(await archive.arrayBuffer()));
+    expect(Object.fromEntries(files.map(({ path, bytes }) => [path, bytes]))).toEqual(
+      Object.fromEntries(Object.entries(unpacked).map(([path, bytes]) => [path, bytes.length])),
+    );
   });
 
   it('serves the archive whole, in ranges, and not at all to whoever has it', async () => {

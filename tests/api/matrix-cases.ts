@@ -90,6 +90,7 @@ export const cases: Record<string, Case> = {
   jobTraces: plain,
   jobBatches: plain,
   downloadArchive: plain,
+  listArchiveFiles: plain,
   // ledger and billing
   readCredits: plain,
   listLedger: plain,

@@ -6,6 +6,7 @@ import { CopyButton } from '@/components/ui/CopyButton.tsx';
 import { bytesText } from '@/components/ui/amounts-text.ts';
 import { downloadArchive } from '@/contracts/archives.ts';
 import type { JobDocument } from '@/contracts/jobs.ts';
+import { ArchiveContents } from './ArchiveContents.tsx';
 
 export function ArchiveDownload({ team, job }: { team: string; job: Pick<JobDocument, 'id' | 'archive'> }) {
   const { archive } = job;
@@ -16,7 +17,7 @@ export function ArchiveDownload({ team, job }: { team: string; job: Pick<JobDocu
         Archive{archive.revision > 1 && `, revision ${archive.revision}`}
       </h2>
       <p className="mt-1 text-soft">
-        Model, settings, results and checksums in one zip that anyone can open and check.
+        Model, settings, results, figures, report and checksums in one zip that anyone can open and check.
       </p>
       <ButtonLink
         className="mt-3 w-full"
@@ -25,6 +26,7 @@ export function ArchiveDownload({ team, job }: { team: string; job: Pick<JobDocu
       >
         <Download aria-hidden="true" className="h-4 w-4" /> Download, {bytesText(archive.bytes)}
       </ButtonLink>
+      <ArchiveContents team={team} job={job.id} sha256={archive.sha256} />
       <dl className="mt-3">
         <dt className="text-soft">SHA-256</dt>
         <dd className="break-all text-xs">{archive.sha256}</dd>

@@ -85,7 +85,9 @@ export class BlockCollector {
   }
 }
 
+/** The pieces one after the other; a single one is answered as it is. */
 export function joined(pieces: Float64Array[]): Float64Array {
+  if (pieces.length === 1) return pieces[0]!;
   const all = new Float64Array(pieces.reduce((sum, { length }) => sum + length, 0));
   let at = 0;
   for (const piece of pieces) {

@@ -3,10 +3,8 @@ import { createReadStream } from 'node:fs';
 import { stat } from 'node:fs/promises';
 import { Readable } from 'node:stream';
 import type { Actor } from '@/domain/teams/actor.ts';
-import { accept, refuse, type Result } from '@/domain/refusals.ts';
-import { archiveFileName, jobFile } from '../jobs/job-folder.ts';
-import { findJob } from '../jobs/find-job.ts';
-import { authorise } from '../teams/authorise.ts';
+import { accept, type Result } from '@/domain/refusals.ts';
+import { findArchive } from './find-archive.ts';
 import { parseRange } from './parse-range.ts';
 
 export async function readArchive(options: {
@@ -17,14 +15,9 @@ export async function readArchive(options: {
   headers: Headers;
 }): Promise<Result<Response>> {
   const { headers } = options;
-  const authorised = await authorise({ actor: options.actor, team: options.team, permission: 'results:read' });
-  if (!authorised.ok) return authorised;
-  const found = await findJob({ teamId: authorised.value.team.id, job: options.job });
+  const found = await findArchive(options);
   if (!found.ok) return found;
-  const job = found.value;
-  if (!job.archiveSha256 || job.archiveRevision === 0)
-    return refuse('results_not_ready', 'This job has no archive: it has not finished, or no replicate was complete.');
-  const file = jobFile(job.id, archiveFileName(job.archiveRevision));
+  const { job, file } = found.value;
   const { size } = await stat(file);
   const etag = `"${job.archiveSha256}"`;
   const common = {
