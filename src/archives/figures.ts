@@ -41,8 +41,11 @@ export function figuresOf(subject: ArchiveSubject, results: Results): Figure[] {
       replicate,
       values: Array.from(values.subarray(place * times.length, (place + 1) * times.length)),
     }));
-    const drawn = (option: Parameters<typeof renderSvg>[0]) => () =>
-      tidy(renderSvg(option, { ...figureSize, theme: lightTheme }));
+    // The archive and its report show the same picture, drawn once.
+    const drawn = (option: Parameters<typeof renderSvg>[0]) => {
+      let svg: string | undefined;
+      return () => (svg ??= tidy(renderSvg(option, { ...figureSize, theme: lightTheme })));
+    };
     const isCount = summary.shape.observables[place]!.kind === 'count';
     const end = times.at(-1)!;
     const timeCourse = { times, timeUnit, observable, replicates, fan: true, traces: [] };

@@ -65,7 +65,7 @@ async function writeEntries(
   await add('job.json', [jobJson(subject, results, resultsDigest)]);
   for (const { path, svg } of figures) await add(path, [svg()]);
   const report = reportOf({ subject, results, resultsDigest, figures });
-  await add('report.pdf', [await writeReport(report, await reportFonts())]);
+  await add('report.pdf', [await writeReport(report, await reportFonts(JSON.stringify(report)))]);
   await zip.add('SHA256SUMS', sumLines(written));
   return resultsDigest;
 }

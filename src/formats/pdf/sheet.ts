@@ -110,20 +110,24 @@ export class Sheet {
   /** Breaks at spaces, and inside a word only when it alone is wider than the column. */
   #wrap(paragraph: string, width: number, size: number, weight: Weight): string[] {
     const lines: string[] = [];
+    const space = this.#widthOf(' ', size, weight);
     let line = '';
+    let lineWidth = 0;
     for (const word of paragraph.split(' ')) {
-      const longer = line === '' ? word : `${line} ${word}`;
-      if (this.#widthOf(longer, size, weight) <= width) {
-        line = longer;
+      const wordWidth = this.#widthOf(word, size, weight);
+      if (line !== '' && lineWidth + space + wordWidth <= width) {
+        line += ` ${word}`;
+        lineWidth += space + wordWidth;
         continue;
       }
       if (line !== '') lines.push(line);
-      line = word;
-      while (this.#widthOf(line, size, weight) > width) {
+      [line, lineWidth] = [word, wordWidth];
+      while (lineWidth > width) {
         let count = line.length - 1;
         while (count > 1 && this.#widthOf(line.slice(0, count), size, weight) > width) count -= 1;
         lines.push(line.slice(0, count));
         line = line.slice(count);
+        lineWidth = this.#widthOf(line, size, weight);
       }
     }
     return [...lines, line];

@@ -23,14 +23,14 @@ export function setResultsWriter(value: ResultsWriter | null): void {
   else delete house.buretteResultsWriter;
 }
 
-/** One thread, started when it is needed: jobs that end together wait for each other, not for batches. */
+/** One thread, warm from the start: jobs that end together wait for each other, not for batches. */
 export function startResultsWriter(options: { workerFile: string }): ResultsWriter {
   const pool = new Piscina({
     filename: options.workerFile,
-    minThreads: 0,
+    minThreads: 1,
     maxThreads: 1,
     niceIncrement: 10,
-    idleTimeout: 60_000,
+    idleTimeout: Infinity,
     closeTimeout: 5_000,
   });
   return {
