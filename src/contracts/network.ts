@@ -53,6 +53,28 @@ export const networkDocument = z.strictObject({
     }),
   ),
   observables: z.array(z.strictObject({ id: identifier, name: optionalName, expression })).optional(),
+  changes: z
+    .array(
+      z.strictObject({
+        id: identifier,
+        name: optionalName,
+        when: z.discriminatedUnion('kind', [
+          z.strictObject({
+            kind: z.literal('time'),
+            time: expression,
+            every: expression.optional(),
+            times: z.number().int().min(1).max(limits.changeTimes).optional(),
+          }),
+          z.strictObject({
+            kind: z.literal('condition'),
+            condition: expression,
+            happensAtStart: z.boolean().optional(),
+          }),
+        ]),
+        assignments: z.array(z.strictObject({ variable: identifier, expression })).min(1),
+      }),
+    )
+    .optional(),
 });
 
 export const problem = z.object({

@@ -111,6 +111,32 @@ describe('the main path', () => {
     expect(list.jobs[0]!.id).toBe(id);
   });
 
+  it('runs a model with timed and triggered changes: a reset at 5 shows at the grid time 5 of every replicate', async () => {
+    const decay = {
+      species: [{ id: 'X', initialCount: 40 }],
+      reactions: [{ id: 'decay', equation: 'X -> ∅', rateLaw: { kind: 'massAction', constant: '0.01' } }],
+      changes: [
+        { id: 'reset', when: { kind: 'time', time: '5' }, assignments: [{ variable: 'X', expression: '7' }] },
+        {
+          id: 'refill',
+          when: { kind: 'condition', condition: 'X < 5' },
+          assignments: [{ variable: 'X', expression: '90' }],
+        },
+      ],
+    };
+    const stored = await post('models', { name: 'Dosed decay', network: decay });
+    expect(stored.status).toBe(201);
+    const { version } = (await stored.json()) as { version: { id: string } };
+    const { id } = await launched(
+      await quoted({ modelVersionId: version.id, replicates: 200, horizon: 10, gridIntervals: 2 }),
+    );
+    await whenOver(id);
+    const statistics = statisticsDocument.parse(await (await get(`jobs/${id}/statistics`)).json());
+    const [observable] = statistics.observables;
+    expect([observable!.mean[1], observable!.sd[1]]).toEqual([7, 0]);
+    expect(observable!.mean[2]).toBeLessThan(90);
+  });
+
   it('streams progress as events that end with the job', async () => {
     const { id } = await launched(await quoted({ replicates: 3_000 }));
     const response = await get(`jobs/${id}/progress`);

@@ -7,6 +7,7 @@ import { resolveNetwork } from '@/domain/network/resolve-network.ts';
 import type { ResolvedNetwork, ResolvedReaction } from '@/domain/network/resolved.ts';
 import { meanField, type MeanFieldOptions } from '@/engine/meanfield/mean-field.ts';
 import {
+  binary,
   birthDeath,
   decayingDimerising,
   dimerisation,
@@ -15,7 +16,9 @@ import {
   immigrationDeath,
   isomerisation,
   network,
+  number,
   pureDeath,
+  species,
   twoStageExpression,
 } from '@tests/factories/networks.ts';
 
@@ -391,5 +394,39 @@ describe('meanField refuses', () => {
     const options = { network: decayingDimerising(), horizon: 10, gridIntervals: 10 };
     expect(meanField({ ...options, stepBudget: 5 })).toMatchObject({ ok: false, reason: 'step_budget' });
     expect(meanField({ ...options, operationBudget: 1_000 })).toMatchObject({ ok: false, reason: 'work_budget' });
+  });
+});
+
+describe('changes of the network', () => {
+  const dosed: ResolvedNetwork = {
+    ...immigrationDeath(10, 0.1, 0),
+    changes: [
+      {
+        id: 'dose',
+        when: { kind: 'times', times: [5] },
+        sets: [{ target: { kind: 'species', index: 0 }, expression: binary('add', species(0), number(40)) }],
+      },
+    ],
+  };
+
+  it('are made at their times: x(10) = 100 (1 − e^−1) + 40 e^−0.5 for a dose of 40 at 5 (linear equation, by hand)', () => {
+    const solution = meanField({ network: dosed, horizon: 10, gridIntervals: 10 });
+    if (!solution.ok) throw new Error(solution.message);
+    expect(solution.observables[0]!.values.at(-1)).toBeCloseTo(100 * (1 - Math.exp(-1)) + 40 * Math.exp(-0.5), 3);
+    expect(solution.observables[0]!.values[5]).toBeCloseTo(100 * (1 - Math.exp(-0.5)) + 40, 3);
+  });
+
+  it('that wait for a condition are refused by name', () => {
+    const { sets } = dosed.changes![0]!;
+    const condition = binary('less', species(0), number(5));
+    const waiting = {
+      ...dosed,
+      changes: [{ id: 'low', when: { kind: 'condition' as const, condition, before: true }, sets }],
+    };
+    expect(meanField({ network: waiting, horizon: 10, gridIntervals: 1 })).toMatchObject({
+      ok: false,
+      reason: 'triggered_change',
+      message: expect.stringContaining('low'),
+    });
   });
 });

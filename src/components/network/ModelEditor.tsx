@@ -37,7 +37,7 @@ export interface ModelEditorProps {
 
 const always: readonly GridName[] = ['species', 'parameters', 'reactions'];
 /** Shown once they hold something or were asked for. */
-const onDemand: readonly GridName[] = ['compartments', 'assignmentRules', 'observables', 'localParameters'];
+const onDemand: readonly GridName[] = ['compartments', 'assignmentRules', 'observables', 'changes', 'localParameters'];
 
 export function ModelEditor(props: ModelEditorProps) {
   return (
@@ -146,12 +146,6 @@ function Editor({ team, timeZone, readOnly, stored }: ModelEditorProps) {
             </div>
           )}
         </div>
-        {draft.changes && (
-          <Notice still className="mb-4" title="Timed and triggered changes are kept">
-            {draft.changes.map(({ id }) => id).join(', ')}: they are checked and stored with the model, and cannot be
-            edited here yet.
-          </Notice>
-        )}
         <div className="space-y-8">
           {shown.map((grid) => (
             <Grid

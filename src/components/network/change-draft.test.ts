@@ -40,15 +40,29 @@ describe('cells and documents', () => {
     expect(problems).toEqual([]);
   });
 
-  it('timed changes, which the grids do not show, are kept through editing', () => {
+  it('timed and triggered changes go through the grid and back', () => {
     const dose = {
       id: 'dose',
       when: { kind: 'time', time: '10' },
       assignments: [{ variable: 'S', expression: 'S + 5' }],
     };
-    const draft = draftOf('Enzyme', { ...enzyme, changes: [dose] } as NetworkDocument);
+    const feed = {
+      id: 'feed',
+      name: 'Feeding',
+      when: { kind: 'time', time: 't0', every: '24', times: 5 },
+      assignments: [
+        { variable: 'S', expression: 'S + 5' },
+        { variable: 'E', expression: 'max(E, 2)' },
+      ],
+    };
+    const low = {
+      id: 'low',
+      when: { kind: 'condition', condition: 'S <= 3', happensAtStart: true },
+      assignments: [{ variable: 'S', expression: '9' }],
+    };
+    const draft = draftOf('Enzyme', { ...enzyme, changes: [dose, feed, low] } as NetworkDocument);
     const next = after(draft, { kind: 'insert', grid: 'species', beforeKey: draft.grids.species[0]!.key });
-    expect(writtenDocument(next).document.changes).toEqual([dose]);
+    expect(writtenDocument(next).document.changes).toEqual([dose, feed, low]);
   });
 
   it('reads the numbers that spreadsheets and people write, and nothing else', () => {

@@ -9,6 +9,7 @@ export const gridNames = [
   'assignmentRules',
   'localParameters',
   'observables',
+  'changes',
 ] as const;
 export type GridName = (typeof gridNames)[number];
 
@@ -23,13 +24,12 @@ export interface Draft {
   name: string;
   timeUnit: string;
   grids: Record<GridName, Row[]>;
-  /** Timed and triggered changes: the grids do not show them yet, and nothing of them may be lost. */
-  changes?: ChangeDocument[] | undefined;
   /** The number in the next row's key. */
   nextKey: number;
 }
 
 export const ticked = 'yes';
+export const whenWords = { time: 'at a time', condition: 'when true' } as const;
 export const lawWords = { massAction: 'mass action', expression: 'expression' } as const;
 
 /** What a new row begins with; the rest is empty. */
@@ -41,6 +41,7 @@ export const newRowCells: Record<GridName, Record<string, string>> = {
   assignmentRules: {},
   localParameters: {},
   observables: {},
+  changes: { when: whenWords.time },
 };
 
 export const emptyDraft = (): Draft => ({
@@ -54,6 +55,7 @@ export const emptyDraft = (): Draft => ({
     assignmentRules: [],
     localParameters: [],
     observables: [],
+    changes: [],
   },
   nextKey: 0,
 });
@@ -64,6 +66,17 @@ const parameterCells = ({ id, name, value, unit }: ParameterDocument) => ({
   name: name ?? '',
   value: numberCell(value),
   unit: unit ?? '',
+});
+
+const changeCells = ({ id, name, when, assignments }: ChangeDocument): Record<string, string> => ({
+  id,
+  name: name ?? '',
+  when: whenWords[when.kind],
+  at: when.kind === 'time' ? when.time : when.condition,
+  every: when.kind === 'time' ? (when.every ?? '') : '',
+  times: when.kind === 'time' ? numberCell(when.times ?? null) : '',
+  start: when.kind === 'condition' && when.happensAtStart ? ticked : '',
+  sets: assignments.map(({ variable, expression }) => `${variable} = ${expression}`).join('; '),
 });
 
 /** The cells of a stored document, row for row. */
@@ -110,9 +123,9 @@ export function draftOf(name: string, document: NetworkDocument): Draft {
     observables: rows(
       (document.observables ?? []).map(({ id, name: title, expression }) => ({ id, name: title ?? '', expression })),
     ),
+    changes: rows((document.changes ?? []).map(changeCells)),
   };
-  const changes = document.changes?.length ? { changes: document.changes } : {};
-  return { name, timeUnit: document.timeUnit ?? '', grids, ...changes, nextKey };
+  return { name, timeUnit: document.timeUnit ?? '', grids, nextKey };
 }
 
 /** Whether two drafts say the same, whatever their row keys. Rows that nobody touched are the same objects: quick. */
@@ -120,7 +133,6 @@ export function sameContent(one: Draft, other: Draft): boolean {
   return (
     one.name === other.name &&
     one.timeUnit === other.timeUnit &&
-    JSON.stringify(one.changes ?? []) === JSON.stringify(other.changes ?? []) &&
     gridNames.every((grid) => sameRows(one.grids[grid], other.grids[grid]))
   );
 }

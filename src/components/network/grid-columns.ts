@@ -1,5 +1,5 @@
 /** The columns of the editor's grids, as data. */
-import { lawWords, type GridName } from './draft.ts';
+import { lawWords, whenWords, type GridName } from './draft.ts';
 
 export interface GridColumn {
   id: string;
@@ -105,6 +105,21 @@ export const gridDescriptions: Record<GridName, GridDescription> = {
     row: 'observable',
     purpose: 'Quantities to report beside the species, computed from them.',
     columns: [id('bound'), expression('C / (E + C)'), name],
+  },
+  changes: {
+    title: 'Timed and triggered changes',
+    row: 'change',
+    purpose: 'Doses, resets, switches: what is set at a time, or whenever a condition becomes true.',
+    columns: [
+      id('dose'),
+      { id: 'when', title: 'Happens', kind: 'choice', width: 'w-32', choices: Object.values(whenWords) },
+      { id: 'at', title: 'Time or condition', kind: 'expression', width: 'w-44', example: '24' },
+      { id: 'every', title: 'Again every', kind: 'expression', width: 'w-28' },
+      { id: 'times', title: 'Times in all', kind: 'number', width: 'w-28' },
+      { id: 'start', title: 'Also if true at 0', kind: 'tick', width: 'w-28' },
+      { id: 'sets', title: 'Sets', kind: 'expression', width: 'w-60', example: 'S = S + 100; k = 0' },
+      name,
+    ],
   },
 };
 

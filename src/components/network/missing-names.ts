@@ -45,5 +45,9 @@ export function missingNames(document: NetworkDocument): MissingNames {
   }
   for (const { expression } of document.assignmentRules ?? []) look(expression);
   for (const { expression } of document.observables ?? []) look(expression);
+  for (const { when, assignments } of document.changes ?? []) {
+    const moment = when.kind === 'time' ? [when.time, when.every ?? ''] : [when.condition];
+    for (const text of [...moment, ...assignments.map(({ expression }) => expression)]) look(text);
+  }
   return { species: [...species], parameters: [...parameters] };
 }

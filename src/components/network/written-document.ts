@@ -1,6 +1,6 @@
 /** Turns the editor's cells into a network document, and the path of a problem back into the cell that it means. */
-import type { NetworkDocument, ParameterDocument, Problem } from '@/domain/network/document.ts';
-import { lawWords, ticked, type Draft, type GridName, type Row } from './draft.ts';
+import type { ChangeDocument, NetworkDocument, ParameterDocument, Problem } from '@/domain/network/document.ts';
+import { lawWords, ticked, whenWords, type Draft, type GridName, type Row } from './draft.ts';
 
 /** A place in the editor. */
 export interface CellPlace {
@@ -49,7 +49,9 @@ const isUntouched = (grid: GridName, row: Row): boolean =>
     Object.entries(row.cells).every(
       ([column, text]) => text.trim() === '' || (column === 'initialCount' && text === '0'),
     )) ||
-  (grid === 'reactions' && Object.entries(row.cells).every(([column, text]) => text.trim() === '' || column === 'law'));
+  (grid === 'reactions' &&
+    Object.entries(row.cells).every(([column, text]) => text.trim() === '' || column === 'law')) ||
+  (grid === 'changes' && Object.entries(row.cells).every(([column, text]) => text.trim() === '' || column === 'when'));
 
 /** The document that the cells write down. Numbers that cannot be read become NaN, which the checks name. */
 export function writtenDocument(draft: Draft): WrittenDocument {
@@ -61,6 +63,7 @@ export function writtenDocument(draft: Draft): WrittenDocument {
     compartments: filled('compartments'),
     assignmentRules: filled('assignmentRules'),
     observables: filled('observables'),
+    changes: filled('changes'),
   };
   const locals = filled('localParameters');
   const localsOf = (reaction: Row): Row[] =>
@@ -105,7 +108,7 @@ export function writtenDocument(draft: Draft): WrittenDocument {
       name: optional(row, 'name'),
       expression: cell(row, 'expression'),
     })),
-    ...(draft.changes?.length ? { changes: draft.changes } : {}),
+    ...(rows.changes.length > 0 ? { changes: rows.changes.map(changeOf) } : {}),
   };
   const keysOf = (list: Row[]): string[] => list.map(({ key }) => key);
   return {
@@ -117,17 +120,69 @@ export function writtenDocument(draft: Draft): WrittenDocument {
       compartments: keysOf(rows.compartments),
       assignmentRules: keysOf(rows.assignmentRules),
       observables: keysOf(rows.observables),
+      changes: keysOf(rows.changes),
     },
     localKeys: localRows.map(keysOf),
     strayLocalKeys: keysOf(strays),
-    problems: strays.map((row, index) => ({
-      severity: 'error',
-      path: `strayLocalParameters[${index}].reaction`,
-      code: 'unknown_reaction',
-      message: `There is no reaction “${cell(row, 'reaction')}” for the local parameter ${cell(row, 'id')}.`,
-    })),
+    problems: [
+      ...strays.map((row, index): Problem => ({
+        severity: 'error',
+        path: `strayLocalParameters[${index}].reaction`,
+        code: 'unknown_reaction',
+        message: `There is no reaction “${cell(row, 'reaction')}” for the local parameter ${cell(row, 'id')}.`,
+      })),
+      ...rows.changes.flatMap(unreadableSets),
+    ],
   };
 }
+
+/** "X = X + 1; k = 0" as settings; a part without an equals sign becomes null. */
+const setsOf = (row: Row): ({ variable: string; expression: string } | null)[] =>
+  cell(row, 'sets')
+    .split(';')
+    .filter((part) => part.trim() !== '')
+    .map((part) => {
+      const match = /^\s*([^=<>!\s]+)\s*=(?!=)(.*)$/s.exec(part);
+      return match ? { variable: match[1]!, expression: match[2]!.trim() } : null;
+    });
+
+function changeOf(row: Row): ChangeDocument {
+  const every = optional(row, 'every');
+  const times = optional(row, 'times');
+  const when: ChangeDocument['when'] =
+    cell(row, 'when') === whenWords.condition
+      ? {
+          kind: 'condition',
+          condition: cell(row, 'at'),
+          ...(cell(row, 'start') === ticked ? { happensAtStart: true } : {}),
+        }
+      : {
+          kind: 'time',
+          time: cell(row, 'at'),
+          ...(every === undefined ? {} : { every }),
+          ...(times === undefined ? {} : { times: numberOf(times) }),
+        };
+  const name = optional(row, 'name');
+  return {
+    id: cell(row, 'id'),
+    ...(name === undefined ? {} : { name }),
+    when,
+    assignments: setsOf(row).filter((set) => set !== null),
+  };
+}
+
+const unreadableSets = (row: Row, index: number): Problem[] => {
+  const sets = setsOf(row);
+  if (sets.length > 0 && !sets.includes(null)) return [];
+  return [
+    {
+      severity: 'error',
+      path: `changes[${index}].assignments`,
+      code: 'unreadable_setting',
+      message: 'Write what is set as “X = X + 10”, several with semicolons between them.',
+    },
+  ];
+};
 
 const pathPattern = /^(\w+)\[(\d+)\](?:\.(\w+)(?:\[(\d+)\])?(?:\.(\w+))?)?/;
 
@@ -148,6 +203,11 @@ export function cellOfPath(path: string, written: WrittenDocument): CellPlace | 
   const grid = list as keyof WrittenDocument['keys'];
   const key = written.keys[grid][Number(index)];
   if (key === undefined) return null;
+  if (grid === 'changes') {
+    const ofMoment: Record<string, string> = { every: 'every', times: 'times' };
+    const column = field === 'when' ? (ofMoment[innerField ?? ''] ?? 'at') : field === 'assignments' ? 'sets' : 'id';
+    return { grid, key, column };
+  }
   const columns: Record<string, string> = { rateLaw: 'rate', meaning: 'concentration' };
   const fallback = grid === 'assignmentRules' ? 'variable' : 'id';
   return { grid, key, column: field === undefined ? fallback : (columns[field] ?? field) };

@@ -8,6 +8,7 @@ import { minimumDegreeOrder } from './minimum-degree.ts';
 import { RateEquations } from './rate-equations.ts';
 import { RosenbrockMethod } from './rosenbrock.ts';
 import type { StepMethod } from './step-method.ts';
+import { timedChangesOf } from './timed-changes.ts';
 
 export interface MeanFieldOptions {
   network: ResolvedNetwork;
@@ -19,7 +20,7 @@ export interface MeanFieldOptions {
   relativeTolerance?: number;
   /** Error allowed per step in counts beside the relative one; above 0. Default 1e−6. */
   absoluteTolerance?: number;
-  /** Changes at set times, simultaneous ones in the order given. Those after the horizon never happen. */
+  /** Changes at set times, simultaneous ones in the order given. Those after the horizon never happen. Default: the network's. */
   timedChanges?: TimedChange[];
   /** Most steps tried, from 1 up. Default 100,000. */
   stepBudget?: number;
@@ -37,6 +38,8 @@ export interface TimedChange {
 export type MeanFieldFailureReason =
   /** An option outside its range, or a change to a count that is negative or no number. */
   | 'invalid_request'
+  /** A change that waits for a condition: it would happen to each replicate at another time. */
+  | 'triggered_change'
   /** A law has no finite value; `reaction` names it. */
   | 'not_a_number'
   /** The solution runs away in finite time, or a law jumps. */
@@ -80,6 +83,11 @@ export function meanField(options: MeanFieldOptions): MeanFieldSolution | MeanFi
   const { network, horizon, gridIntervals } = options;
   const problem = problemWith(options);
   if (problem !== null) return invalid(problem);
+  const triggered = network.changes?.find(({ when }) => when.kind === 'condition');
+  if (triggered !== undefined) {
+    const message = `The change ${triggered.id} waits for a condition, and rate equations do not tell when a replicate meets it.`;
+    return { ...invalid(message), reason: 'triggered_change' };
+  }
 
   const equations = new RateEquations(network);
   const method = methodFor(equations);
@@ -168,7 +176,7 @@ class Run {
 
   /** From change to change, each at its own time; the grid time at a change is recorded after it. */
   solve(): MeanFieldFailure | null {
-    const { horizon, timedChanges = [] } = this.#options;
+    const { horizon, timedChanges = timedChangesOf(this.#options.network) } = this.#options;
     const changes = timedChanges.filter(({ time }) => time <= horizon).sort((a, b) => a.time - b.time);
     let time = 0;
     for (const change of changes) {

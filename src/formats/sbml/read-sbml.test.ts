@@ -394,9 +394,7 @@ describe('readSbml: refusals by name', () => {
       with_(`<listOfRules><assignmentRule variable="V">${math('<cn>1</cn>')}</assignmentRule></listOfRules>${sound}`),
       'variable_compartment',
     ],
-    ['an event', with_(sound + event('')), 'event'],
     ['an event with delay', with_(sound + event(`<delay>${math('<cn>1</cn>')}</delay>`)), 'event_delay'],
-    ['an event with priority', with_(sound + event(`<priority>${math('<cn>1</cn>')}</priority>`)), 'event_priority'],
     ['a fast reaction', with_(sound.replace('reversible="false"', 'reversible="false" fast="true"')), 'fast_reaction'],
     ['a conversion factor', with_(sound, 'conversionFactor="k"'), 'conversion_factor'],
     ['a required package', with_(sound, '', packaged(true)), 'required_package'],
@@ -499,7 +497,7 @@ describe('readSbml: refusals by name', () => {
     );
     expect(problems(text).map(({ code, message }) => [code, /line (\d+)/.exec(message)![1]])).toEqual([
       ['rate_rule', '2'],
-      ['event', '4'],
+      ['empty_change', '4'],
       ['non_integer_stoichiometry', '3'],
     ]);
   });

@@ -89,8 +89,7 @@ function readModel(reading: SbmlReading, model: XmlElement): NetworkDocument | n
     });
   const timeUnit = units.textOf(model.attributes.get('timeUnits'));
   const changes = changesDuringRun(names, assigned);
-  const stateChanges =
-    reading.options.readChanges === true ? readChanges({ reading, names, start, changes }, model) : [];
+  const stateChanges = readChanges({ reading, names, start, changes }, model);
   const recognised: XmlElement[] = [];
   const reactions = readReactions({
     reading,

@@ -11,8 +11,6 @@ export interface ReadSbmlOptions {
   roundInitialCounts?: boolean | undefined;
   /** Split a reversible reaction with a law “forward − backward” into two reactions. */
   splitReversible?: boolean | undefined;
-  /** Read events as timed and triggered changes; without it they are refused by name, for callers that cannot run them. */
-  readChanges?: boolean | undefined;
 }
 
 export class SbmlReading {

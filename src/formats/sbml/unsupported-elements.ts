@@ -12,6 +12,7 @@ const read = new Set([
   'listOfInitialAssignments',
   'listOfRules',
   'listOfReactions',
+  'listOfEvents',
   'notes',
   'annotation',
 ]);
@@ -51,10 +52,7 @@ export function refuseUnsupported(reading: SbmlReading, model: XmlElement): void
   }
   for (const element of model.children) {
     if (element.namespace !== reading.namespace) continue;
-    const readsChanges = reading.options.readChanges === true;
-    if (element.name === 'listOfEvents' && readsChanges) continue;
-    if (element.name === 'listOfEvents') refuseEvents(reading, element);
-    else if (element.name === 'listOfRules') refuseRules(reading, element);
+    if (element.name === 'listOfRules') refuseRules(reading, element);
     else if (element.name === 'listOfConstraints')
       reading.warn(element, 'constraints_ignored', 'Constraints are not checked during a run.');
     else if (harmless.has(element.name))
@@ -80,20 +78,5 @@ function refuseRules(reading: SbmlReading, list: XmlElement): void {
         'An algebraicRule is an equation to be solved at every moment, which is not supported. Solve it by hand and write an assignmentRule.',
       );
     }
-  }
-}
-
-function refuseEvents(reading: SbmlReading, list: XmlElement): void {
-  for (const event of list.children.filter(({ name }) => name === 'event')) {
-    const id = event.attributes.get('id') ?? event.attributes.get('name') ?? 'without an id';
-    const delayed = reading.child(event, 'delay') !== undefined;
-    const prioritised = reading.child(event, 'priority') !== undefined;
-    const reason = delayed
-      ? 'it has a delay, so the state would depend on the past; model the delay as a chain of intermediate species'
-      : prioritised
-        ? 'it has a priority; put events into the order in which they should happen'
-        : 'changes of the state at set times or conditions are not read yet; remove it';
-    const code = delayed ? 'event_delay' : prioritised ? 'event_priority' : 'event';
-    reading.refuse(event, code, `The event ${id} is not supported: ${reason}.`);
   }
 }
