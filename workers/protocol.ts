@@ -2,7 +2,7 @@
 import type { BatchTask, KernelName, ModelFailure } from '@/engine/ensemble.ts';
 import type { BlockShare } from '@/engine/statistics/blocks.ts';
 
-export const protocolVersion = 2;
+export const protocolVersion = 3;
 
 export interface RunBatchMessage {
   version: typeof protocolVersion;
@@ -16,6 +16,8 @@ export interface RunBatchAnswer {
   firstReplicate: number;
   replicateCount: number;
   eventsPerReplicate: Float64Array;
+  /** Passage by passage; Infinity where a replicate did not pass by the horizon. */
+  passageTimes: Float64Array;
   /** Encoded EnsembleSummary (statistics/summary.ts). */
   summary: Uint8Array;
   traces: { replicate: number; values: Float64Array }[];

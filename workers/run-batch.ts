@@ -11,7 +11,7 @@ const handedOver = (answer: RunBatchAnswer): RunBatchAnswer =>
       const { blocks } = answer;
       const ofBlocks = blocks ? [...blocks.partLeaves, ...blocks.pieces].map(({ bytes }) => bytes) : [];
       const ofTraces = answer.traces.map(({ values }) => values);
-      const arrays = [answer.eventsPerReplicate, answer.summary, ...ofTraces, ...ofBlocks];
+      const arrays = [answer.eventsPerReplicate, answer.passageTimes, answer.summary, ...ofTraces, ...ofBlocks];
       return arrays.map((array) => array.buffer) as unknown as object;
     },
     get [valueSymbol]() {

@@ -10,6 +10,8 @@ export interface BatchContent {
   kernel: string;
   engineVersion: string;
   eventsPerReplicate: Float64Array;
+  /** Passage by passage; Infinity where a replicate did not pass by the horizon. */
+  passageTimes: Float64Array;
   /** Encoded EnsembleSummary. */
   summary: Uint8Array;
   traces: { replicate: number; values: Float64Array }[];
@@ -30,6 +32,7 @@ interface Header {
   kernel: string;
   engineVersion: string;
   failure: BatchFailure | null;
+  passageTimes: number;
   summaryBytes: number;
   traces: { replicate: number; values: number }[];
   blocks: { leafDigestBytes: number; partLeaves: PartHeader[]; pieces: PartHeader[] } | null;
@@ -41,7 +44,7 @@ const bytesOf = (values: Float64Array): Uint8Array =>
 const partHeaders = (parts: BlockPart[]): PartHeader[] =>
   parts.map(({ bytes, ...part }) => ({ ...part, bytes: bytes.byteLength }));
 
-/** Header length (u32, little endian), header as JSON, events per replicate, summary, traces, blocks. */
+/** Header length (u32, little endian), header as JSON, events per replicate, passage times, summary, traces, blocks. */
 export function encodeBatch(content: BatchContent): Uint8Array {
   const { blocks } = content;
   const header: Header = {
@@ -51,6 +54,7 @@ export function encodeBatch(content: BatchContent): Uint8Array {
     kernel: content.kernel,
     engineVersion: content.engineVersion,
     failure: content.failure,
+    passageTimes: content.passageTimes.length,
     summaryBytes: content.summary.byteLength,
     traces: content.traces.map(({ replicate, values }) => ({ replicate, values: values.length })),
     blocks: blocks && {
@@ -66,6 +70,7 @@ export function encodeBatch(content: BatchContent): Uint8Array {
     length,
     text,
     bytesOf(content.eventsPerReplicate),
+    bytesOf(content.passageTimes),
     content.summary,
     ...content.traces.map(({ values }) => bytesOf(values)),
     ...(blocks ? [blocks.leafDigests, ...[...blocks.partLeaves, ...blocks.pieces].map(({ bytes }) => bytes)] : []),
@@ -88,6 +93,7 @@ export function decodeBatch(bytes: Uint8Array): BatchContent {
   const doubles = (count: number): Float64Array => new Float64Array(take(count * 8).buffer);
   const parts = (headers: PartHeader[]): BlockPart[] => headers.map((part) => ({ ...part, bytes: take(part.bytes) }));
   const eventsPerReplicate = doubles(header.replicateCount);
+  const passageTimes = doubles(header.passageTimes);
   const summary = take(header.summaryBytes);
   const traces = header.traces.map(({ replicate, values }) => ({ replicate, values: doubles(values) }));
   const blocks = header.blocks && {
@@ -103,6 +109,7 @@ export function decodeBatch(bytes: Uint8Array): BatchContent {
     engineVersion,
     failure,
     eventsPerReplicate,
+    passageTimes,
     summary,
     traces,
     blocks,

@@ -1,7 +1,7 @@
 /** The ensemble of a prefix, joined batch by batch. */
 import type { EnsembleSummary, Trace } from '@/engine/ensemble.ts';
 import { joined } from '@/engine/statistics/block-collector.ts';
-import type { BlockShare } from '@/engine/statistics/blocks.ts';
+import { recordsOf, type BlockShare, type Records } from '@/engine/statistics/blocks.ts';
 import { decodeSummary } from '@/engine/statistics/summary.ts';
 import type { BatchContent } from './batch-file.ts';
 
@@ -11,6 +11,8 @@ export interface Ensemble {
   summary: EnsembleSummary | null;
   /** Events per replicate, in order, in pieces. */
   events: Float64Array[];
+  /** Times of first passage, by passage, in pieces. */
+  passages: Float64Array[][];
   traces: Trace[];
   kernel: string;
   engineVersion: string;
@@ -21,6 +23,7 @@ export const emptyEnsemble = (): Ensemble => ({
   replicates: 0,
   summary: null,
   events: [],
+  passages: [],
   traces: [],
   kernel: '',
   engineVersion: '',
@@ -34,7 +37,9 @@ export function addBatch(ensemble: Ensemble, content: BatchContent): void {
   if (ensemble.summary) ensemble.summary.merge(summary);
   else ensemble.summary = summary;
   ensemble.replicates += content.replicateCount;
-  ensemble.events.push(content.eventsPerReplicate);
+  const [events, ...passages] = recordsOf(content);
+  ensemble.events.push(events!);
+  for (const [passage, times] of passages.entries()) (ensemble.passages[passage] ??= []).push(times);
   ensemble.traces.push(...content.traces);
   ensemble.kernel = content.kernel;
   ensemble.engineVersion = content.engineVersion;
@@ -49,9 +54,13 @@ export function asBatch(ensemble: Ensemble, blocks: BlockShare): BatchContent {
     kernel: ensemble.kernel,
     engineVersion: ensemble.engineVersion,
     eventsPerReplicate: joined(ensemble.events),
+    passageTimes: joined(ensemble.passages.map(joined)),
     summary: ensemble.summary.encode(),
     traces: ensemble.traces,
     blocks,
     failure: null,
   };
 }
+
+/** Of all replicates, column by column. */
+export const recordsOfEnsemble = ({ events, passages }: Ensemble): Records => [joined(events), ...passages.map(joined)];

@@ -15,6 +15,7 @@ export function jobJson({ job, model, version }: ArchiveSubject, { ensemble }: R
     gridIntervals: inputs.gridIntervals,
     overrides: inputs.overrides,
     keptTraces: inputs.keptTraces,
+    passages: inputs.passages ?? [],
     eventBudgetPerReplicate: inputs.eventBudgetPerReplicate,
     points: 1,
     replicates: ensemble.replicates,

@@ -4,7 +4,7 @@ import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 import type { BatchTask } from '@/engine/ensemble.ts';
 
 export function jobTask(options: {
-  inputs: Pick<JobInputs, 'horizon' | 'gridIntervals' | 'keptTraces' | 'eventBudgetPerReplicate'>;
+  inputs: Pick<JobInputs, 'horizon' | 'gridIntervals' | 'keptTraces' | 'passages' | 'eventBudgetPerReplicate'>;
   seed: string;
   network: ResolvedNetwork;
   point: number;
@@ -13,11 +13,14 @@ export function jobTask(options: {
 }): BatchTask {
   const { inputs, ...range } = options;
   const { horizon, gridIntervals, keptTraces, eventBudgetPerReplicate } = inputs;
+  const indexOf = (id: string) => range.network.observables.findIndex((observable) => observable.id === id);
+  const passages = (inputs.passages ?? []).map((passage) => ({ ...passage, observable: indexOf(passage.observable) }));
   return {
     ...range,
     horizon,
     gridIntervals,
     keptTraces,
+    passages,
     eventBudgetPerReplicate,
     purpose: 'job',
     eventBudgetPerBatch: null,

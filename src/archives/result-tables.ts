@@ -14,7 +14,7 @@ import { asSummary, statisticsOf } from '@/engine/statistics/statistics-of.ts';
 import { joined } from '@/engine/statistics/block-collector.ts';
 import { scaleOf, sumText } from '@/engine/statistics/block-sums.ts';
 import { blocksOf } from '@/engine/statistics/merge-blocks.ts';
-import type { Ensemble } from './ensemble.ts';
+import { recordsOfEnsemble, type Ensemble } from './ensemble.ts';
 import type { Results } from './subject.ts';
 
 type Cell = string | number;
@@ -121,7 +121,7 @@ function* traceRows({ traces }: Ensemble, observables: string[], times: number[]
 
 const blocksIn = ({ ensemble, blocks }: Results) => {
   const { shape } = asSummary(ensemble.summary!);
-  return blocksOf({ shape, share: blocks, eventsPerReplicate: joined(ensemble.events) });
+  return blocksOf({ shape, share: blocks, records: recordsOfEnsemble(ensemble) });
 };
 
 function* blockRows(results: Results): Iterable<Row> {

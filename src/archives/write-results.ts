@@ -1,11 +1,10 @@
 /** Joins a job's batches into its prefix and writes the prefix's file and the archive: what a worker thread does at the end. */
 import { writeFile } from 'node:fs/promises';
 import { asSummary } from '@/engine/statistics/statistics-of.ts';
-import { replicatesPerBlock } from '@/engine/statistics/blocks.ts';
+import { recordsOf, replicatesPerBlock } from '@/engine/statistics/blocks.ts';
 import { BlockMerger } from '@/engine/statistics/merge-blocks.ts';
-import { joined } from '@/engine/statistics/block-collector.ts';
 import { encodeBatch, readBatchFile, sha256Hex } from './batch-file.ts';
-import { addBatch, asBatch, emptyEnsemble } from './ensemble.ts';
+import { addBatch, asBatch, emptyEnsemble, recordsOfEnsemble } from './ensemble.ts';
 import type { ArchiveSubject, Results } from './subject.ts';
 import { writeArchive } from './write-archive.ts';
 
@@ -67,12 +66,16 @@ async function readResults(
     if (!content.blocks) throw new Error(`${file} tells nothing of the blocks.`);
     addBatch(ensemble, content);
     merger ??= mergerOf(asSummary(ensemble.summary!).shape, task.replicates);
-    merger.add({ ...content, share: content.blocks });
+    merger.add({ ...content, records: recordsOf(content), share: content.blocks });
   }
   if (places.length > 0) return { kind: 'damaged', places };
   if (!merger || ensemble.replicates !== task.replicates)
     throw new Error(`The batches hold ${ensemble.replicates} replicates, not ${task.replicates}.`);
-  return { ensemble: { ...ensemble, events: [joined(ensemble.events)] }, blocks: merger.share() };
+  const [events, ...passages] = recordsOfEnsemble(ensemble);
+  return {
+    ensemble: { ...ensemble, events: [events!], passages: passages.map((times) => [times]) },
+    blocks: merger.share(),
+  };
 }
 
 function mergerOf(shape: ReturnType<typeof asSummary>['shape'], replicates: number): BlockMerger {

@@ -93,7 +93,7 @@ class Collector {
       kind: point.prepared.observablePlaces[i]!.kind,
     }));
     const shape = { observables, gridPoints: task.gridIntervals + 1 };
-    this.#blocks = task.blocks ? new BlockCollector(shape, task.firstReplicate) : null;
+    this.#blocks = task.blocks ? new BlockCollector(shape, task.firstReplicate, point.prepared.passages.length) : null;
     this.#summary = this.#blocks?.summary ?? new Summary(shape);
   }
 

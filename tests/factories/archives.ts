@@ -54,6 +54,7 @@ export async function makeArchive(options: {
     lane: 'steady',
     overrides: {},
     keptTraces: options.keptTraces ?? 4,
+    passages: [{ observable: 'Y', direction: 'rises_to', threshold: 12 }],
     eventBudgetPerReplicate: 1_000_000,
   };
   const resolved = resolveNetwork(document);

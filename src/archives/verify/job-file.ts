@@ -21,6 +21,9 @@ const jobFile = z.object({
     initialCounts: z.record(z.string(), z.number()).optional(),
   }),
   keptTraces: whole(limits.keptTraces),
+  passages: z
+    .array(z.object({ observable: z.string(), direction: z.enum(['rises_to', 'falls_to']), threshold: z.number() }))
+    .max(limits.passagesPerJob),
   eventBudgetPerReplicate: whole(Number.MAX_SAFE_INTEGER),
   points: z.literal(1),
   replicates: whole(limits.replicatesPerJob).min(1),

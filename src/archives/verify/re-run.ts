@@ -5,6 +5,7 @@ import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 import type { BatchResult, Trace } from '@/engine/ensemble.ts';
 import { engineVersion } from '@/engine/engine-version.ts';
 import { runBatch } from '@/engine/run-batch.ts';
+import { recordsOf } from '@/engine/statistics/blocks.ts';
 import { BlockMerger, blocksOf } from '@/engine/statistics/merge-blocks.ts';
 import type { SummaryShape } from '@/engine/statistics/summary.ts';
 import type { ZipReader } from '@/formats/zip/zip-reader.ts';
@@ -42,7 +43,15 @@ export async function reRun(options: ReRun): Promise<number> {
   const again = places.length === options.blocks.length ? new WholeAgain(options) : null;
   for (const place of places) {
     options.onBlock(place);
-    const result = await reRunBlock(options, place);
+    const result = await reRunBlock(options, place).catch((error: unknown) => {
+      // The engine refuses an impossible task: a seed too large, a passage of nothing.
+      if (error instanceof RangeError) return error;
+      throw error;
+    });
+    if (result instanceof RangeError) {
+      problem(`Blocks cannot be run again: ${result.message}.`);
+      return 0;
+    }
     traces.push(...result.traces);
     again?.add(result);
   }
@@ -67,7 +76,7 @@ class WholeAgain {
     this.#complete &&= result.firstReplicate === this.#ensemble.replicates;
     if (!this.#complete) return;
     addBatch(this.#ensemble, { ...result, engineVersion, summary: result.summary.encode() });
-    this.#merger.add({ ...result, share: result.blocks! });
+    this.#merger.add({ ...result, records: recordsOf(result), share: result.blocks! });
   }
 
   async compareTables(): Promise<void> {
@@ -100,13 +109,8 @@ async function reRunBlock({ job, network, shape, ...options }: ReRun, place: num
     return result;
   }
   const merger = new BlockMerger(shape, Infinity, firstReplicate);
-  merger.add({ firstReplicate, eventsPerReplicate: result.eventsPerReplicate, share: result.blocks! });
-  const [block] = blocksOf({
-    shape,
-    share: merger.share(),
-    eventsPerReplicate: result.eventsPerReplicate,
-    firstReplicate,
-  });
+  merger.add({ firstReplicate, records: recordsOf(result), share: result.blocks! });
+  const [block] = blocksOf({ shape, share: merger.share(), records: recordsOf(result), firstReplicate });
   if (block!.digest !== digest) problem(`Run again, ${name} has the digest ${block!.digest}, not ${digest}.`);
   const listed = options.reAdded.chosen.get(place)!;
   const differs = listed.findIndex((sums, cell) => {

@@ -171,6 +171,10 @@ describe('an altered archive, its checksums made to fit', () => {
       files['model.json'] = bytesOf(textOf(files['model.json']).replace('"value":20', '"value":21'));
     });
     expect((await verify(model, [0])).problems.join('\n')).toMatch(/model.json is not the model[\s\S]*has the digest/);
+    const passage = forged(zip, (files) => {
+      files['job.json'] = bytesOf(textOf(files['job.json']).replace('"threshold": 12', '"threshold": 13'));
+    });
+    expect((await verify(passage, [0])).problems.join('\n')).toMatch(/has the digest/);
     const seed = forged(zip, (files) => {
       files['job.json'] = bytesOf(textOf(files['job.json']).replace('"20261201"', '"20261202"'));
     });
@@ -222,6 +226,12 @@ describe('a hostile file', () => {
       [job((content) => (content['horizon'] = -1)), /horizon/],
       [job((content) => (content['replicates'] = 1e15)), /replicates/],
       [job((content) => (content['gridIntervals'] = 7)), /results\/block-sums.csv/],
+      [job((content) => (content['seed'] = '99999999999999999999')), /cannot be run again: a seed is at most/],
+      [job((content) => (content['horizon'] = 1e300)), /./],
+      [
+        job((content) => (content['passages'] = [{ observable: 'none', direction: 'rises_to', threshold: 1 }])),
+        /cannot be run again: .*passage/,
+      ],
       [job((content) => (content['engineVersion'] = 'other')), /cannot be run again: other made them/],
       [job((content) => (content['overrides'] = { parameters: { unknown: 1 } })), /model cannot run/],
     ];

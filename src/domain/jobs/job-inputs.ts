@@ -3,6 +3,14 @@ import type { Overrides } from '../network/document.ts';
 import type { Lane, MethodFamily } from '../pricing/price-book.ts';
 import type { FinalState } from './job-state.ts';
 
+/** A first passage to note: when the observable is first at least, or at most, the threshold. */
+export interface PassageInput {
+  /** Id of a species or a named quantity. */
+  observable: string;
+  direction: 'rises_to' | 'falls_to';
+  threshold: number;
+}
+
 export interface JobInputs {
   replicates: number;
   /** Simulated time, in the model's unit of time. */
@@ -14,6 +22,8 @@ export interface JobInputs {
   lane: Lane;
   overrides: Overrides;
   keptTraces: number;
+  /** None when left out. */
+  passages?: PassageInput[] | undefined;
   /** Fails the replicate that would exceed it. */
   eventBudgetPerReplicate: number;
 }
@@ -64,7 +74,16 @@ export function describeFailure(failure: BatchFailure): string {
 
 /** True when replicates of `b` continue the sample of `a`: everything that shapes a replicate is equal. */
 export function continuesSample(a: JobInputs, b: JobInputs): boolean {
-  const shape = ({ horizon, gridIntervals, method, seed, overrides, keptTraces, eventBudgetPerReplicate }: JobInputs) =>
+  const shape = ({
+    horizon,
+    gridIntervals,
+    method,
+    seed,
+    overrides,
+    keptTraces,
+    passages,
+    eventBudgetPerReplicate,
+  }: JobInputs) =>
     JSON.stringify([
       horizon,
       gridIntervals,
@@ -73,6 +92,7 @@ export function continuesSample(a: JobInputs, b: JobInputs): boolean {
       sortedEntries(overrides.parameters),
       sortedEntries(overrides.initialCounts),
       keptTraces,
+      (passages ?? []).map(({ observable, direction, threshold }) => [observable, direction, threshold]),
       eventBudgetPerReplicate,
     ]);
   return shape(a) === shape(b);

@@ -1,5 +1,12 @@
 /** Collects a batch's share of the blocks while its groups of replicates come in. */
-import { leafDigest, replicatesPerBlock, replicatesPerLeaf, type BlockPart, type BlockShare } from './blocks.ts';
+import {
+  leafDigest,
+  replicatesPerBlock,
+  replicatesPerLeaf,
+  type BlockPart,
+  type BlockShare,
+  type Records,
+} from './blocks.ts';
 import { encodeSums } from './block-sums.ts';
 import { Summary, type ReplicateGroup, type SummaryShape } from './summary.ts';
 
@@ -16,14 +23,17 @@ export class BlockCollector {
   #next: number;
   #leaf: Part;
   #piece: Part;
-  #events: Float64Array[] = [];
+  /** Of the leaf, in the pieces that came in. */
+  #records: Records[] = [];
+  readonly #passages: number;
   readonly #digests: Uint8Array[] = [];
   readonly #partLeaves: BlockPart[] = [];
   readonly #pieces: BlockPart[] = [];
 
-  /** Of replicates from `firstReplicate` on. */
-  constructor(shape: SummaryShape, firstReplicate: number) {
+  /** Of replicates from `firstReplicate` on, with so many first passages. */
+  constructor(shape: SummaryShape, firstReplicate: number, passages: number) {
     this.#shape = shape;
+    this.#passages = passages;
     this.#cells = shape.observables.length * shape.gridPoints;
     this.#next = firstReplicate;
     this.summary = new Summary(shape);
@@ -43,13 +53,20 @@ export class BlockCollector {
         stride: group.stride,
         events,
       });
-      this.#events.push(events);
+      this.#records.push([events, ...this.#passageTimes(group, from, count)]);
       this.#next += count;
       from += count;
       if (this.#next % replicatesPerLeaf === 0) this.#endLeaf();
       // A prefix that holds these replicates has blocks of at least this size, so no piece ever lies in two of them.
       if (this.#next % replicatesPerBlock({ replicates: this.#next, cells: this.#cells }) === 0) this.#endPiece();
     }
+  }
+
+  #passageTimes(group: ReplicateGroup, from: number, count: number): Records {
+    const { passages = new Float64Array(0), stride } = group;
+    return Array.from({ length: this.#passages }, (_, i) =>
+      passages.slice(i * stride + from, i * stride + from + count),
+    );
   }
 
   /** The share; nothing can be added after it. */
@@ -66,9 +83,9 @@ export class BlockCollector {
     const replicates = this.#next - firstReplicate;
     if (replicates === 0) return;
     const bytes = summary.encode();
-    if (replicates === replicatesPerLeaf) this.#digests.push(leafDigest(bytes, joined(this.#events)));
+    if (replicates === replicatesPerLeaf) this.#digests.push(leafDigest(bytes, joinedRecords(this.#records)));
     else this.#partLeaves.push({ firstReplicate, replicates, bytes });
-    this.#events = [];
+    this.#records = [];
     // A piece of one leaf is that leaf.
     if (this.#piece.firstReplicate === firstReplicate) this.#piece.summary = summary;
     else this.#piece.summary.merge(summary);
@@ -84,6 +101,10 @@ export class BlockCollector {
     this.#piece = { firstReplicate: this.#next, summary: new Summary(this.#shape) };
   }
 }
+
+/** Records of consecutive replicates as one. */
+export const joinedRecords = (pieces: Records[]): Records =>
+  (pieces[0] ?? []).map((_, column) => joined(pieces.map((piece) => piece[column]!)));
 
 /** The pieces one after the other; a single one is answered as it is. */
 export function joined(pieces: Float64Array[]): Float64Array {

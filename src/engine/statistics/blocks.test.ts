@@ -5,9 +5,9 @@ import type { BatchTask } from '../ensemble.ts';
 import { runBatch } from '../run-batch.ts';
 import { batchTask } from '@tests/factories/batch-tasks.ts';
 import { twoStageExpression } from '@tests/factories/networks.ts';
-import { joined } from './block-collector.ts';
+import { joinedRecords } from './block-collector.ts';
 import { parseSum, sumText } from './block-sums.ts';
-import { blockDigest, leafDigest, replicatesPerBlock } from './blocks.ts';
+import { blockDigest, leafDigest, recordsOf, replicatesPerBlock, type Records } from './blocks.ts';
 import { blocksOf, BlockMerger } from './merge-blocks.ts';
 import { sha256 } from './sha256.ts';
 import { asSummary } from './statistics-of.ts';
@@ -68,16 +68,16 @@ async function blocksInBatches(task: BatchTask, sizes: number[]) {
   const first = await runBatch({ ...task, replicateCount: 1 });
   const { shape } = asSummary(first.summary);
   const merger = new BlockMerger(shape, blockReplicates);
-  const events: Float64Array[] = [];
+  const records: Records[] = [];
   for (let firstReplicate = 0, i = 0; firstReplicate < total; i++) {
     const replicateCount = Math.min(sizes[i % sizes.length]!, total - firstReplicate);
-    const { blocks, eventsPerReplicate } = await runBatch({ ...task, firstReplicate, replicateCount, blocks: true });
-    merger.add({ firstReplicate, eventsPerReplicate, share: blocks! });
-    events.push(eventsPerReplicate);
+    const result = await runBatch({ ...task, firstReplicate, replicateCount, blocks: true });
+    merger.add({ firstReplicate, records: recordsOf(result), share: result.blocks! });
+    records.push(recordsOf(result));
     firstReplicate += replicateCount;
   }
   const share = merger.share();
-  const blocks = [...blocksOf({ shape, share, eventsPerReplicate: joined(events) })];
+  const blocks = [...blocksOf({ shape, share, records: joinedRecords(records) })];
   return {
     share,
     blocks: blocks.map(({ sums, ...block }) => ({ ...block, sums: hex(sums.encode()) })),
@@ -86,7 +86,8 @@ async function blocksInBatches(task: BatchTask, sizes: number[]) {
 }
 
 describe('blocks', () => {
-  const task = batchTask(twoStageExpression(), { horizon: 3, gridIntervals: 4 });
+  const passages = [{ observable: 1, direction: 'rises_to' as const, threshold: 3 }];
+  const task = batchTask(twoStageExpression(), { horizon: 3, gridIntervals: 4, passages });
 
   it('are the same for batches of 1, of 7, of 1000, and for mixed ones', async () => {
     const whole = await blocksInBatches(task, [total]);
@@ -116,7 +117,9 @@ describe('blocks', () => {
         const leaf = await runBatch({ ...task, firstReplicate, replicateCount: 256 });
         const events = Buffer.alloc(256 * 8);
         leaf.eventsPerReplicate.forEach((value, i) => events.writeDoubleLE(value, 8 * i));
-        return createHash('sha256').update(leaf.summary.encode()).update(events).digest();
+        const passed = Buffer.alloc(256 * 8);
+        leaf.passageTimes.forEach((time, i) => passed.writeDoubleLE(time, 8 * i));
+        return createHash('sha256').update(leaf.summary.encode()).update(events).update(passed).digest();
       }),
     );
     expect(createHash('sha256').update(Buffer.concat(leaves)).digest('hex')).toBe(block.digest);
@@ -132,7 +135,7 @@ describe('blocks', () => {
 
   it('notice a single other event count', () => {
     const summary = new Uint8Array([1, 2, 3]);
-    const [a, b] = [Float64Array.of(4, 5), Float64Array.of(4, 6)].map((events) => leafDigest(summary, events));
+    const [a, b] = [Float64Array.of(4, 5), Float64Array.of(4, 6)].map((events) => leafDigest(summary, [events]));
     expect(blockDigest(a!)).not.toBe(blockDigest(b!));
   });
 });

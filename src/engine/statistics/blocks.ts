@@ -48,12 +48,26 @@ export interface BlockShare {
 }
 
 /**
- * The digest of a leaf: SHA-256 of its encoded summary, then the events of each replicate, then its first-passage times,
- * passage by passage, as doubles with the least byte first.
+ * What is known of each replicate by itself, column by column: its events, then the time of each first passage (Infinity where
+ * it did not pass by the horizon).
  */
-export function leafDigest(summary: Uint8Array, events: Float64Array, passageTimes: Float64Array[] = []): Uint8Array {
-  return sha256(summary, doublesAsBytes(events), ...passageTimes.map(doublesAsBytes));
-}
+export type Records = Float64Array[];
+
+export const recordsOf = (batch: { eventsPerReplicate: Float64Array; passageTimes: Float64Array }): Records => {
+  const { eventsPerReplicate, passageTimes } = batch;
+  const { length } = eventsPerReplicate;
+  const passages = length === 0 ? 0 : passageTimes.length / length;
+  const times = Array.from({ length: passages }, (_, i) => passageTimes.subarray(i * length, (i + 1) * length));
+  return [eventsPerReplicate, ...times];
+};
+
+/** Rows `from` … `end` − 1 of each column. */
+export const rowsOf = (records: Records, from: number, end?: number): Records =>
+  records.map((column) => column.subarray(from, end));
+
+/** The digest of a leaf: SHA-256 of its encoded summary, then its records column by column, as doubles with the least byte first. */
+export const leafDigest = (summary: Uint8Array, records: Records): Uint8Array =>
+  sha256(summary, ...records.map(doublesAsBytes));
 
 /** The digest of a block from those of its leaves, as hexadecimal digits. */
 export const blockDigest = (leafDigests: Uint8Array): string =>

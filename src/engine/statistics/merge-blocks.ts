@@ -1,7 +1,15 @@
 /** Joins the shares of consecutive batches into the blocks of the whole prefix. */
-import { joined } from './block-collector.ts';
+import { joinedRecords } from './block-collector.ts';
 import { BlockSums } from './block-sums.ts';
-import { blockDigest, leafDigest, replicatesPerLeaf, type BlockPart, type BlockShare } from './blocks.ts';
+import {
+  blockDigest,
+  leafDigest,
+  replicatesPerLeaf,
+  rowsOf,
+  type BlockPart,
+  type BlockShare,
+  type Records,
+} from './blocks.ts';
 import { decodeSummary, type Summary, type SummaryShape } from './summary.ts';
 
 export interface Block {
@@ -17,7 +25,7 @@ export class BlockMerger {
   /** By leaf, counted from the first, whole ones only. */
   readonly #digests: Uint8Array[] = [];
   /** Of the last leaf, while it is not whole. */
-  #partLeaf: { firstReplicate: number; summary: Summary; events: Float64Array[] } | null = null;
+  #partLeaf: { firstReplicate: number; summary: Summary; records: Records[] } | null = null;
   readonly #pieces: BlockPart[] = [];
   #block: { firstReplicate: number; sums: BlockSums };
   readonly #firstLeaf: number;
@@ -36,25 +44,25 @@ export class BlockMerger {
   }
 
   /** Takes in the next batch of the prefix. Throws RangeError when it is another one or its share does not fit it. */
-  add(batch: { firstReplicate: number; eventsPerReplicate: Float64Array; share: BlockShare }): void {
-    const { firstReplicate, eventsPerReplicate, share } = batch;
+  add(batch: { firstReplicate: number; records: Records; share: BlockShare }): void {
+    const { firstReplicate, records, share } = batch;
     for (const part of share.partLeaves) {
       const from = part.firstReplicate - firstReplicate;
-      this.#addToLeaf(part, eventsPerReplicate.subarray(from, from + part.replicates));
+      this.#addToLeaf(part, rowsOf(records, from, from + part.replicates));
     }
     let leaf = Math.ceil(firstReplicate / replicatesPerLeaf) - this.#firstLeaf;
     for (let at = 0; at < share.leafDigests.length; at += 32)
       this.#digests[leaf++] = share.leafDigests.slice(at, at + 32);
     for (const piece of share.pieces) this.#addPiece(piece);
-    if (this.#next !== firstReplicate + eventsPerReplicate.length)
+    if (this.#next !== firstReplicate + records[0]!.length)
       throw new RangeError(`the sums end at replicate ${this.#next}, not with their batch`);
   }
 
-  #addToLeaf(part: BlockPart, events: Float64Array): void {
+  #addToLeaf(part: BlockPart, records: Records): void {
     const summary = decodeSummary(part.bytes);
-    const leaf = (this.#partLeaf ??= { firstReplicate: part.firstReplicate, summary, events: [] });
+    const leaf = (this.#partLeaf ??= { firstReplicate: part.firstReplicate, summary, records: [] });
     if (leaf.summary !== summary) leaf.summary.merge(summary);
-    leaf.events.push(events);
+    leaf.records.push(records);
     if (leaf.summary.replicates < replicatesPerLeaf) return;
     this.#digests[leaf.firstReplicate / replicatesPerLeaf - this.#firstLeaf] = digestOf(leaf);
     this.#partLeaf = null;
@@ -92,19 +100,19 @@ export class BlockMerger {
   }
 }
 
-const digestOf = ({ summary, events }: { summary: Summary; events: Float64Array[] }): Uint8Array =>
-  leafDigest(summary.encode(), joined(events));
+const digestOf = ({ summary, records }: { summary: Summary; records: Records[] }): Uint8Array =>
+  leafDigest(summary.encode(), joinedRecords(records));
 
 /** The blocks from a share that begins where a leaf does; sums are decoded as they are asked for. */
 export function* blocksOf(prefix: {
   shape: SummaryShape;
   share: BlockShare;
-  eventsPerReplicate: Float64Array;
+  records: Records;
   firstReplicate?: number;
 }): Iterable<Block> {
-  const { shape, share, eventsPerReplicate, firstReplicate: start = 0 } = prefix;
+  const { shape, share, records, firstReplicate: start = 0 } = prefix;
   const [part] = share.partLeaves;
-  const last = part ? [leafDigest(part.bytes, eventsPerReplicate.slice(part.firstReplicate - start))] : [];
+  const last = part ? [leafDigest(part.bytes, rowsOf(records, part.firstReplicate - start))] : [];
   const digests = new Uint8Array(share.leafDigests.length + 32 * last.length);
   digests.set(share.leafDigests);
   for (const digest of last) digests.set(digest, share.leafDigests.length);

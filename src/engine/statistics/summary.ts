@@ -25,6 +25,8 @@ export interface ReplicateGroup {
   stride: number;
   /** Firings of each replicate. */
   events: Float64Array;
+  /** Times of first passage, [passage][replicate] by `stride`; none when left out. */
+  passages?: Float64Array;
 }
 
 export class Summary implements EnsembleSummary {
