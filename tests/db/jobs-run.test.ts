@@ -1,9 +1,10 @@
 /** Jobs from launch to archive on a real database, with the engine in this process. */
 import { createHash } from 'node:crypto';
-import { readFile } from 'node:fs/promises';
+import { readFile, writeFile } from 'node:fs/promises';
 import { unzipSync } from 'fflate';
 import { afterEach, describe, expect, it } from 'vitest';
 import { Batch, Job, Segment } from '@db/models/jobs.ts';
+import { writeResults } from '@/archives/write-results.ts';
 import { chargeMicrocredits } from '@/domain/pricing/price-of.ts';
 import { archiveFileName, jobFile } from '@/server/jobs/job-folder.ts';
 import { readStatistics } from '@/server/jobs/read-statistics.ts';
@@ -81,6 +82,43 @@ describe('a job that is let run', () => {
     expect(new Set(runs.map(({ resultsDigest }) => resultsDigest)).size).toBe(1);
     expect(new Set(runs.map(({ chargedMicrocredits }) => chargedMicrocredits)).size).toBe(1);
     expect(new Set(runs.map(({ events }) => events)).size).toBe(1);
+  });
+
+  it('writes the results again when the thread that writes them is lost half-way, at once or after a new start', async () => {
+    const bench = await makeBench();
+    const undisturbed = await run(bench, 250, 2);
+    let lost = 0;
+    const losing: typeof writeResults = async (task) => {
+      await writeFile(task.archiveFile, 'half an archive');
+      if (++lost <= 2) throw new Error('The thread was lost.');
+      return writeResults(task);
+    };
+    setExecutor(inProcessExecutor());
+    const { id } = await launch(bench);
+    stop = await startJobs(inProcessExecutor(), losing);
+    const job = await whenOver(id);
+    expect(lost).toBe(3);
+    expect(job).toMatchObject({ state: 'done', resultsDigest: undisturbed.resultsDigest, archiveRevision: 1 });
+    expect(job.chargedMicrocredits).toBe(undisturbed.chargedMicrocredits);
+    expect(Object.keys(await archiveOf(job))).toContain('SHA256SUMS');
+
+    await stop();
+    const second = await launch(bench);
+    let writing = (): void => undefined;
+    const reached = new Promise<void>((resolve) => (writing = resolve));
+    let close = (): void => undefined;
+    const closed = new Promise<never>((_, reject) => (close = () => reject(new Error('The thread was stopped.'))));
+    stop = await startJobs(inProcessExecutor(), () => {
+      writing();
+      return closed;
+    });
+    await reached;
+    const stopping = stop();
+    close();
+    await stopping;
+    expect(await Job.findByPk(second.id)).toMatchObject({ state: 'running', archiveRevision: 0 });
+    stop = await startJobs(inProcessExecutor());
+    expect(await whenOver(second.id)).toMatchObject({ state: 'done', resultsDigest: undisturbed.resultsDigest });
   });
 
   it('answers statistics over the replicates delivered', async () => {

@@ -139,10 +139,10 @@ export function inProcessExecutor(
   };
 }
 
-/** Starts dispatching; resolves to what stops it. */
-export async function startJobs(executor: Executor): Promise<() => Promise<void>> {
+/** Starts dispatching; resolves to what stops it. `write` stands for the thread that writes results. */
+export async function startJobs(executor: Executor, write = writeResults): Promise<() => Promise<void>> {
   setExecutor(executor);
-  setResultsWriter({ write: writeResults, close: async () => undefined });
+  setResultsWriter({ write, close: async () => undefined });
   const dispatcher = new Dispatcher({ retryMs: () => 1 });
   await dispatcher.resume();
   return () => dispatcher.stop();
