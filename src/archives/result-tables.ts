@@ -6,9 +6,10 @@
  */
 import { stringify } from 'csv-stringify/sync';
 import { gridTimes, histogramTimes } from '@/domain/jobs/result-outputs.ts';
-import type { JobInputs } from '@/domain/jobs/job-inputs.ts';
+import type { JobInputs, PassageInput } from '@/domain/jobs/job-inputs.ts';
 import type { EnsembleStatistics, EnsembleSummary } from '@/engine/ensemble.ts';
 import { distributionOf } from '@/engine/statistics/distribution-of.ts';
+import { passageEstimates } from '@/engine/statistics/first-passage.ts';
 import { standardProbabilities } from '@/engine/statistics/quantile.ts';
 import { asSummary, statisticsOf } from '@/engine/statistics/statistics-of.ts';
 import { joined } from '@/engine/statistics/block-collector.ts';
@@ -30,6 +31,23 @@ export const tableHeads = {
   summary: ['point', 'observable', 'time', 'replicates', 'mean', 'mean_standard_error', 'sd', 'sd_standard_error'],
   histograms: ['point', 'observable', 'time', 'value', 'width', 'count'],
   events: ['point', 'replicate', 'events'],
+  'first-passage': [
+    'point',
+    'observable',
+    'direction',
+    'threshold',
+    'replicates',
+    'passed',
+    'probability',
+    'probability_lower',
+    'probability_upper',
+    'restricted_mean',
+    'restricted_mean_standard_error',
+    'mean',
+    'mean_standard_error',
+    ...standardProbabilities.flatMap((p) => [`q${p}`, `q${p}_lower`, `q${p}_upper`]),
+  ],
+  'passage-times': ['point', 'observable', 'direction', 'threshold', 'replicate', 'time'],
   blocks: ['point', 'first_replicate', 'replicates', 'events', 'digest'],
   'block-sums': [
     'point',
@@ -62,7 +80,7 @@ export function resultTables({
   inputs,
   results,
 }: {
-  inputs: Pick<JobInputs, 'horizon' | 'gridIntervals'>;
+  inputs: Pick<JobInputs, 'horizon' | 'gridIntervals' | 'passages'>;
   results: Results;
 }): ResultTable[] {
   const { ensemble } = results;
@@ -78,6 +96,15 @@ export function resultTables({
     { path: 'results/blocks.csv', rows: () => blockRows(results) },
     { path: 'results/block-sums.csv', rows: () => blockSumRows(results, times) },
   ];
+  const passages = (inputs.passages ?? []).map((passage, index) => ({
+    ...passage,
+    times: joined(ensemble.passages[index] ?? []),
+  }));
+  if (passages.length > 0)
+    tables.push(
+      { path: 'results/first-passage.csv', rows: () => passageRows(passages, inputs.horizon) },
+      { path: 'results/passage-times.csv', rows: () => passageTimeRows(passages) },
+    );
   if (ensemble.traces.length > 0)
     tables.push({ path: 'results/traces.csv', rows: () => traceRows(ensemble, summary.observables, times) });
   return tables;
@@ -110,6 +137,41 @@ function* eventRows(pieces: Float64Array[]): Iterable<Row> {
   yield tableHeads.events;
   let replicate = 0;
   for (const piece of pieces) for (const events of piece) yield [0, replicate++, events];
+}
+
+interface TimedPassage extends PassageInput {
+  times: Float64Array;
+}
+
+/** An empty mean: not every replicate passed; an empty quantile: not reached by the horizon, or not bounded by so few. */
+function* passageRows(passages: TimedPassage[], horizon: number): Iterable<Row> {
+  yield tableHeads['first-passage'];
+  for (const { observable, direction, threshold, times } of passages) {
+    const { replicates, passed, probability, restrictedMean, mean, quantiles } = passageEstimates(times, horizon);
+    yield [
+      0,
+      observable,
+      direction,
+      threshold,
+      replicates,
+      passed,
+      probability.value,
+      probability.lower,
+      probability.upper,
+      restrictedMean.value,
+      restrictedMean.standardError,
+      mean?.value ?? '',
+      mean?.standardError ?? '',
+      ...standardProbabilities.flatMap((p) => [quantiles[p]!.value, quantiles[p]!.lower, quantiles[p]!.upper]),
+    ];
+  }
+}
+
+/** An empty time: not passed by the horizon. */
+function* passageTimeRows(passages: TimedPassage[]): Iterable<Row> {
+  yield tableHeads['passage-times'];
+  for (const { observable, direction, threshold, times } of passages)
+    for (const [replicate, time] of times.entries()) yield [0, observable, direction, threshold, replicate, time];
 }
 
 function* traceRows({ traces }: Ensemble, observables: string[], times: number[]): Iterable<Row> {

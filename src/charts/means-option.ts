@@ -1,17 +1,16 @@
 /** The means of several observables in one figure, told apart by colour, dash pattern and a word at the end of each. */
 import type { EChartsOption } from 'echarts';
-import type { EnsembleStatistics } from '@/engine/ensemble.ts';
 import type { FigureTable } from './figure-table.ts';
 import { bandSeries, frame, labelSeries, timeTitle } from './frame.ts';
 import { countText, numberText, valueWithError } from './number-text.ts';
 import { seriesDashes, type ChartTheme } from './palette.ts';
-import { observableTitle } from './time-course-option.ts';
+import { observableTitle, type DrawnObservable } from './time-course-option.ts';
 
 export interface Means {
   times: readonly number[];
   timeUnit?: string | undefined;
   /** At most as many as there are series colours are drawn; the table holds all. */
-  observables: readonly (EnsembleStatistics['observables'][number] & { name?: string | undefined })[];
+  observables: readonly DrawnObservable[];
   replicates: number;
 }
 

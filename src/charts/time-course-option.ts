@@ -6,10 +6,16 @@ import { bandSeries, frame, labelSeries, timeTitle, type DirectLabel } from './f
 import { countText, numberText, valueWithError } from './number-text.ts';
 import type { ChartTheme } from './palette.ts';
 
+/** What figures of means need to know of an observable. */
+export type DrawnObservable = Pick<
+  EnsembleStatistics['observables'][number],
+  'id' | 'mean' | 'meanStandardError' | 'sd' | 'sdStandardError' | 'quantiles'
+> & { name?: string | undefined };
+
 export interface TimeCourse {
   times: readonly number[];
   timeUnit?: string | undefined;
-  observable: EnsembleStatistics['observables'][number] & { name?: string | undefined };
+  observable: DrawnObservable;
   replicates: number;
   /** Bands between the 5 and 95 % and the 25 and 75 % quantiles. */
   fan: boolean;

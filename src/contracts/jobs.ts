@@ -24,6 +24,12 @@ const overrides = z.strictObject({
   initialCounts: z.record(z.string().max(limits.identifierCharacters), z.number()).optional(),
 });
 
+/** When an observable first rises to (is at least) or falls to (is at most) a threshold; extinction is `fallsTo: 0`. */
+const passageRequest = z.union([
+  z.strictObject({ observable: z.string().max(limits.identifierCharacters), risesTo: z.number() }),
+  z.strictObject({ observable: z.string().max(limits.identifierCharacters), fallsTo: z.number() }),
+]);
+
 export const quoteRequest = z.strictObject({
   modelVersionId: id,
   replicates: z.number().int().min(1, 'At least one replicate.').max(limits.replicatesPerJob),
@@ -38,7 +44,12 @@ export const quoteRequest = z.strictObject({
   /** Refused for now, with a sentence. */
   sweep: z.unknown().optional(),
   stopping: z.looseObject({ kind: z.string() }).optional(),
-  outputs: z.strictObject({ keptTraces: z.number().int().min(0).max(limits.keptTraces).optional() }).optional(),
+  outputs: z
+    .strictObject({
+      keptTraces: z.number().int().min(0).max(limits.keptTraces).optional(),
+      passages: z.array(passageRequest).max(limits.passagesPerJob).optional(),
+    })
+    .optional(),
 });
 
 export const quoteDocument = z.object({
@@ -97,6 +108,12 @@ export const stopReasons = [
   'our_failure',
 ] as const;
 
+export const passageDocument = z.object({
+  observable: z.string(),
+  direction: z.enum(['rises_to', 'falls_to']),
+  threshold: z.number(),
+});
+
 export const jobDocument = z.object({
   id: z.string(),
   name: z.string(),
@@ -114,6 +131,7 @@ export const jobDocument = z.object({
   observables: z.array(z.string()),
   overrides,
   keptTraces: count,
+  passages: z.array(passageDocument),
   points: z.number().int(),
   replicatesPlanned: count,
   /** Always the complete prefix of replicates by index. */
@@ -299,6 +317,12 @@ export const statisticsDocument = z.object({
       sd: z.array(z.number().nullable()),
       meanStandardError: z.array(z.number().nullable()),
       sdStandardError: z.array(z.number().nullable()),
+      /** Variance / mean; null where the mean is 0. */
+      fano: z.array(z.number().nullable()),
+      fanoStandardError: z.array(z.number().nullable()),
+      /** Coefficient of variation, SD / mean; null where the mean is 0. */
+      cv: z.array(z.number().nullable()),
+      cvStandardError: z.array(z.number().nullable()),
       quantiles: z.record(z.string(), numbers),
     }),
   ),
@@ -315,6 +339,46 @@ export const jobStatistics = contract({
   access: { kind: 'team', permission: 'results:read' },
   query: z.object({ point }),
   answers: [{ status: 200, description: 'Statistics', schema: statisticsDocument }],
+  refusals: [...reading, 'invalid_input', 'results_not_ready'],
+});
+
+const withInterval = z.object({ value: z.number(), lower: z.number(), upper: z.number() });
+const withError = z.object({ value: z.number(), standardError: z.number().nullable() });
+
+export const passagesDocument = z.object({
+  replicates: count,
+  horizon: z.number(),
+  times: numbers,
+  passages: z.array(
+    passageDocument.extend({
+      passed: count,
+      /** P(passed by the horizon), 95 % score interval (Wilson). A replicate absorbed before passing has not passed. */
+      probability: withInterval,
+      /** Mean of the smaller of passage time and horizon. */
+      restrictedMean: withError,
+      /** Only where every replicate passed. */
+      mean: withError.nullable(),
+      /** By probability; null: not reached by the horizon, or not bounded by so few replicates. */
+      quantiles: z.record(
+        z.string(),
+        z.object({ value: z.number().nullable(), lower: z.number().nullable(), upper: z.number().nullable() }),
+      ),
+      /** P(passed by t) at `times`, with 95 % score intervals. */
+      curve: z.object({ probability: numbers, lower: numbers, upper: numbers }),
+    }),
+  ),
+});
+export type PassagesDocument = z.infer<typeof passagesDocument>;
+
+export const jobPassages = contract({
+  id: 'jobPassages',
+  feature: 'jobs',
+  method: 'GET',
+  path: `${jobPath}/{job}/passages`,
+  summary: 'First passages asked for at launch: probabilities, restricted means and quantiles with their errors',
+  access: { kind: 'team', permission: 'results:read' },
+  query: z.object({ point }),
+  answers: [{ status: 200, description: 'First passages', schema: passagesDocument }],
   refusals: [...reading, 'invalid_input', 'results_not_ready'],
 });
 
@@ -412,6 +476,7 @@ export const jobContracts = [
   jobProgress,
   jobStatistics,
   jobDistribution,
+  jobPassages,
   jobTraces,
   jobBatches,
 ];

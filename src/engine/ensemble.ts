@@ -114,6 +114,11 @@ export interface EnsembleStatistics {
     sd: number[];
     meanStandardError: number[];
     sdStandardError: number[];
+    /** Variance / mean and sd / mean, with their errors; NaN where the mean is 0. */
+    fano: number[];
+    fanoStandardError: number[];
+    cv: number[];
+    cvStandardError: number[];
     /** By probability as a decimal string: "0.05", "0.25", "0.5", "0.75", "0.95". Type 1 (inverse of the distribution). */
     quantiles: Record<string, number[]>;
   }[];

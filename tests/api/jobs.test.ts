@@ -7,6 +7,7 @@ import { PilotRun } from '@db/models/jobs.ts';
 import { contracts } from '@/contracts/index.ts';
 import {
   jobDocument,
+  passagesDocument,
   quoteDocument,
   statisticsDocument,
   type JobDocument,
@@ -135,6 +136,48 @@ describe('the main path', () => {
     const [observable] = statistics.observables;
     expect([observable!.mean[1], observable!.sd[1]]).toEqual([7, 0]);
     expect(observable!.mean[2]).toBeLessThan(90);
+  });
+
+  it('answers first passages asked for, in the API and in the archive, the same after an extension', async () => {
+    const passages = [
+      { observable: 'X', risesTo: 15 },
+      { observable: 'X', risesTo: 1e6 },
+    ];
+    const { id } = await launched(await quoted({ replicates: 500, seed: '11', outputs: { passages } }));
+    await whenOver(id);
+    const first = passagesDocument.parse(await (await get(`jobs/${id}/passages`)).json());
+    expect(first).toMatchObject({
+      replicates: 500,
+      passages: [{ direction: 'rises_to', threshold: 15 }, { passed: 0 }],
+    });
+    // Immigration-death, 20 in and 1 out a head, is Poisson(20 (1 − e^−t)): by time 10 nearly all have been at 15.
+    expect(first.passages[0]!.passed).toBeGreaterThan(480);
+    expect(first.passages[1]!.mean).toBeNull();
+    expect(first.passages[1]!.quantiles['0.5']!.value).toBeNull();
+    const files = unzipSync(new Uint8Array(await (await get(`jobs/${id}/archive`)).arrayBuffer()));
+    const rows = (name: string): string[] => Buffer.from(files[name]!).toString('utf8').trim().split('\n');
+    expect(rows('results/first-passage.csv')).toHaveLength(3);
+    expect(rows('results/passage-times.csv')).toHaveLength(1 + 2 * 500);
+
+    const { job } = (await (await get(`jobs/${id}`)).json()) as { job: JobDocument };
+    const more = await quoted({ replicates: 300, seed: job.seed, outputs: { passages } });
+    expect(
+      (await post(`jobs/${id}/extend`, { quoteId: more.id, capMicrocredits: 2 * more.microcredits.high })).status,
+    ).toBe(200);
+    await whenOver(id);
+    const extended = passagesDocument.parse(await (await get(`jobs/${id}/passages`)).json());
+    const { id: whole } = await launched(await quoted({ replicates: 800, seed: '11', outputs: { passages } }));
+    await whenOver(whole);
+    expect(extended).toEqual(passagesDocument.parse(await (await get(`jobs/${whole}/passages`)).json()));
+    const of = async (job: string) => ((await (await get(`jobs/${job}`)).json()) as { job: JobDocument }).job;
+    expect((await of(id)).resultsDigest).toBe((await of(whole)).resultsDigest);
+  });
+
+  it('refuses first passages of what the model does not have', async () => {
+    const refused = await problem(
+      await post('quotes', { ...quoteRequest(bench), outputs: { passages: [{ observable: 'Nobody', fallsTo: 0 }] } }),
+    );
+    expect(refused).toMatchObject({ code: 'invalid_input', errors: [{ path: 'outputs.passages[0].observable' }] });
   });
 
   it('streams progress as events that end with the job', async () => {

@@ -86,6 +86,7 @@ export const cases: Record<string, Case> = {
   extendJob: { body: (ids) => ({ quoteId: ids['quote'] ?? 'quote_none' }) },
   jobProgress: plain,
   jobStatistics: plain,
+  jobPassages: plain,
   jobDistribution: { query: '?observable=A&time=1' },
   jobTraces: plain,
   jobBatches: plain,

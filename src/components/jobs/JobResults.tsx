@@ -10,14 +10,16 @@ import { jobTraces, type JobDocument } from '@/contracts/jobs.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
 import { DistributionTab } from './DistributionTab.tsx';
 import { isOver, resultCaution } from './job-words.ts';
+import { NoiseTab } from './NoiseTab.tsx';
 import { NumbersTab } from './NumbersTab.tsx';
+import { PassagesTab } from './PassagesTab.tsx';
 import { TimeCourseTab } from './TimeCourseTab.tsx';
 import { TracesTab } from './TracesTab.tsx';
 import { stageOf, useStatistics } from './use-statistics.ts';
 
 const askEveryMs = 4_000;
 const tracesShown = 50;
-const tabIds = ['time-course', 'distribution', 'traces', 'numbers'] as const;
+const allTabs = ['time-course', 'distribution', 'noise', 'passages', 'traces', 'numbers'] as const;
 
 interface Props {
   team: string;
@@ -56,7 +58,7 @@ export function JobResults({ team, job, names, network }: Props) {
   if (!results || !chosen) return <NothingYet {...{ job, problem }} asked={enabled} onRetry={askAgain} />;
   const shared = { results, chosen, onObservable: setObservable };
   const time = { timeIndex: Math.min(timeIndex, results.times.length - 1), onTime: setTimeIndex };
-  const contents: Record<(typeof tabIds)[number], { label: string; content: React.ReactNode }> = {
+  const contents: Record<(typeof allTabs)[number], { label: string; content: React.ReactNode }> = {
     'time-course': {
       label: 'Time course',
       content: <TimeCourseTab {...shared} traces={ownTraces} job={job} network={network} />,
@@ -65,9 +67,12 @@ export function JobResults({ team, job, names, network }: Props) {
       label: 'Distribution',
       content: <DistributionTab {...shared} {...time} team={team} job={job} stage={stage} />,
     },
+    noise: { label: 'Noise', content: <NoiseTab {...shared} job={job} /> },
+    passages: { label: 'First passage', content: <PassagesTab {...{ team, job, names, stage, over }} /> },
     traces: { label: 'Traces', content: <TracesTab {...shared} traces={ownTraces} job={job} /> },
     numbers: { label: 'Numbers', content: <NumbersTab results={results} {...time} /> },
   };
+  const tabIds = allTabs.filter((id) => id !== 'passages' || job.passages.length > 0);
   return (
     <section aria-label="Results">
       {!over && (

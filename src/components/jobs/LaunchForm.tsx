@@ -18,6 +18,7 @@ import { paths } from '@/paths.ts';
 import { laneWords, rateText, timeWithUnit } from './job-words.ts';
 import { capOf, faultsOfProblem, numberIn, quoteRequestOf, type LaunchSettings } from './launch-settings.ts';
 import { OverridesTable } from './OverridesTable.tsx';
+import { PassageFields } from './PassageFields.tsx';
 import { QuotePanel } from './QuotePanel.tsx';
 import { useQuote } from './use-quote.ts';
 import { WhenLive } from '@/components/ui/WhenLive.tsx';
@@ -104,7 +105,7 @@ function Form(props: LaunchFormProps) {
             choices={models.map(({ id, name }) => ({ value: id, label: name }))}
             onChange={(event) => {
               setChosen({ model: event.target.value, number: null });
-              change({ parameters: {}, initialCounts: {} });
+              change({ parameters: {}, initialCounts: {}, passages: [] });
             }}
           />
           <SelectField
@@ -207,6 +208,7 @@ function Form(props: LaunchFormProps) {
             />
           </div>
         </section>
+        <PassageFields network={version.network} passages={settings.passages} {...{ faults, change }} />
         <RadioField
           legend="Lane"
           name="lane"

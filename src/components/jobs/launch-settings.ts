@@ -6,6 +6,12 @@ import type { NetworkDocument } from '@/domain/network/document.ts';
 import { resolveNetwork } from '@/domain/network/resolve-network.ts';
 import type { Lane } from '@/domain/pricing/price-book.ts';
 
+export interface PassageSettings {
+  observable: string;
+  direction: 'rises_to' | 'falls_to';
+  threshold: string;
+}
+
 export interface LaunchSettings {
   /** Empty: named after the model. */
   name: string;
@@ -15,6 +21,7 @@ export interface LaunchSettings {
   /** Empty: drawn by the server. */
   seed: string;
   keptTraces: string;
+  passages: PassageSettings[];
   lane: Lane;
   /** Id of a project code; empty for none. */
   projectCode: string;
@@ -39,6 +46,7 @@ export const firstSettings = (network: NetworkDocument): LaunchSettings => ({
   gridIntervals: '100',
   seed: '',
   keptTraces: '20',
+  passages: [],
   lane: 'steady',
   projectCode: '',
   cap: '',
@@ -57,6 +65,7 @@ export const settingsOfJob = (job: JobDocument, keepSeed: boolean): LaunchSettin
   gridIntervals: String(job.gridIntervals),
   seed: keepSeed ? job.seed : '',
   keptTraces: String(job.keptTraces),
+  passages: job.passages.map((passage) => ({ ...passage, threshold: String(passage.threshold) })),
   lane: job.lane,
   projectCode: job.projectCode?.id ?? '',
   cap: '',
@@ -108,6 +117,9 @@ export function quoteRequestOf(
   if (seed !== '' && !(/^\d{1,20}$/.test(seed) && BigInt(seed) < 2n ** 64n)) {
     faults['seed'] = 'A seed is a whole number from 0 to 18,446,744,073,709,551,615.';
   }
+  settings.passages.forEach(({ threshold }, index) =>
+    check(`passages[${index}].threshold`, Number.isNaN(numberIn(threshold)) ? 'Give a number.' : null),
+  );
   const overrides = {
     parameters: filled(settings.parameters),
     initialCounts: filled(settings.initialCounts),
@@ -131,10 +143,15 @@ export function quoteRequestOf(
       lane: settings.lane,
       ...(seed === '' ? {} : { seed }),
       ...(Object.keys({ ...overrides.parameters, ...overrides.initialCounts }).length > 0 ? { overrides } : {}),
-      outputs: { keptTraces },
+      outputs: { keptTraces, ...(settings.passages.length > 0 ? { passages: settings.passages.map(passageOf) } : {}) },
     },
   };
 }
+
+const passageOf = ({ observable, direction, threshold }: PassageSettings) =>
+  direction === 'rises_to'
+    ? { observable, risesTo: numberIn(threshold) }
+    : { observable, fallsTo: numberIn(threshold) };
 
 /** Numbers of the filled cells; a text that is no number becomes NaN, which the network's checks name. */
 const filled = (cells: Record<string, string>): Record<string, number> =>

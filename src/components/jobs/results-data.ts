@@ -35,6 +35,10 @@ export function resultsOf(
       sd: numbers(observable.sd),
       meanStandardError: numbers(observable.meanStandardError),
       sdStandardError: numbers(observable.sdStandardError),
+      fano: numbers(observable.fano),
+      fanoStandardError: numbers(observable.fanoStandardError),
+      cv: numbers(observable.cv),
+      cvStandardError: numbers(observable.cvStandardError),
     })),
     events: statistics.events,
   };

@@ -38,6 +38,10 @@ export function statisticsOf(ensemble: EnsembleSummary, times: ArrayLike<number>
       sd: moments.map(({ sd }) => sd),
       meanStandardError: moments.map(({ meanStandardError }) => meanStandardError),
       sdStandardError: moments.map(({ sdStandardError }) => sdStandardError),
+      fano: moments.map(({ fano }) => fano),
+      fanoStandardError: moments.map(({ fanoStandardError }) => fanoStandardError),
+      cv: moments.map(({ cv }) => cv),
+      cvStandardError: moments.map(({ cvStandardError }) => cvStandardError),
       quantiles,
     };
   });

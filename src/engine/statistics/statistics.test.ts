@@ -49,7 +49,16 @@ describe('mean and standard error', () => {
   });
 
   it('of one replicate have no spread, and none are NaN throughout', () => {
-    expect(momentsAt(summaryOf([5]), 0, 0)).toEqual({ mean: 5, sd: NaN, meanStandardError: NaN, sdStandardError: NaN });
+    expect(momentsAt(summaryOf([5]), 0, 0)).toEqual({
+      mean: 5,
+      sd: NaN,
+      meanStandardError: NaN,
+      sdStandardError: NaN,
+      fano: NaN,
+      fanoStandardError: NaN,
+      cv: NaN,
+      cvStandardError: NaN,
+    });
     const empty = statisticsOf(new Summary({ observables: [{ id: 'X', kind: 'count' }], gridPoints: 1 }), [0]);
     expect(empty.observables[0]!.mean).toEqual([NaN]);
     expect(empty.events).toEqual({ total: 0, meanPerReplicate: NaN, sdPerReplicate: NaN });

@@ -1,6 +1,7 @@
 /** Checks what a contract cannot: a quote request against the model version, the limits and what is built so far. */
 import type { z } from 'zod';
 import type { quoteRequest } from '@/contracts/jobs.ts';
+import type { PassageInput } from '@/domain/jobs/job-inputs.ts';
 import { limits } from '@/domain/limits.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
@@ -18,7 +19,12 @@ export function checkQuoteRequest(request: QuoteRequest, document: NetworkDocume
       ? refuse('invalid_input', 'Some overrides do not fit the model.', { errors: ofOverrides.map(fault) })
       : refuse('invalid_network', 'This version of the model cannot run.', { errors: resolved.problems.map(fault) });
   }
-  const faults = [...tooManyReactions(resolved.network), ...notBuilt(request), ...tooLarge(request, resolved.network)];
+  const faults = [
+    ...unknownPassages(request, resolved.network),
+    ...tooManyReactions(resolved.network),
+    ...notBuilt(request),
+    ...tooLarge(request, resolved.network),
+  ];
   return faults.length > 0
     ? refuse('invalid_input', faults.map(({ message }) => message).join(' '), { errors: faults })
     : accept(resolved.network);
@@ -80,6 +86,29 @@ function tooLarge(request: QuoteRequest, network: ResolvedNetwork): InputFault[]
       },
     ];
   return [];
+}
+
+/** The passages as a job pins them. */
+export const passagesOf = (request: QuoteRequest): PassageInput[] =>
+  (request.outputs?.passages ?? []).map((passage) =>
+    'risesTo' in passage
+      ? { observable: passage.observable, direction: 'rises_to', threshold: passage.risesTo }
+      : { observable: passage.observable, direction: 'falls_to', threshold: passage.fallsTo },
+  );
+
+function unknownPassages(request: QuoteRequest, network: ResolvedNetwork): InputFault[] {
+  const known = new Set(network.observables.map(({ id }) => id));
+  return passagesOf(request).flatMap(({ observable }, index) =>
+    known.has(observable)
+      ? []
+      : [
+          {
+            path: `outputs.passages[${index}].observable`,
+            code: 'unknown_observable',
+            message: `“${observable}” is no species or observable of this model.`,
+          },
+        ],
+  );
 }
 
 /** Traces kept when the request does not say: 20, or fewer where the grid is large. */

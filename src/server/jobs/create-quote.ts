@@ -24,7 +24,7 @@ import { nowText } from '../clock.ts';
 import { answerOnce, recallAnswer, type Idempotency } from '../http/answer-once.ts';
 import { newId } from '../ids.ts';
 import { authorise } from '../teams/authorise.ts';
-import { checkQuoteRequest, defaultKeptTraces, type QuoteRequest } from './check-quote-request.ts';
+import { checkQuoteRequest, defaultKeptTraces, passagesOf, type QuoteRequest } from './check-quote-request.ts';
 import { executor } from './executor.ts';
 import { presentQuote } from './present-quote.ts';
 import { queueLoad } from './queue-load.ts';
@@ -108,6 +108,7 @@ function inputsOf(request: QuoteRequest, network: ResolvedNetwork): JobInputs {
     lane,
     overrides: request.overrides ?? {},
     keptTraces: request.outputs?.keptTraces ?? defaultKeptTraces(request, network),
+    passages: passagesOf(request),
     eventBudgetPerReplicate: limits.eventsPerReplicate,
   };
 }

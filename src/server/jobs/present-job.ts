@@ -60,6 +60,7 @@ function present(
     observables: [...document.species, ...(document.observables ?? [])].map(({ id }) => id),
     overrides: inputs.overrides,
     keptTraces: inputs.keptTraces,
+    passages: inputs.passages ?? [],
     points: 1,
     replicatesPlanned: job.replicatesPlanned,
     replicatesDone: job.replicatesDone,

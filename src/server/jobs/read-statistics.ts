@@ -30,6 +30,10 @@ function withoutNaN(statistics: ReturnType<typeof statisticsOf>): StatisticsDocu
       sd: orNull(observable.sd),
       meanStandardError: orNull(observable.meanStandardError),
       sdStandardError: orNull(observable.sdStandardError),
+      fano: orNull(observable.fano),
+      fanoStandardError: orNull(observable.fanoStandardError),
+      cv: orNull(observable.cv),
+      cvStandardError: orNull(observable.cvStandardError),
     })),
     events: { ...statistics.events, sdPerReplicate: Number.isFinite(sdPerReplicate) ? sdPerReplicate : null },
   };
