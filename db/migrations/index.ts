@@ -6,5 +6,6 @@ import { ledger } from './0003-ledger.ts';
 import { billing } from './0004-billing.ts';
 import { models } from './0005-models.ts';
 import { jobs } from './0006-jobs.ts';
+import { finance } from './0007-finance.ts';
 
-export const migrations: Migration[] = [people, teams, ledger, billing, models, jobs];
+export const migrations: Migration[] = [people, teams, ledger, billing, models, jobs, finance];

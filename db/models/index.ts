@@ -1,6 +1,7 @@
 /** Defines every model on the connection. A model class is usable once `openDatabase` has run. */
 import type { Sequelize } from 'sequelize';
 import { defineBilling } from './billing.ts';
+import { defineFinance } from './finance.ts';
 import { defineJobs } from './jobs.ts';
 import { defineLedger } from './ledger.ts';
 import { defineNetworkModels } from './models.ts';
@@ -14,4 +15,5 @@ export function defineModels(sequelize: Sequelize): void {
   defineBilling(sequelize);
   defineNetworkModels(sequelize);
   defineJobs(sequelize);
+  defineFinance(sequelize);
 }

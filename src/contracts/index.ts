@@ -3,9 +3,11 @@ import { archiveContracts } from './archives.ts';
 import { authContracts } from './auth.ts';
 import { billingContracts } from './billing.ts';
 import type { Contract } from './contract.ts';
+import { readJobCost } from './job-cost.ts';
 import { jobContracts } from './jobs.ts';
 import { ledgerContracts } from './ledger.ts';
 import { networkContracts } from './network.ts';
+import { statementContracts } from './statements.ts';
 import { systemContracts } from './system.ts';
 import { teamContracts } from './teams.ts';
 
@@ -15,7 +17,9 @@ export const contracts: Contract[] = [
   ...teamContracts,
   ...networkContracts,
   ...jobContracts,
+  readJobCost,
   ...archiveContracts,
   ...ledgerContracts,
   ...billingContracts,
+  ...statementContracts,
 ];

@@ -1,7 +1,7 @@
 /** Invoices and finance's review of them. */
 import { z } from 'zod';
 import { contract } from './contract.ts';
-import { pageQuery } from './page.ts';
+import { dayRange, pageQuery } from './page.ts';
 import { money } from './purchase.ts';
 
 const team = ['not_signed_in', 'not_found', 'forbidden'] as const;
@@ -58,6 +58,20 @@ export const invoice = invoiceSummary.extend({
 });
 export type InvoiceDocument = z.infer<typeof invoice>;
 
+const invoiceFilters = z.object({
+  review: z.enum(reviewStates).optional(),
+  kind: z.enum(invoiceKinds).optional(),
+  /** Issued. */
+  ...dayRange,
+  /** Part of the number, the buyer's name, a line or the PO number. */
+  search: z.string().trim().max(100).optional(),
+  /** Id of whoever bought. */
+  member: z.string().max(100).optional(),
+  /** Id or code: invoices whose credits paid for jobs booked to it. */
+  projectCode: z.string().max(100).optional(),
+});
+export type InvoiceFilters = z.infer<typeof invoiceFilters>;
+
 export const listInvoices = contract({
   id: 'listInvoices',
   feature: 'billing',
@@ -65,7 +79,7 @@ export const listInvoices = contract({
   path: '/api/v1/teams/{team}/invoices',
   summary: 'Invoices, newest first',
   access: { kind: 'team', permission: 'billing:read' },
-  query: pageQuery.extend({ review: z.enum(reviewStates).optional() }),
+  query: pageQuery.extend(invoiceFilters.shape),
   answers: [
     {
       status: 200,
@@ -118,7 +132,120 @@ export const reviewInvoice = contract({
   access: { kind: 'team', permission: 'billing:write' },
   body: z.object({ state: z.enum(reviewStates), comment: z.string().trim().max(2_000).default('') }),
   answers: [{ status: 200, description: 'Reviewed', schema: z.object({ invoice }) }],
-  refusals: [...team, 'team_suspended', 'invalid_input'],
+  refusals: [...team, 'team_suspended', 'invalid_input', 'limit_reached'],
 });
 
-export const invoiceContracts = [listInvoices, readInvoice, downloadInvoicePdf, downloadInvoiceUbl, reviewInvoice];
+export const exportInvoices = contract({
+  id: 'exportInvoices',
+  feature: 'billing',
+  method: 'GET',
+  path: '/api/v1/teams/{team}/invoices/csv',
+  summary: 'Invoices as CSV, newest first',
+  access: { kind: 'team', permission: 'billing:read' },
+  query: invoiceFilters,
+  answers: [{ status: 200, description: 'CSV', contentType: 'text/csv' }],
+  refusals: [...team, 'invalid_input'],
+});
+
+export const downloadInvoices = contract({
+  id: 'downloadInvoices',
+  feature: 'billing',
+  method: 'GET',
+  path: '/api/v1/teams/{team}/invoices/zip',
+  summary: 'Invoices as one zip: the PDF and the UBL file of each',
+  access: { kind: 'team', permission: 'billing:read' },
+  query: invoiceFilters,
+  answers: [{ status: 200, description: 'Zip', contentType: 'application/zip' }],
+  refusals: [...team, 'invalid_input', 'too_large'],
+});
+
+const microcredits = z.number().int();
+
+/** What happened to an invoice and to the credits that it bought. */
+export const invoiceTrail = z.object({
+  /** Oldest first. */
+  timeline: z.array(z.object({ at: z.string(), words: z.string() })),
+  /** The credits bought; null for a credit note. */
+  lot: z
+    .object({
+      id: z.string(),
+      creditsMicrocredits: microcredits,
+      spentMicrocredits: microcredits,
+      returnedMicrocredits: microcredits,
+      frozenMicrocredits: microcredits,
+      remainingMicrocredits: microcredits,
+    })
+    .nullable(),
+  /** Jobs that were charged to these credits, the newest first. */
+  jobs: z.array(
+    z.object({
+      id: z.string(),
+      name: z.string(),
+      projectCode: z.string().nullable(),
+      member: z.string(),
+      drawnMicrocredits: microcredits,
+    }),
+  ),
+  nextCursor: z.string().nullable(),
+});
+export type InvoiceTrail = z.infer<typeof invoiceTrail>;
+
+export const readInvoiceTrail = contract({
+  id: 'readInvoiceTrail',
+  feature: 'billing',
+  method: 'GET',
+  path: '/api/v1/teams/{team}/invoices/{invoice}/trail',
+  summary: 'The payment of an invoice step by step, and the jobs that its credits paid for',
+  access: { kind: 'team', permission: 'billing:read' },
+  query: pageQuery,
+  answers: [{ status: 200, description: 'Trail', schema: z.object({ trail: invoiceTrail }) }],
+  refusals: [...team, 'invalid_input'],
+});
+
+/** The thread between the team's finance people and the operator. */
+export const invoiceMessage = z.object({
+  id: z.string(),
+  at: z.string(),
+  side: z.enum(['team', 'operator']),
+  person: z.string(),
+  body: z.string(),
+});
+export type InvoiceMessageDocument = z.infer<typeof invoiceMessage>;
+export const messageBody = z.object({ body: z.string().trim().min(1, 'Write something.').max(2_000) });
+
+export const listInvoiceMessages = contract({
+  id: 'listInvoiceMessages',
+  feature: 'billing',
+  method: 'GET',
+  path: '/api/v1/teams/{team}/invoices/{invoice}/messages',
+  summary: 'What the team and the operator wrote to each other about an invoice, oldest first',
+  access: { kind: 'team', permission: 'billing:read' },
+  answers: [{ status: 200, description: 'Messages', schema: z.object({ messages: z.array(invoiceMessage) }) }],
+  refusals: [...team],
+});
+
+export const writeInvoiceMessage = contract({
+  id: 'writeInvoiceMessage',
+  feature: 'billing',
+  method: 'POST',
+  path: '/api/v1/teams/{team}/invoices/{invoice}/messages',
+  summary: 'Write to the operator about an invoice',
+  access: { kind: 'team', permission: 'billing:write' },
+  body: messageBody,
+  answers: [{ status: 201, description: 'Written', schema: z.object({ messages: z.array(invoiceMessage) }) }],
+  refusals: [...team, 'team_suspended', 'invalid_input', 'limit_reached', 'idempotency_key_reused'],
+  idempotency: 'transaction',
+});
+
+export const invoiceContracts = [
+  listInvoices,
+  exportInvoices,
+  downloadInvoices,
+  readInvoice,
+  readInvoiceTrail,
+  downloadInvoicePdf,
+  downloadInvoiceUbl,
+  reviewInvoice,
+  listInvoiceMessages,
+  writeInvoiceMessage,
+];

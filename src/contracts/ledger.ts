@@ -2,7 +2,7 @@
 import { z } from 'zod';
 import { transactionKinds } from '@/domain/ledger/accounts.ts';
 import { contract } from './contract.ts';
-import { pageQuery } from './page.ts';
+import { dayRange, pageQuery } from './page.ts';
 
 const microcredits = z.number().int();
 
@@ -54,12 +54,22 @@ export const ledgerEntry = z.object({
   heldMicrocredits: microcredits,
   /** Metered events of a settlement. */
   events: z.string().nullable(),
+  /** The lots that it issued, drew from or froze. */
+  lotIds: z.array(z.string()),
   /** Events that were computed and not charged. */
   absorbedEvents: z.string().nullable(),
   /** SHA-256 of this transaction, which covers all before it. */
   hash: z.string(),
 });
 export type LedgerEntry = z.infer<typeof ledgerEntry>;
+
+const ledgerFilters = z.object({
+  kind: z.enum(transactionKinds).optional(),
+  job: z.string().max(100).optional(),
+  /** Entries that issued the lot, drew from it, froze it or set it free. */
+  lot: z.string().max(100).optional(),
+  ...dayRange,
+});
 
 export const listLedger = contract({
   id: 'listLedger',
@@ -68,10 +78,7 @@ export const listLedger = contract({
   path: '/api/v1/teams/{team}/ledger',
   summary: 'Ledger entries of the team, newest first',
   access: { kind: 'team', permission: 'credits:read' },
-  query: pageQuery.extend({
-    kind: z.enum(transactionKinds).optional(),
-    job: z.string().max(100).optional(),
-  }),
+  query: pageQuery.extend(ledgerFilters.shape),
   answers: [
     {
       status: 200,
@@ -82,4 +89,16 @@ export const listLedger = contract({
   refusals: ['not_signed_in', 'not_found', 'forbidden', 'invalid_input'],
 });
 
-export const ledgerContracts = [readCredits, listLedger];
+export const exportLedger = contract({
+  id: 'exportLedger',
+  feature: 'ledger',
+  method: 'GET',
+  path: '/api/v1/teams/{team}/ledger/csv',
+  summary: 'Ledger entries as CSV, newest first',
+  access: { kind: 'team', permission: 'credits:read' },
+  query: ledgerFilters,
+  answers: [{ status: 200, description: 'CSV', contentType: 'text/csv' }],
+  refusals: ['not_signed_in', 'not_found', 'forbidden', 'invalid_input'],
+});
+
+export const ledgerContracts = [readCredits, listLedger, exportLedger];

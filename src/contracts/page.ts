@@ -7,3 +7,15 @@ export const pageQuery = z.object({
   /** `nextCursor` of the page before. */
   cursor: z.string().max(100).optional(),
 });
+
+/** `2026-12-01`, a day that exists. */
+export const day = z
+  .string()
+  .regex(/^20\d\d-\d\d-\d\d$/, 'A day such as 2026-12-01.')
+  .refine((text) => {
+    const time = Date.parse(`${text}T00:00:00Z`);
+    return !Number.isNaN(time) && new Date(time).toISOString().startsWith(text);
+  }, 'There is no such day.');
+
+/** From the first day to the last one, both included, in the team's time zone. */
+export const dayRange = { from: day.optional(), to: day.optional() };

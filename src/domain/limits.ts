@@ -57,6 +57,9 @@ export const limits = {
   pilotSeconds: 20,
   pilotsPerMemberAndHour: 240,
   quoteMinutes: 60,
+  /** Finance. */
+  invoicesPerZip: 500,
+  messagesPerInvoice: 200,
   /** Money: every integer of credits or money stays within this. */
   integer: Number.MAX_SAFE_INTEGER,
 } as const;

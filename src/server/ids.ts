@@ -24,6 +24,8 @@ export type IdKind =
   | 'payment'
   | 'request'
   | 'pricebook'
+  | 'message'
+  | 'act'
   | 'webhook';
 
 export const newId = (kind: IdKind): string => `${kind}_${ulid()}`;

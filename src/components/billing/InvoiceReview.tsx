@@ -6,8 +6,10 @@ import { Button } from '@/components/ui/Button.tsx';
 import { TextAreaField } from '@/components/ui/Field.tsx';
 import { ProblemNotice } from '@/components/ui/Notice.tsx';
 import { StateLabel } from '@/components/ui/StateLabel.tsx';
+import { WhenLive } from '@/components/ui/WhenLive.tsx';
 import { reviewInvoice, type InvoiceDocument } from '@/contracts/billing.ts';
 import type { ProblemDocument } from '@/contracts/errors.ts';
+import { threadChanged } from './InvoiceThread.tsx';
 import { reviewWords } from './invoice-words.ts';
 
 export interface InvoiceReviewProps {
@@ -32,6 +34,7 @@ export function InvoiceReview({ team, timeZone, mayReview, invoice: initial }: I
     if (!called.ok) return;
     setInvoice(called.value.invoice);
     setComment('');
+    if (state === 'questioned') window.dispatchEvent(new Event(threadChanged));
   }
 
   const now = reviewWords[invoice.reviewState];
@@ -57,37 +60,40 @@ export function InvoiceReview({ team, timeZone, mayReview, invoice: initial }: I
         </ol>
       )}
       {mayReview && (
-        <div className="flex flex-col gap-3">
-          <TextAreaField
-            label="Comment (optional)"
-            value={comment}
-            maxLength={2_000}
-            onChange={(event) => setComment(event.target.value)}
-          />
-          {problem && <ProblemNotice problem={problem} />}
-          <div className="flex flex-wrap gap-2">
-            {invoice.reviewState !== 'approved' && (
-              <Button size="small" pending={pending === 'approved'} onClick={() => void review('approved')}>
-                Approve
-              </Button>
-            )}
-            {invoice.reviewState !== 'questioned' && (
-              <Button size="small" pending={pending === 'questioned'} onClick={() => void review('questioned')}>
-                Question it
-              </Button>
-            )}
-            {invoice.reviewState !== 'to_review' && (
-              <Button
-                size="small"
-                variant="quiet"
-                pending={pending === 'to_review'}
-                onClick={() => void review('to_review')}
-              >
-                Put back to review
-              </Button>
-            )}
+        <WhenLive>
+          <div className="flex flex-col gap-3">
+            <TextAreaField
+              label="Comment"
+              hint="A question needs one; it goes to Burette by e-mail."
+              value={comment}
+              maxLength={2_000}
+              onChange={(event) => setComment(event.target.value)}
+            />
+            {problem && <ProblemNotice problem={problem} />}
+            <div className="flex flex-wrap gap-2">
+              {invoice.reviewState !== 'approved' && (
+                <Button size="small" pending={pending === 'approved'} onClick={() => void review('approved')}>
+                  Approve
+                </Button>
+              )}
+              {invoice.reviewState !== 'questioned' && (
+                <Button size="small" pending={pending === 'questioned'} onClick={() => void review('questioned')}>
+                  Question it
+                </Button>
+              )}
+              {invoice.reviewState !== 'to_review' && (
+                <Button
+                  size="small"
+                  variant="quiet"
+                  pending={pending === 'to_review'}
+                  onClick={() => void review('to_review')}
+                >
+                  Put back to review
+                </Button>
+              )}
+            </div>
           </div>
-        </div>
+        </WhenLive>
       )}
     </section>
   );

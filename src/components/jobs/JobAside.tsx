@@ -68,6 +68,11 @@ export function JobAside({ team, timeZone, job, names, mayLaunch, mayReadResults
           </div>
         </dl>
         <p className="mt-2 text-xs text-soft">{chargeWords(job)}</p>
+        <p className="mt-1 text-sm">
+          <a className="link" href={paths.jobCost(team, job.id)}>
+            How this charge came about
+          </a>
+        </p>
       </section>
       <ArchiveDownload team={team} job={job} />
       <section aria-labelledby="facts-title">

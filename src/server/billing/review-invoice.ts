@@ -1,4 +1,4 @@
-/** Finance's review of an invoice: approve, question, or put back. Every step is kept. */
+/** Finance's review of an invoice: approve, question, or put back. Every step is kept; a question goes to the operator. */
 import { inWriteTransaction } from '@db/in-write-transaction.ts';
 import { InvoiceReview } from '@db/models/billing.ts';
 import type { InvoiceDocument, reviewStates } from '@/contracts/billing.ts';
@@ -6,6 +6,7 @@ import { accept, refuse, type Result } from '@/domain/refusals.ts';
 import type { Actor } from '@/domain/teams/actor.ts';
 import { nowText } from '../clock.ts';
 import { newId } from '../ids.ts';
+import { addInvoiceMessage } from './add-invoice-message.ts';
 import { describeInvoice } from './describe-invoices.ts';
 import { findInvoice } from './find-invoice.ts';
 
@@ -25,15 +26,13 @@ export async function reviewInvoice(options: {
     const message = 'Say what is in question.';
     return refuse('invalid_input', message, { errors: [{ path: 'comment', code: 'missing', message }] });
   }
-  await inWriteTransaction(() =>
-    InvoiceReview.create({
-      id: newId('request'),
-      invoiceId: invoice.id,
-      userId: authorised.userId,
-      state,
-      comment,
-      at: nowText(),
-    }),
-  );
-  return accept({ invoice: await describeInvoice(invoice) });
+  return inWriteTransaction(async () => {
+    const { userId } = authorised;
+    await InvoiceReview.create({ id: newId('request'), invoiceId: invoice.id, userId, state, comment, at: nowText() });
+    if (state === 'questioned') {
+      const asked = await addInvoiceMessage({ invoice, side: 'team', userId, body: comment });
+      if (!asked.ok) return asked;
+    }
+    return accept({ invoice: await describeInvoice(invoice) });
+  });
 }
