@@ -30,6 +30,23 @@ const passageRequest = z.union([
   z.strictObject({ observable: z.string().max(limits.identifierCharacters), fallsTo: z.number() }),
 ]);
 
+const precision = {
+  kind: z.literal('precision'),
+  observable: z.string().max(limits.identifierCharacters),
+  /** A grid time. */
+  time: z.number().min(0),
+};
+/** Half the width of the mean's 95 % interval: as a part of the mean, or in its own unit. */
+const relative = z.number().positive().max(1);
+const absolute = z.number().positive();
+
+/** "precision": at most `replicates`, fewer once the mean is known that well; looked at after 256, 512, 1024 … of them. */
+const stoppingRequest = z.union([
+  z.strictObject({ kind: z.literal('replicates') }),
+  z.strictObject({ ...precision, relative }),
+  z.strictObject({ ...precision, absolute }),
+]);
+
 export const quoteRequest = z.strictObject({
   modelVersionId: id,
   replicates: z.number().int().min(1, 'At least one replicate.').max(limits.replicatesPerJob),
@@ -43,7 +60,7 @@ export const quoteRequest = z.strictObject({
   overrides: overrides.optional(),
   /** Refused for now, with a sentence. */
   sweep: z.unknown().optional(),
-  stopping: z.looseObject({ kind: z.string() }).optional(),
+  stopping: stoppingRequest.optional(),
   outputs: z
     .strictObject({
       keptTraces: z.number().int().min(0).max(limits.keptTraces).optional(),
@@ -97,6 +114,7 @@ export const modelFailure = z.object({
 
 export const stopReasons = [
   'replicates_reached',
+  'precision_reached',
   'cap_reached',
   'cancelled',
   'negative_propensity',
@@ -132,6 +150,8 @@ export const jobDocument = z.object({
   overrides,
   keptTraces: count,
   passages: z.array(passageDocument),
+  /** Null: stops at the planned replicates. */
+  stopping: z.object({ ...precision, relative: relative.optional(), absolute: absolute.optional() }).nullable(),
   points: z.number().int(),
   replicatesPlanned: count,
   /** Always the complete prefix of replicates by index. */

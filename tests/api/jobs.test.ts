@@ -180,6 +180,43 @@ describe('the main path', () => {
     expect(refused).toMatchObject({ code: 'invalid_input', errors: [{ path: 'outputs.passages[0].observable' }] });
   });
 
+  it('stops by precision at the first look that is precise enough, and says so; charges that prefix alone', async () => {
+    // Poisson(20): the mean is known to ±3 % (0.6) at 1.96 √(20/n), so from n = 213 on: the look at 256 will do.
+    const stopping = { kind: 'precision', observable: 'X', time: 10, relative: 0.03 };
+    const { id } = await launched(await quoted({ replicates: 5_000, stopping, seed: '3' }));
+    await whenOver(id);
+    const { job } = (await (await get(`jobs/${id}`)).json()) as { job: JobDocument };
+    expect(job).toMatchObject({
+      state: 'done',
+      stopReason: 'precision_reached',
+      precisionReached: true,
+      replicatesDone: 256,
+      heldMicrocredits: 0,
+      stopping,
+    });
+    const { id: fixed } = await launched(await quoted({ replicates: 256, seed: '3' }));
+    await whenOver(fixed);
+    const { job: same } = (await (await get(`jobs/${fixed}`)).json()) as { job: JobDocument };
+    expect(same).toMatchObject({ resultsDigest: job.resultsDigest, events: job.events, precisionReached: null });
+    expect(same.chargedMicrocredits).toBe(job.chargedMicrocredits);
+  });
+
+  it('goes to the planned replicates where the precision is not reached', async () => {
+    const stopping = { kind: 'precision', observable: 'X', time: 10, absolute: 0.01 };
+    const { id } = await launched(await quoted({ replicates: 600, stopping }));
+    await whenOver(id);
+    const { job } = (await (await get(`jobs/${id}`)).json()) as { job: JobDocument };
+    expect(job).toMatchObject({ stopReason: 'replicates_reached', precisionReached: false, replicatesDone: 600 });
+  });
+
+  it('never stops at a prefix without a spread: X is 0 at time 0 in every replicate', async () => {
+    const stopping = { kind: 'precision', observable: 'X', time: 0, absolute: 5 };
+    const { id } = await launched(await quoted({ replicates: 600, stopping }));
+    await whenOver(id);
+    const { job } = (await (await get(`jobs/${id}`)).json()) as { job: JobDocument };
+    expect(job).toMatchObject({ precisionReached: false, replicatesDone: 600 });
+  });
+
   it('streams progress as events that end with the job', async () => {
     const { id } = await launched(await quoted({ replicates: 3_000 }));
     const response = await get(`jobs/${id}/progress`);
@@ -278,7 +315,17 @@ describe('bad input to a quote', () => {
     ['a method that is none', { method: 'guess' }, 'method'],
     ['tau-leaping, which is not there yet', { method: 'leap' }, 'method'],
     ['a sweep, which is not there yet', { sweep: { parameter: 'birth', values: [1, 2] } }, 'sweep'],
-    ['another stopping rule', { stopping: { kind: 'precision' } }, 'stopping.kind'],
+    ['a stopping rule without a target', { stopping: { kind: 'precision' } }, 'stopping'],
+    [
+      'a precision at no grid time',
+      { stopping: { kind: 'precision', observable: 'X', time: 0.123, relative: 0.1 } },
+      'stopping.time',
+    ],
+    [
+      'a precision of nothing',
+      { stopping: { kind: 'precision', observable: 'Nobody', time: 10, relative: 0.1 } },
+      'stopping.observable',
+    ],
     ['an unknown parameter', { overrides: { parameters: { brith: 3 } } }, 'overrides.parameters.brith'],
     ['an unknown species', { overrides: { initialCounts: { Y: 3 } } }, 'overrides.initialCounts.Y'],
     ['a negative count', { overrides: { initialCounts: { X: -3 } } }, 'overrides.initialCounts.X'],

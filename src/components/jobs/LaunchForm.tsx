@@ -20,6 +20,7 @@ import { capOf, faultsOfProblem, numberIn, quoteRequestOf, type LaunchSettings }
 import { OverridesTable } from './OverridesTable.tsx';
 import { PassageFields } from './PassageFields.tsx';
 import { QuotePanel } from './QuotePanel.tsx';
+import { StoppingFields } from './StoppingFields.tsx';
 import { useQuote } from './use-quote.ts';
 import { WhenLive } from '@/components/ui/WhenLive.tsx';
 
@@ -105,7 +106,12 @@ function Form(props: LaunchFormProps) {
             choices={models.map(({ id, name }) => ({ value: id, label: name }))}
             onChange={(event) => {
               setChosen({ model: event.target.value, number: null });
-              change({ parameters: {}, initialCounts: {}, passages: [] });
+              change({
+                parameters: {},
+                initialCounts: {},
+                passages: [],
+                stopping: { ...settings.stopping, kind: 'replicates', observable: '' },
+              });
             }}
           />
           <SelectField
@@ -158,6 +164,12 @@ function Form(props: LaunchFormProps) {
             onChange={(event) => change({ gridIntervals: event.target.value })}
           />
         </div>
+        <StoppingFields
+          network={version.network}
+          stopping={settings.stopping}
+          horizon={settings.horizon}
+          {...{ unit, faults, change }}
+        />
         <OverridesTable key={version.id} network={version.network} {...{ settings, faults, change }} />
         <section aria-labelledby="more-title" className="border-t border-rule pt-4">
           <h2 id="more-title" className="mb-3 text-lg font-semibold">

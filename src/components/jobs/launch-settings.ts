@@ -12,6 +12,17 @@ export interface PassageSettings {
   threshold: string;
 }
 
+export interface StoppingSettings {
+  kind: 'replicates' | 'precision';
+  /** Empty: the model's first species. */
+  observable: string;
+  /** Empty: the horizon. */
+  time: string;
+  measure: 'relative' | 'absolute';
+  /** Per cent of the mean, or the observable's own unit. */
+  halfWidth: string;
+}
+
 export interface LaunchSettings {
   /** Empty: named after the model. */
   name: string;
@@ -22,6 +33,7 @@ export interface LaunchSettings {
   seed: string;
   keptTraces: string;
   passages: PassageSettings[];
+  stopping: StoppingSettings;
   lane: Lane;
   /** Id of a project code; empty for none. */
   projectCode: string;
@@ -39,6 +51,14 @@ export type FieldFaults = Record<string, string>;
 /** Horizons to begin with, by the model's unit of time, until a job of the model says better. */
 const firstHorizons: Record<string, string> = { s: '100', min: '120', h: '48', d: '30', day: '30', days: '30' };
 
+const byReplicates: StoppingSettings = {
+  kind: 'replicates',
+  observable: '',
+  time: '',
+  measure: 'relative',
+  halfWidth: '1',
+};
+
 export const firstSettings = (network: NetworkDocument): LaunchSettings => ({
   name: '',
   replicates: '1000',
@@ -47,6 +67,7 @@ export const firstSettings = (network: NetworkDocument): LaunchSettings => ({
   seed: '',
   keptTraces: '20',
   passages: [],
+  stopping: byReplicates,
   lane: 'steady',
   projectCode: '',
   cap: '',
@@ -65,6 +86,7 @@ export const settingsOfJob = (job: JobDocument, keepSeed: boolean): LaunchSettin
   gridIntervals: String(job.gridIntervals),
   seed: keepSeed ? job.seed : '',
   keptTraces: String(job.keptTraces),
+  stopping: stoppingSettingsOf(job),
   passages: job.passages.map((passage) => ({ ...passage, threshold: String(passage.threshold) })),
   lane: job.lane,
   projectCode: job.projectCode?.id ?? '',
@@ -72,6 +94,18 @@ export const settingsOfJob = (job: JobDocument, keepSeed: boolean): LaunchSettin
   parameters: texts(job.overrides.parameters),
   initialCounts: texts(job.overrides.initialCounts),
 });
+
+function stoppingSettingsOf({ stopping }: JobDocument): StoppingSettings {
+  if (stopping === null) return byReplicates;
+  const { observable, time, relative, absolute } = stopping;
+  return {
+    kind: 'precision',
+    observable,
+    time: String(time),
+    measure: relative === undefined ? 'absolute' : 'relative',
+    halfWidth: relative === undefined ? String(absolute) : String(Number((100 * relative).toPrecision(12))),
+  };
+}
 
 /** "10,000", "1e4" and "10 000" are one number; NaN when the text states none. */
 export function numberIn(text: string): number {
@@ -117,6 +151,13 @@ export function quoteRequestOf(
   if (seed !== '' && !(/^\d{1,20}$/.test(seed) && BigInt(seed) < 2n ** 64n)) {
     faults['seed'] = 'A seed is a whole number from 0 to 18,446,744,073,709,551,615.';
   }
+  const { stopping } = settings;
+  if (stopping.kind === 'precision') {
+    const halfWidth = numberIn(stopping.halfWidth);
+    const most = stopping.measure === 'relative' ? 100 : Infinity;
+    check('stopping.halfWidth', halfWidth > 0 && halfWidth <= most ? null : 'Give a number above 0.');
+    check('stopping.time', stopping.time !== '' && Number.isNaN(numberIn(stopping.time)) ? 'Give a number.' : null);
+  }
   settings.passages.forEach(({ threshold }, index) =>
     check(`passages[${index}].threshold`, Number.isNaN(numberIn(threshold)) ? 'Give a number.' : null),
   );
@@ -140,12 +181,25 @@ export function quoteRequestOf(
       horizon,
       gridIntervals,
       method: 'exact',
+      ...(stopping.kind === 'precision' ? { stopping: stoppingOf(stopping, version.network, horizon) } : {}),
       lane: settings.lane,
       ...(seed === '' ? {} : { seed }),
       ...(Object.keys({ ...overrides.parameters, ...overrides.initialCounts }).length > 0 ? { overrides } : {}),
       outputs: { keptTraces, ...(settings.passages.length > 0 ? { passages: settings.passages.map(passageOf) } : {}) },
     },
   };
+}
+
+function stoppingOf(stopping: StoppingSettings, network: NetworkDocument, horizon: number) {
+  const target = {
+    kind: 'precision' as const,
+    observable: stopping.observable || (network.species[0]?.id ?? ''),
+    time: stopping.time.trim() === '' ? horizon : numberIn(stopping.time),
+  };
+  const halfWidth = numberIn(stopping.halfWidth);
+  return stopping.measure === 'relative'
+    ? { ...target, relative: halfWidth / 100 }
+    : { ...target, absolute: halfWidth };
 }
 
 const passageOf = ({ observable, direction, threshold }: PassageSettings) =>

@@ -2,6 +2,7 @@
 import type { Overrides } from '../network/document.ts';
 import type { Lane, MethodFamily } from '../pricing/price-book.ts';
 import type { FinalState } from './job-state.ts';
+import type { PrecisionTarget } from './precision.ts';
 
 /** A first passage to note: when the observable is first at least, or at most, the threshold. */
 export interface PassageInput {
@@ -26,6 +27,8 @@ export interface JobInputs {
   passages?: PassageInput[] | undefined;
   /** Fails the replicate that would exceed it. */
   eventBudgetPerReplicate: number;
+  /** Ends the job before `replicates` once a mean is known well enough; shapes no replicate. */
+  stopping?: PrecisionTarget | undefined;
 }
 
 /** The model's own failure, as the engine reports it. */
@@ -42,6 +45,7 @@ export interface BatchFailure {
 
 export type StopReason =
   | 'replicates_reached'
+  | 'precision_reached'
   | 'cap_reached'
   | 'cancelled'
   | BatchFailure['kind']

@@ -36,6 +36,8 @@ export function planBatches(options: {
   gridPoints: number;
   observables: number;
   firstOrdinal?: number;
+  /** Numbers of replicates at which a batch must end (looks of a precision target). */
+  endsAt?: readonly number[];
   /** Default `unitsPerBatch`; tests use others. */
   unitsPerBatchMost?: number;
 }): PlannedBatch[] {
@@ -47,12 +49,16 @@ export function planBatches(options: {
   // Only jobs beyond limits.batchesPerJob full batches get longer ones.
   const size = Math.max(wished, Math.ceil(replicates / limits.batchesPerJob));
   const batches: PlannedBatch[] = [];
-  for (let start = 0; start < replicates; start += size)
-    batches.push({
-      ordinal: firstOrdinal + batches.length,
-      point: 0,
-      firstReplicate: firstReplicate + start,
-      replicateCount: Math.min(size, replicates - start),
-    });
+  const end = firstReplicate + replicates;
+  const ends = [...(options.endsAt ?? []).filter((at) => at > firstReplicate && at < end), end];
+  let start = firstReplicate;
+  for (const next of ends)
+    for (; start < next; start += batches.at(-1)!.replicateCount)
+      batches.push({
+        ordinal: firstOrdinal + batches.length,
+        point: 0,
+        firstReplicate: start,
+        replicateCount: Math.min(size, next - start),
+      });
   return batches;
 }

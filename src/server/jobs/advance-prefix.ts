@@ -7,6 +7,7 @@
 import { Op } from 'sequelize';
 import { Batch, Job, Segment } from '@db/models/jobs.ts';
 import { describeFailure } from '@/domain/jobs/job-inputs.ts';
+import { isLook } from '@/domain/jobs/precision.ts';
 import { chargeOfJoining, eventsWithinCap } from '@/domain/jobs/longest-prefix.ts';
 import { settleCharge } from '../ledger/settle-charge.ts';
 import { endJob } from './end-job.ts';
@@ -16,12 +17,17 @@ export type Advance =
   | { kind: 'waiting' }
   /** The next batch is in but does not fit whole under the cap of its segment. */
   | { kind: 'at_cap'; batch: Batch; segment: Segment }
+  /** The prefix is one that a precision target looks at. */
+  | { kind: 'look'; replicates: number }
   /** Nothing more joins: write the results. */
   | { kind: 'ending' };
 
-export async function advancePrefix(job: Job): Promise<Advance> {
+/** `looked`: the prefix that was looked at already and was not precise enough. */
+export async function advancePrefix(job: Job, looked = 0): Promise<Advance> {
   for (;;) {
     if (job.ending) return { kind: 'ending' };
+    if (job.replicatesDone !== looked && (await wantsLook(job)))
+      return { kind: 'look', replicates: job.replicatesDone };
     const batch = await Batch.findOne({
       where: { jobId: job.id, state: { [Op.in]: ['planned', 'done'] } },
       order: [['ordinal', 'ASC']],
@@ -42,6 +48,12 @@ export async function advancePrefix(job: Job): Promise<Advance> {
     if (batch.failure) await endJob(job, failedEnding(batch));
   }
 }
+
+/** Only the launch stops by precision: an extension was asked for in replicates. */
+const wantsLook = async (job: Job): Promise<boolean> =>
+  job.inputs.stopping !== undefined &&
+  isLook(job.replicatesDone) &&
+  (await Segment.count({ where: { jobId: job.id } })) === 1;
 
 /** A batch that its event budget cut short, without a fault of the model, was cut because the cap was in sight. */
 function fitsWhole(batch: Batch, segment: Segment): boolean {

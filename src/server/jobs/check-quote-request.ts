@@ -2,6 +2,7 @@
 import type { z } from 'zod';
 import type { quoteRequest } from '@/contracts/jobs.ts';
 import type { PassageInput } from '@/domain/jobs/job-inputs.ts';
+import type { PrecisionTarget } from '@/domain/jobs/precision.ts';
 import { limits } from '@/domain/limits.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
@@ -21,6 +22,7 @@ export function checkQuoteRequest(request: QuoteRequest, document: NetworkDocume
   }
   const faults = [
     ...unknownPassages(request, resolved.network),
+    ...unfitStopping(request, resolved.network),
     ...tooManyReactions(resolved.network),
     ...notBuilt(request),
     ...tooLarge(request, resolved.network),
@@ -44,7 +46,7 @@ function tooManyReactions({ reactions }: ResolvedNetwork): InputFault[] {
   ];
 }
 
-function notBuilt({ method, sweep, stopping }: QuoteRequest): InputFault[] {
+function notBuilt({ method, sweep }: QuoteRequest): InputFault[] {
   const faults: InputFault[] = [];
   if (method === 'leap')
     faults.push({
@@ -54,13 +56,6 @@ function notBuilt({ method, sweep, stopping }: QuoteRequest): InputFault[] {
     });
   if (sweep !== undefined)
     faults.push({ path: 'sweep', code: 'not_available', message: 'Sweeps are not available yet; quote each point.' });
-  if (stopping !== undefined && stopping.kind !== 'replicates')
-    faults.push({
-      path: 'stopping.kind',
-      code: 'not_available',
-      message:
-        'Only a fixed number of replicates is available yet: leave `stopping` out or give { "kind": "replicates" }.',
-    });
   return faults;
 }
 
@@ -95,6 +90,38 @@ export const passagesOf = (request: QuoteRequest): PassageInput[] =>
       ? { observable: passage.observable, direction: 'rises_to', threshold: passage.risesTo }
       : { observable: passage.observable, direction: 'falls_to', threshold: passage.fallsTo },
   );
+
+/** The precision target as a job pins it; undefined for a fixed number of replicates. */
+export function stoppingOf({ stopping, horizon, gridIntervals }: QuoteRequest): PrecisionTarget | undefined {
+  if (stopping?.kind !== 'precision') return undefined;
+  return {
+    kind: 'precision',
+    observable: stopping.observable,
+    gridPoint: Math.round((stopping.time / horizon) * gridIntervals),
+    halfWidth: 'relative' in stopping ? { relative: stopping.relative } : { absolute: stopping.absolute },
+  };
+}
+
+function unfitStopping(request: QuoteRequest, network: ResolvedNetwork): InputFault[] {
+  const { stopping, horizon, gridIntervals } = request;
+  const target = stoppingOf(request);
+  if (stopping?.kind !== 'precision' || !target) return [];
+  const faults: InputFault[] = [];
+  if (!network.observables.some(({ id }) => id === target.observable))
+    faults.push({
+      path: 'stopping.observable',
+      code: 'unknown_observable',
+      message: `“${target.observable}” is no species or observable of this model.`,
+    });
+  const time = (target.gridPoint * horizon) / gridIntervals;
+  if (target.gridPoint > gridIntervals || Math.abs(time - stopping.time) > 1e-9 * horizon)
+    faults.push({
+      path: 'stopping.time',
+      code: 'no_grid_time',
+      message: `Give a grid time from 0 to ${horizon}; the nearest is ${Math.min(time, horizon)}.`,
+    });
+  return faults;
+}
 
 function unknownPassages(request: QuoteRequest, network: ResolvedNetwork): InputFault[] {
   const known = new Set(network.observables.map(({ id }) => id));

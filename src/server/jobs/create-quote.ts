@@ -24,7 +24,13 @@ import { nowText } from '../clock.ts';
 import { answerOnce, recallAnswer, type Idempotency } from '../http/answer-once.ts';
 import { newId } from '../ids.ts';
 import { authorise } from '../teams/authorise.ts';
-import { checkQuoteRequest, defaultKeptTraces, passagesOf, type QuoteRequest } from './check-quote-request.ts';
+import {
+  checkQuoteRequest,
+  defaultKeptTraces,
+  passagesOf,
+  stoppingOf,
+  type QuoteRequest,
+} from './check-quote-request.ts';
 import { executor } from './executor.ts';
 import { presentQuote } from './present-quote.ts';
 import { queueLoad } from './queue-load.ts';
@@ -98,6 +104,7 @@ export async function createQuote(options: {
 /** The inputs as they are pinned: defaults filled in, a seed drawn where none was given. */
 function inputsOf(request: QuoteRequest, network: ResolvedNetwork): JobInputs {
   const { replicates, horizon, gridIntervals, method, lane } = request;
+  const stopping = stoppingOf(request);
   return {
     replicates,
     horizon,
@@ -109,6 +116,7 @@ function inputsOf(request: QuoteRequest, network: ResolvedNetwork): JobInputs {
     overrides: request.overrides ?? {},
     keptTraces: request.outputs?.keptTraces ?? defaultKeptTraces(request, network),
     passages: passagesOf(request),
+    ...(stopping ? { stopping } : {}),
     eventBudgetPerReplicate: limits.eventsPerReplicate,
   };
 }

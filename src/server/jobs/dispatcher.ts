@@ -16,6 +16,7 @@ import { cutAtCap } from './cut-at-cap.ts';
 import { endJob } from './end-job.ts';
 import { executor } from './executor.ts';
 import { finishJob } from './finish-job.ts';
+import { lookAtPrecision } from './look-at-precision.ts';
 import { announceJobChange, onWake } from './job-changes.ts';
 import { OpenJob, type WaitingBatch } from './open-job.ts';
 import { runBatch } from './run-batch.ts';
@@ -143,6 +144,9 @@ export class Dispatcher {
       open.stop();
       await this.#cut(open, advance);
       await finishJob(open.jobId);
+    } else if (advance.kind === 'look') {
+      const next = await lookAtPrecision(open.jobId, advance.replicates);
+      return this.#follow(open, next);
     } else if (advance.kind === 'ending') {
       open.stop();
       await finishJob(open.jobId);

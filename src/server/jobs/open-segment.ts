@@ -1,6 +1,7 @@
 /** Opens a charge segment of a job under a quote: uses the quote up, holds the cap, writes the plan of batches. */
 import { Batch, Job, Quote, Segment } from '@db/models/jobs.ts';
 import { planBatches } from '@/domain/jobs/plan-batches.ts';
+import { looksBetween } from '@/domain/jobs/precision.ts';
 import { limits } from '@/domain/limits.ts';
 import { creditsText } from '@/domain/pricing/credits-text.ts';
 import { accept, refuse, type Result } from '@/domain/refusals.ts';
@@ -103,6 +104,7 @@ async function writePlan(options: {
     gridPoints,
     observables,
     firstOrdinal,
+    endsAt: quote.inputs.stopping ? looksBetween(segment.firstReplicate, segment.replicateCount) : [],
   });
   const rows = planned.map((batch) => ({
     ...batch,

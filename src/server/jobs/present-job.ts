@@ -4,6 +4,8 @@ import { ModelVersion, NetworkModel } from '@db/models/models.ts';
 import { User } from '@db/models/people.ts';
 import { ProjectCode } from '@db/models/teams.ts';
 import type { JobDocument } from '@/contracts/jobs.ts';
+import type { JobInputs } from '@/domain/jobs/job-inputs.ts';
+import type { PrecisionTarget } from '@/domain/jobs/precision.ts';
 import { isFinal } from '@/domain/jobs/job-state.ts';
 import { env } from '../env.ts';
 
@@ -61,6 +63,7 @@ function present(
     overrides: inputs.overrides,
     keptTraces: inputs.keptTraces,
     passages: inputs.passages ?? [],
+    stopping: inputs.stopping ? presentTarget(inputs.stopping, inputs) : null,
     points: 1,
     replicatesPlanned: job.replicatesPlanned,
     replicatesDone: job.replicatesDone,
@@ -72,7 +75,7 @@ function present(
     stopReason: ending?.reason ?? null,
     stopDetail: ending?.detail ?? null,
     failure: ending?.failure ?? null,
-    precisionReached: null,
+    precisionReached: inputs.stopping && over ? ending?.reason === 'precision_reached' : null,
     seed: job.seed,
     kernel: job.kernel ?? null,
     engineVersion: job.engineVersion,
@@ -87,6 +90,16 @@ function present(
     finishedAt: job.finishedAt ?? null,
   };
 }
+
+const presentTarget = (
+  { observable, gridPoint, halfWidth }: PrecisionTarget,
+  { horizon, gridIntervals }: JobInputs,
+): JobDocument['stopping'] => ({
+  kind: 'precision',
+  observable,
+  time: (gridPoint * horizon) / gridIntervals,
+  ...halfWidth,
+});
 
 /** At the rate seen so far and with all workers; what waits before it is not counted. */
 function secondsLeft(job: Job): number | null {
