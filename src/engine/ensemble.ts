@@ -9,7 +9,14 @@ import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 import type { BlockShare } from './statistics/blocks.ts';
 
 export type StreamPurpose = 'job' | 'pilot' | 'preview';
-export type KernelName = 'direct-scalar' | 'direct-simd' | 'composition-rejection' | 'tau-leaping' | 'reference';
+export type KernelName =
+  | 'direct-scalar'
+  | 'direct-simd'
+  | 'composition-rejection'
+  | 'tau-leaping'
+  /** Plain and slow: of the direct method, and of composition-rejection. */
+  | 'reference'
+  | 'composition-rejection-reference';
 
 /**
  * A first passage: when the observable first is at least (`rises_to`) or at most (`falls_to`) the threshold. Looked at at

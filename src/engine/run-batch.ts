@@ -4,7 +4,9 @@ import { chooseKernel } from './choose-kernel.ts';
 import type { BatchResult, BatchTask, KernelName, ModelFailure, Trace } from './ensemble.ts';
 import { initialState, scheduleOf } from './exact/changes.ts';
 import { gridTimes, largestHorizon } from './exact/direct-method.ts';
+import { groupSelection } from './exact/reference-groups.ts';
 import { referenceRunner } from './exact/reference-runner.ts';
+import { compositionRejectionRunner } from './kernel/composition-runner.ts';
 import { directScalarRunner, directSimdRunner } from './kernel/direct-runner.ts';
 import { constantValues, prepareNetwork } from './kernel/prepare-network.ts';
 import { streamBase } from './random/stream-key.ts';
@@ -64,6 +66,10 @@ function runnerOf(kernel: KernelName, point: PointTask): GroupRunner | Promise<G
       return directScalarRunner(point);
     case 'direct-simd':
       return directSimdRunner(point);
+    case 'composition-rejection-reference':
+      return referenceRunner(point, groupSelection);
+    case 'composition-rejection':
+      return compositionRejectionRunner(point);
     default:
       throw new RangeError(`the kernel ${kernel} is not part of this engine version`);
   }

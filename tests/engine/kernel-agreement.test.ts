@@ -23,9 +23,14 @@ const passages = fc.record({
   direction: fc.constantFrom('rises_to' as const, 'falls_to' as const),
   threshold: fc.constantFrom(0, 1, 3, 20, 40, 1000, 90_000.5),
 });
-const generatedKernels: KernelName[] = ['direct-scalar', 'direct-simd'];
+/** Each generated kernel with the reference of its method. */
+const generatedKernels: [KernelName, KernelName][] = [
+  ['direct-scalar', 'reference'],
+  ['direct-simd', 'reference'],
+  ['composition-rejection', 'composition-rejection-reference'],
+];
 
-describe.each(generatedKernels)('%s', (kernel) => {
+describe.each(generatedKernels)('%s', (kernel, reference) => {
   for (const [tame, changes] of [
     [true, 'none'],
     [false, 'none'],
@@ -57,7 +62,7 @@ describe.each(generatedKernels)('%s', (kernel) => {
               observable: passage.observable % network.observables.length,
             })),
           });
-          const expected = await outcome(task, 'reference');
+          const expected = await outcome(task, reference);
           expect(await outcome(task, kernel)).toEqual(expected);
           replicates += (expected as { events: number[] }).events.length;
           failures += (expected as { failure: unknown }).failure ? 1 : 0;

@@ -75,13 +75,13 @@ function nearest(value: number): number {
 
 /**
  * Lets triggered changes happen until none is due: conditions are looked at in document order, those that have become true
- * are due, the first due one in document order happens, and conditions are looked at again.
+ * are due, the first due one in document order happens, and conditions are looked at again. Answers how many were made.
  */
 export function settleTriggers(
   prepared: PreparedNetwork,
   constants: ArrayLike<number>,
   state: number[] | Float64Array,
-): ChangeFault | null {
+): ChangeFault | number {
   const due = new Set<number>();
   for (let made = 0; ; made++) {
     const values = stateValues(prepared, constants, state);
@@ -92,7 +92,7 @@ export function settleTriggers(
       state[held!] = holds;
     });
     const next = Math.min(...due);
-    if (next === Infinity) return null;
+    if (next === Infinity) return made;
     if (made === limits.changeCascade) return { kind: 'change_cascade', change: next };
     due.delete(next);
     const fault = makeChange(prepared, constants, state, next);
@@ -125,5 +125,6 @@ export function initialState(
       if (fault) return { state, fault };
     }
   }
-  return { state, fault: settleTriggers(prepared, constants, state) };
+  const settled = settleTriggers(prepared, constants, state);
+  return { state, fault: typeof settled === 'number' ? null : settled };
 }

@@ -1,4 +1,7 @@
-/** The direct method in plain TypeScript: the oracle that the generated kernels are held against, and the finder of causes. */
+/**
+ * A replicate in plain TypeScript: the oracle that the generated kernels are held against, and the finder of causes. How the
+ * next reaction is chosen is the method's own; here stands that of the direct method.
+ */
 import { logarithm } from '../kernel/elementary/logarithm.ts';
 import { evaluatePropensity, evaluateTerm, type StateValues } from '../kernel/evaluate.ts';
 import { largestCount, largestTotal } from '../kernel/memory-layout.ts';
@@ -56,6 +59,34 @@ export function prefixSums(
   return total <= largestTotal ? prefixes : { kind: 'not_a_number', reaction: null };
 }
 
+export type BadPropensity = Exclude<ReturnType<typeof prefixSums>, number[]>;
+
+/** How a method finds the next reaction of one replicate. */
+export interface Selection {
+  /**
+   * Looks at the state after reaction `fired` (null: after anything) and answers the total propensity or what spoils it.
+   */
+  total(state: StateValues, fired: number | null): number | BadPropensity;
+  /** The reaction that a uniform in [0, 1) chooses; further ones may be drawn. */
+  choose(uniform: number, draw: () => number): number;
+}
+
+export function directSelection(prepared: PreparedNetwork): Selection {
+  let prefixes: number[] = [];
+  return {
+    total(state) {
+      const sums = prefixSums(prepared, state);
+      if (!Array.isArray(sums)) return sums;
+      prefixes = sums;
+      return prefixes.at(-1) ?? 0;
+    },
+    choose(uniform) {
+      const threshold = uniform * prefixes.at(-1)!;
+      return prefixes.findIndex((prefix) => prefix > threshold);
+    },
+  };
+}
+
 /** Notes the passages that the present state, which began at `time`, makes for the first time. */
 function notePassages(prepared: PreparedNetwork, state: StateValues, passages: number[], time: number): void {
   prepared.passages.forEach(({ value, direction, threshold }, passage) => {
@@ -66,7 +97,10 @@ function notePassages(prepared: PreparedNetwork, state: StateValues, passages: n
 }
 
 /** One replicate. */
-export function runReferenceReplicate(task: ReferenceTask): ReferenceReplicate {
+export function runReferenceReplicate(
+  task: ReferenceTask,
+  selection = directSelection(task.prepared),
+): ReferenceReplicate {
   const { prepared, constants, gridTimes, schedule } = task;
   const generator = new Xoshiro256(task.generator);
   const counts = Array.from(task.initialState);
@@ -82,15 +116,16 @@ export function runReferenceReplicate(task: ReferenceTask): ReferenceReplicate {
   });
   let time = 0;
   let nextChange = 0;
+  let fired: number | null = null;
   const nextGridTime = (): number => (replicate.counts.length === 0 ? -1 : gridTimes[replicate.counts.length]!);
   nextState: for (;;) {
-    const cascade = settleTriggers(prepared, constants, counts);
-    if (cascade) return failAtChange(cascade, time);
+    const settled = settleTriggers(prepared, constants, counts);
+    if (typeof settled !== 'number') return failAtChange(settled, time);
+    if (settled > 0) fired = null;
     const state = stateValues(prepared, constants, counts);
     notePassages(prepared, state, passages, time);
-    const prefixes = prefixSums(prepared, state);
-    if (!Array.isArray(prefixes)) return fail(prefixes.kind, prefixes.reaction, time);
-    const total = prefixes.at(-1) ?? 0;
+    const total = selection.total(state, fired);
+    if (typeof total !== 'number') return fail(total.kind, total.reaction, time);
     const waitingDraw = uniform52(generator.next());
     const choiceDraw = uniform52(generator.next());
     const newTime = total === 0 ? Infinity : time - logarithm(1 - waitingDraw) / total;
@@ -102,6 +137,7 @@ export function runReferenceReplicate(task: ReferenceTask): ReferenceReplicate {
           const fault = makeChange(prepared, constants, counts, schedule[nextChange]!.change);
           if (fault) return failAtChange(fault, time);
         }
+        fired = null;
         continue nextState;
       }
       replicate.counts.push(prepared.countObservables.map((species) => counts[species]!));
@@ -109,13 +145,13 @@ export function runReferenceReplicate(task: ReferenceTask): ReferenceReplicate {
       if (replicate.counts.length === gridTimes.length) return replicate;
     }
     if (replicate.firings >= task.eventLimit) return fail('event_limit', null, newTime);
-    const threshold = choiceDraw * total;
-    const chosen = prefixes.findIndex((prefix) => prefix > threshold);
+    const chosen = selection.choose(choiceDraw, () => uniform52(generator.next()));
     const { changes } = prepared.reactions[chosen]!;
     if (changes.some(({ species, count }) => counts[species]! + count > largestCount))
       return fail('count_overflow', chosen, newTime);
     for (const { species, count } of changes) counts[species]! += count;
     time = newTime;
+    fired = chosen;
     replicate.firings++;
   }
 }

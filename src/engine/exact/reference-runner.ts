@@ -9,9 +9,14 @@ import {
 import type { ModelFailure } from '../ensemble.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 import { replicateState } from '../random/stream-key.ts';
-import { runReferenceReplicate, type Cause } from './reference-direct.ts';
+import type { PreparedNetwork } from '../kernel/prepared-network.ts';
+import { directSelection, runReferenceReplicate, type Cause, type Selection } from './reference-direct.ts';
 
-export function referenceRunner(task: PointTask): GroupRunner {
+/** `selection`: the method, begun anew for each replicate. */
+export function referenceRunner(
+  task: PointTask,
+  selection: (prepared: PreparedNetwork) => Selection = directSelection,
+): GroupRunner {
   const { prepared, network, gridTimes, slots } = task;
   const outcome: GroupOutcome = {
     completed: 0,
@@ -29,11 +34,10 @@ export function referenceRunner(task: PointTask): GroupRunner {
         const replicate = first + slot;
         const eventLimit = Math.min(task.eventLimit, left);
         const generator = replicateState(task.streamBase, replicate);
-        const { cause, firings, counts, reals, passages } = runReferenceReplicate({
-          ...task,
-          generator,
-          eventLimit,
-        });
+        const { cause, firings, counts, reals, passages } = runReferenceReplicate(
+          { ...task, generator, eventLimit },
+          selection(prepared),
+        );
         if (cause) {
           const spent = cause.kind === 'event_limit' && left < task.eventLimit;
           return { ...outcome, completed: slot, end: spent ? 'allowance_spent' : failureOf(network, cause, replicate) };

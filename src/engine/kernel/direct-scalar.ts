@@ -4,6 +4,7 @@
  */
 import { emitLogarithmOfNormal } from './elementary/logarithm.ts';
 import {
+  emitAssignments,
   emitChangeTime,
   emitScheduledChanges,
   emitSettleTriggers,
@@ -137,7 +138,7 @@ export function directScalarModule(prepared: PreparedNetwork, module = new Modul
     prepared,
     fn,
     expressions,
-    assigned,
+    assign: () => emitAssignments(prepared, expressions, assigned),
     state,
     fail: (answer, change) => [memory('i32.store', control.failedIndex, address, i32(change)), ...stop(answer)],
   };
@@ -260,7 +261,7 @@ function emitPropensities(
   const propensity = fn.local('f64', 'propensity');
   const bad = fn.local('i32', 'bad');
   statements.push(set(bad, i32(0)));
-  prepared.assigned.forEach((term, index) => statements.push(...expressions.assign(assigned[index]!, term)));
+  statements.push(...emitAssignments(prepared, expressions, assigned));
   prepared.reactions.forEach((reaction, index) => {
     const prefix = fn.local('f64', `prefix${index}`);
     const previous = prefixes.at(-1);

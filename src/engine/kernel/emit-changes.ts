@@ -31,12 +31,19 @@ export interface ChangeContext {
   prepared: PreparedNetwork;
   fn: FunctionBuilder;
   expressions: ExpressionEmitter<'scalar'>;
-  /** Locals of the assigned parameters, brought up to date before they are read. */
-  assigned: Local<'f64'>[];
+  /** Brings the assigned parameters up to date. */
+  assign(): Node[];
   state: { get(place: number): Node<'f64'>; set(place: number, value: Node<'f64'>): Node };
   /** What to do where a change cannot be made; the state is as before it. */
   fail(answer: number, change: number): Node[];
 }
+
+/** Works out the assigned parameters into their locals. */
+export const emitAssignments = (
+  prepared: PreparedNetwork,
+  expressions: ExpressionEmitter<'scalar'>,
+  assigned: Local<'f64'>[],
+): Node[] => prepared.assigned.flatMap((term, index) => expressions.assign(assigned[index]!, term));
 
 export const timedChanges = ({ changes }: PreparedNetwork): number[] =>
   changes.flatMap(({ condition }, change) => (condition === null ? [change] : []));
@@ -46,9 +53,6 @@ const triggeredChanges = ({ changes }: PreparedNetwork): number[] =>
 
 export const hasTriggers = ({ changes }: PreparedNetwork): boolean =>
   changes.some(({ condition }) => condition !== null);
-
-export const emitAssigned = ({ prepared, expressions, assigned }: ChangeContext): Node[] =>
-  prepared.assigned.flatMap((term, index) => expressions.assign(assigned[index]!, term));
 
 /** Makes one change: all values first, then their check, then all sets. */
 function emitMakeChange(context: ChangeContext, change: number): Node[] {
@@ -70,7 +74,7 @@ function emitMakeChange(context: ChangeContext, change: number): Node[] {
     ];
   };
   return [
-    ...emitAssigned(context),
+    ...context.assign(),
     ...sets.flatMap(({ local, value }) => expressions.assign(local, value)),
     set(bad, i32(0)),
     ...sets.flatMap(check),
@@ -79,13 +83,12 @@ function emitMakeChange(context: ChangeContext, change: number): Node[] {
   ];
 }
 
-/** Lets triggered changes happen until none is due. */
-export function emitSettleTriggers(context: ChangeContext): Node[] {
+/** Lets triggered changes happen until none is due; leaves in `made` how many were made. */
+export function emitSettleTriggers(context: ChangeContext, made = context.fn.local('i32', 'made')): Node[] {
   const { prepared, fn, expressions, state } = context;
   const triggered = triggeredChanges(prepared);
   if (triggered.length === 0) return [];
   const again = label('lookAgain');
-  const made = fn.local('i32', 'made');
   const holds = fn.local('f64', 'holds');
   const due = new Map(triggered.map((change) => [change, fn.local('i32', `due${change}`)]));
   const look = triggered.flatMap((change) => {
@@ -106,7 +109,7 @@ export function emitSettleTriggers(context: ChangeContext): Node[] {
       branch(again),
     ]),
   );
-  return [set(made, i32(0)), loop(again, ...emitAssigned(context), ...look, ...makeFirstDue)];
+  return [set(made, i32(0)), loop(again, ...context.assign(), ...look, ...makeFirstDue)];
 }
 
 /** The time of the entry at `index` of the schedule. */

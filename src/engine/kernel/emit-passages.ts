@@ -1,6 +1,5 @@
 /** Notes times of first passage in the table of results: when the value of a passage first is at or past its threshold. */
 import type { ChangeContext } from './emit-changes.ts';
-import { emitAssigned } from './emit-changes.ts';
 import { control } from './memory-layout.ts';
 import { f64, get, i32, memory, op, set, when, type Local, type Node } from './wasm/node.ts';
 
@@ -36,7 +35,7 @@ export function emitPassages(
   const all = 2 ** prepared.passages.length - 1;
   return [
     when(op('i32.ne', get(passed), i32(all)), [
-      ...emitAssigned(context),
+      ...context.assign(),
       ...prepared.passages.map(({ value: term, direction, threshold }, passage) =>
         when(op('i32.eqz', op('i32.and', get(passed), i32(1 << passage))), [
           ...expressions.assign(value, term),

@@ -2,7 +2,13 @@
  * The SIMD kernel's functions for single lanes, called where a lane needs attention: it passed a grid time, finished, met
  * something that only the scalar kernel handles, or has to be filled with the next replicate.
  */
-import { emitChangeTime, emitScheduledChanges, timedChanges, type ChangeContext } from './emit-changes.ts';
+import {
+  emitAssignments,
+  emitChangeTime,
+  emitScheduledChanges,
+  timedChanges,
+  type ChangeContext,
+} from './emit-changes.ts';
 import { ExpressionEmitter } from './emit-expression.ts';
 import { emitSeeding } from './emit-random.ts';
 import { emitGridTime, emitRecording, emitReplicateKey, emitStoreFirings } from './emit-recording.ts';
@@ -149,7 +155,7 @@ function attendFunction(
     prepared,
     fn,
     expressions,
-    assigned,
+    assign: () => emitAssignments(prepared, expressions, assigned),
     state: {
       get: species,
       set: (place, value) => lane.setReal(layout.countsBefore + place * layout.tableBytes, value),
@@ -167,9 +173,7 @@ function attendFunction(
     when(op('i32.eqz', get(sane)), handOver()),
     set(newTime, lane.real(layout.newTime)),
     set(gridIndex, lane.whole(layout.gridIndex)),
-    ...(prepared.realObservables.length > 0
-      ? prepared.assigned.flatMap((term, index) => expressions.assign(assigned[index]!, term))
-      : []),
+    ...(prepared.realObservables.length > 0 ? emitAssignments(prepared, expressions, assigned) : []),
     ...(timed
       ? [
           set(nextGridTime, emitGridTime(gridIndex)),
