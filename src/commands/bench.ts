@@ -7,6 +7,7 @@ import os from 'node:os';
 import { parseArgs } from 'node:util';
 import { compilerFlags, compilerVersion } from '@tests/bench/c-baselines.ts';
 import { measureColdStart } from '@tests/bench/measure-cold-start.ts';
+import { measureLargeNetworks } from '@tests/bench/measure-large-networks.ts';
 import { measureSmallNetworks } from '@tests/bench/measure-small-networks.ts';
 import { measureTwoWorkers } from '@tests/bench/measure-two-workers.ts';
 import type { BenchRow } from '@tests/bench/rows.ts';
@@ -20,6 +21,11 @@ if (!compiler) console.error('gcc was not found: the rows against C are left out
 
 const rows: BenchRow[] = [
   ...(compiler ? await measureSmallNetworks({ rounds, eventsPerRound: values.quick ? 5e6 : 4e7 }) : []),
+  ...(await measureLargeNetworks({
+    rounds,
+    eventsPerRound: values.quick ? 1e7 : 4e7,
+    compiler: compiler !== null,
+  })),
   await measureColdStart({ rounds }),
   await measureTwoWorkers({ rounds: values.quick ? 1 : 3, eventsPerRound: values.quick ? 2e7 : 2e8 }),
 ];

@@ -1,7 +1,13 @@
 /** One cell of the table of speed and size that the bench prints. */
 
 export interface BenchRow {
-  measure: 'events-vs-hand-c' | 'events-vs-generic-c' | 'two-workers' | 'cold-start-ms';
+  measure:
+    | 'events-vs-hand-c'
+    | 'events-vs-generic-c'
+    | 'large-network-vs-c'
+    | 'cost-growth-100-to-10000'
+    | 'two-workers'
+    | 'cold-start-ms';
   network: string;
   value: number;
   unit: string;

@@ -15,7 +15,7 @@ import {
   species,
 } from '@tests/factories/networks.ts';
 
-const kernels: KernelName[] = ['reference', 'direct-scalar', 'direct-simd'];
+const kernels: KernelName[] = ['reference', 'direct-scalar', 'direct-simd', 'composition-rejection'];
 const bytes = (summary: { encode(): Uint8Array }): string => Buffer.from(summary.encode()).toString('base64');
 
 /** Two-species network with a named observable that is not whole. */
@@ -49,8 +49,14 @@ function merged(results: BatchResult[], encoded: boolean): Summary {
   return first!;
 }
 
-describe('splitting into batches', () => {
-  const task = batchTask(withNamedObservable, { replicateCount: 1500, gridIntervals: 5, horizon: 2, keptTraces: 9 });
+describe.each(['direct-simd', 'composition-rejection'] as const)('splitting into batches, by %s', (kernel) => {
+  const task = batchTask(withNamedObservable, {
+    kernel,
+    replicateCount: 1500,
+    gridIntervals: 5,
+    horizon: 2,
+    keptTraces: 9,
+  });
 
   it('gives the same summary bytes, event counts and traces with batches of 1, 7 and 1000', async () => {
     const whole = await runBatch(task);

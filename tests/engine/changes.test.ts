@@ -21,7 +21,7 @@ import {
 } from '@tests/factories/networks.ts';
 import { expectDistribution, expectMean, expectShare } from './statistical-checks.ts';
 
-const kernels: KernelName[] = ['reference', 'direct-scalar', 'direct-simd'];
+const kernels: KernelName[] = ['reference', 'direct-scalar', 'direct-simd', 'composition-rejection'];
 
 const setSpecies = (index: number, expression: Expression) => ({
   target: { kind: 'species' as const, index },

@@ -36,15 +36,17 @@ export function network(sketch: NetworkSketch): ResolvedNetwork {
   const ids = Object.keys(sketch.counts);
   const boundary = new Set(sketch.boundary);
   const parameters = Object.entries(sketch.parameters ?? {}).map(([id, value]) => ({ id, value }));
+  const places = new Map(ids.map((id, index) => [id, index]));
   const amounts = (given: Amounts = {}): { species: number; count: number }[] =>
-    Object.entries(given).map(([id, count]) => ({ species: ids.indexOf(id), count }));
+    Object.entries(given).map(([id, count]) => ({ species: places.get(id)!, count }));
   const reactions = sketch.reactions.map(({ id, consumes, produces, rate }, index): ResolvedReaction => {
-    const changes = ids
-      .map((name, at) => ({
-        species: at,
+    const changes = [...new Set([...Object.keys(consumes ?? {}), ...Object.keys(produces ?? {})])]
+      .map((name) => ({
+        species: places.get(name)!,
         count: boundary.has(name) ? 0 : (produces?.[name] ?? 0) - (consumes?.[name] ?? 0),
       }))
-      .filter(({ count }) => count !== 0);
+      .filter(({ count }) => count !== 0)
+      .sort((a, b) => a.species - b.species);
     const name = id ?? `R${index + 1}`;
     if (typeof rate !== 'number')
       return { id: name, reactants: amounts(consumes), changes, law: { kind: 'expression', expression: rate } };

@@ -7,7 +7,7 @@ import { emitLogarithmOfNormal } from './elementary/logarithm.ts';
 import { emitChangeTime } from './emit-changes.ts';
 import { emitNext, emitSeeding, generatorLocals, onePlusUniform } from './emit-random.ts';
 import { emitGridTime, emitReplicateKey, emitStoreFirings } from './emit-recording.ts';
-import { emitRefresh, groupFunctions, offsetInPage, pageEntry } from './group-functions.ts';
+import { groupFunctions, offsetInPage, pageEntry } from './group-functions.ts';
 import { change, firing, group, record, type GroupLayout } from './group-layout.ts';
 import { scalarLanes as lanes } from './lanes.ts';
 import { control, largestCount, largestTotal, status, structureLayout } from './memory-layout.ts';
@@ -111,8 +111,7 @@ export function compositionRejectionModule(
         ]
       : []),
     ...(state.notePassages ? [call(state.notePassages, get(slot), get(time))] : []),
-    set(at, list(firing.lists)),
-    emitRefresh(groups.refresh, at, list(firing.listsEnd), stop(i32(status.badPropensity))),
+    ...groups.emitRefresh(fn, altered, stop(i32(status.badPropensity))),
   ];
 
   const activeGroup = memory('i32.load', 0, get(at));
@@ -198,7 +197,7 @@ export function compositionRejectionModule(
         ]),
         when(op('f64.ge', get(firings), get(eventLimit)), stop(i32(status.eventLimit), newTime)),
         ...choose,
-        set(altered, firingOf(layout, chosen)),
+        set(altered, memory('i32.load', record.firing, get(chosen))),
         ...emitFiring(fn, altered, [
           memory('i32.store', control.failedIndex, zero, indexOf(layout, chosen)),
           ...stop(i32(status.countOverflow), newTime),
@@ -216,10 +215,6 @@ export function compositionRejectionModule(
 
 const indexOf = (layout: GroupLayout, chosen: Local<'i32'>): Node<'i32'> =>
   op('i32.shr_u', op('i32.sub', get(chosen), i32(layout.records)), i32(Math.log2(record.bytes)));
-/** The entry of the table of firings of a record; both tables have the same step. */
-const firingOf = (layout: GroupLayout, chosen: Local<'i32'>): Node<'i32'> =>
-  op('i32.add', get(chosen), i32(layout.firings - layout.records));
-
 /** The group by the prefix sums from the largest exponent down, then members until one is taken; its record in `chosen`. */
 function emitChoice(
   layout: GroupLayout,
@@ -276,8 +271,8 @@ function emitFiring(fn: FunctionBuilder, fired: Local<'i32'>, overflow: Node[]):
   const count = fn.local('f64', 'count');
   const tooLarge = fn.local('i32', 'tooLarge');
   const end = memory('i32.load', firing.changesEnd, get(fired));
-  const step = memory('f64.load', change.count, get(at));
-  const begin = set(at, memory('i32.load', firing.changes, get(fired)));
+  const step = op('f64.convert_i32_s', memory('i32.load', change.count, get(at)));
+  const begin = set(at, op('i32.add', get(fired), i32(firing.changes)));
   return [
     set(tooLarge, zero),
     begin,

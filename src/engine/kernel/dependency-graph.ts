@@ -18,7 +18,7 @@ export interface DependencyGraph {
 /** A firing that alters more assigned parameters than this is taken to alter everything. */
 const mostAssigned = 256;
 /** Up to so many readers are made one list of a reaction's own, in the order of the reactions. */
-const mostInOwnList = 64;
+export const mostInOwnList = 64;
 
 interface Reads {
   places: Set<number>;

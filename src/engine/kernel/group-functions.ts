@@ -3,7 +3,18 @@
  * exact/composition-rejection.ts.
  */
 import { leastPropensity, roundingBits } from '../exact/composition-rejection.ts';
-import { group, groupCount, lawKind, list, order, pageShift, record, type GroupLayout } from './group-layout.ts';
+import {
+  firing,
+  functionShift,
+  group,
+  groupCount,
+  lawKind,
+  list,
+  order,
+  pageShift,
+  record,
+  type GroupLayout,
+} from './group-layout.ts';
 import { largestTotal } from './memory-layout.ts';
 import { largestHoistedOrder, type PreparedNetwork } from './prepared-network.ts';
 import { each } from './state-functions.ts';
@@ -48,18 +59,39 @@ const placeInPage = (index: Local<'i32'>): Node<'i32'> => op('i32.and', get(inde
 export interface GroupFunctions {
   /** clear(): no propensities, no members. */
   clear: Callable<'none'>;
-  /** refresh(begin, end): works out the propensities of a list of records and moves them; answers 1 at one that spoils the run. */
-  refresh: Callable<'i32'>;
+  /**
+   * Statements that refresh what the firing at `fired` alters; `bad` where a propensity spoils the run. `entry` is theirs.
+   */
+  emitRefresh(fn: FunctionBuilder, fired: Local<'i32'>, bad: Node[]): Node[];
 }
 
 export function groupFunctions(
-  { reactions }: PreparedNetwork,
+  { reactions: { length: reactions } }: PreparedNetwork,
   layout: GroupLayout,
   module: ModuleBuilder,
 ): GroupFunctions {
+  const rare = {
+    otherLaw: otherLawFunction(module),
+    activate: activateFunction(layout, module),
+    deactivate: deactivateFunction(layout, module),
+  };
+  const refresh = refreshFunction(layout, module, reactions, rare);
   return {
-    clear: clearFunction(layout, module, reactions.length),
-    refresh: refreshFunction(layout, module, reactions.length),
+    clear: clearFunction(layout, module, reactions),
+    emitRefresh(fn, fired, bad) {
+      const entry = fn.local('i32', 'entry');
+      const end = fn.local('i32', 'entriesEnd');
+      return [
+        set(entry, word(firing.changesEnd, get(fired))),
+        set(end, word(firing.ownListEnd, get(fired))),
+        emitRefreshList({ layout, fn, reactions, rare, entry, end: get(end), bad }),
+        set(entry, word(firing.lists, get(fired))),
+        set(end, word(firing.listsEnd, get(fired))),
+        each(entry, get(end), list.bytes, [
+          when(call(refresh, word(list.begin, get(entry)), word(list.end, get(entry))), bad),
+        ]),
+      ];
+    },
   };
 }
 
@@ -132,6 +164,8 @@ function deactivateFunction(layout: GroupLayout, module: ModuleBuilder): Functio
   );
 }
 
+const kindOf = (first: Node<'i32'>): Node<'i32'> => op('i32.and', first, i32(lawKind.bits));
+
 /** Mass action of any order from its table, or a law of the module's functions. */
 function otherLawFunction(module: ModuleBuilder): FunctionBuilder<'f64'> {
   const fn = module.function('otherLaw', [['record', 'i32']], 'f64');
@@ -145,13 +179,13 @@ function otherLawFunction(module: ModuleBuilder): FunctionBuilder<'f64'> {
   return fn.emit(
     ...(module.table.length > 0
       ? [
-          when(op('i32.eq', word(record.kind, get(at)), i32(lawKind.function)), [
-            giveBack(callIndirect([], [], word(record.first, get(at)))),
+          when(op('i32.eq', kindOf(word(record.first, get(at))), i32(lawKind.function)), [
+            giveBack(callIndirect([], [], op('i32.shr_u', word(record.first, get(at)), i32(functionShift)))),
           ]),
         ]
       : []),
     set(value, real(record.factor, get(at))),
-    set(entry, word(record.first, get(at))),
+    set(entry, subtract(word(record.first, get(at)), i32(lawKind.orders))),
     set(end, word(record.second, get(at))),
     each(entry, get(end), order.bytes, [
       set(count, real(0, word(order.place, get(entry)))),
@@ -168,11 +202,19 @@ function otherLawFunction(module: ModuleBuilder): FunctionBuilder<'f64'> {
   );
 }
 
-function refreshFunction(layout: GroupLayout, module: ModuleBuilder, reactions: number): FunctionBuilder<'i32'> {
-  const { half, mask } = roundingBits(reactions);
-  const otherLaw = otherLawFunction(module);
-  const activate = activateFunction(layout, module);
-  const deactivate = deactivateFunction(layout, module);
+/** The functions that a refresh calls where something rare happens. */
+interface RareFunctions {
+  otherLaw: Callable<'f64'>;
+  activate: Callable<'none'>;
+  deactivate: Callable<'none'>;
+}
+
+function refreshFunction(
+  layout: GroupLayout,
+  module: ModuleBuilder,
+  reactions: number,
+  rare: RareFunctions,
+): FunctionBuilder<'i32'> {
   const fn = module.function(
     'refresh',
     [
@@ -181,8 +223,29 @@ function refreshFunction(layout: GroupLayout, module: ModuleBuilder, reactions: 
     ],
     'i32',
   );
-  const entry = fn.parameter(0, 'i32');
+  const [entry, end] = [fn.parameter(0, 'i32'), fn.parameter(1, 'i32')];
+  const builder = fn as unknown as FunctionBuilder;
+  return fn.emit(
+    emitRefreshList({ layout, fn: builder, reactions, rare, entry, end: get(end), bad: [giveBack(i32(1))] }),
+    giveBack(zero),
+  );
+}
+
+/** Works out the propensities of the records listed from `entry` to before `end`, and moves them between groups. */
+function emitRefreshList(options: {
+  layout: GroupLayout;
+  fn: FunctionBuilder;
+  reactions: number;
+  rare: RareFunctions;
+  entry: Local<'i32'>;
+  end: Node<'i32'>;
+  bad: Node[];
+}): Node {
+  const { layout, fn, entry, end, bad } = options;
+  const { half, mask } = roundingBits(options.reactions);
+  const { otherLaw, activate, deactivate } = options.rare;
   const at = fn.local('i32', 'record');
+  const first = fn.local('i32', 'first');
   const kind = fn.local('i32', 'kind');
   const value = fn.local('f64', 'propensity');
   const old = fn.local('f64', 'oldPropensity');
@@ -205,11 +268,10 @@ function refreshFunction(layout: GroupLayout, module: ModuleBuilder, reactions: 
     );
   const addToSum = (target: Local<'i32'>, difference: Node<'f64'>): Node =>
     setReal(group.sum, get(target), op('f64.add', real(group.sum, get(target)), difference));
-  const countAt = (field: number): Node<'f64'> => real(0, word(field, get(at)));
   const product = op(
     'f64.mul',
-    op('f64.mul', real(record.factor, get(at)), countAt(record.first)),
-    op('f64.sub', countAt(record.second), op('f64.convert_i32_s', get(kind))),
+    op('f64.mul', real(record.factor, get(at)), real(0, subtract(get(first), get(kind)))),
+    op('f64.sub', real(0, word(record.second, get(at))), op('f64.convert_i32_s', get(kind))),
   );
   const rounded = op(
     'f64.reinterpret_i64',
@@ -247,36 +309,27 @@ function refreshFunction(layout: GroupLayout, module: ModuleBuilder, reactions: 
     setWord(group.size, get(newGroup), add(get(size), i32(1))),
     addToSum(newGroup, get(value)),
   ];
-  return fn.emit(
-    each(entry, get(fn.parameter(1, 'i32')), 4, [
-      set(at, word(0, get(entry))),
-      set(kind, word(record.kind, get(at))),
-      when(op('i32.le_u', get(kind), i32(lawKind.pairs)), [set(value, product)], [set(value, call(otherLaw, get(at)))]),
+  return each(entry, end, 4, [
+    set(at, word(0, get(entry))),
+    set(first, word(record.first, get(at))),
+    set(kind, kindOf(get(first))),
+    when(op('i32.le_u', get(kind), i32(lawKind.pairs)), [set(value, product)], [set(value, call(otherLaw, get(at)))]),
+    when(
+      op('i32.eqz', op('i32.and', op('f64.ge', get(value), f64(0)), op('f64.le', get(value), f64(largestTotal)))),
+      bad,
+    ),
+    set(value, rounded),
+    set(value, select(get(value), f64(0), op('f64.ge', get(value), f64(leastPropensity)))),
+    set(old, real(record.propensity, get(at))),
+    when(op('f64.ne', get(value), get(old)), [
+      setReal(record.propensity, get(at), get(value)),
+      set(oldGroup, groupOf(old)),
+      set(newGroup, groupOf(value)),
       when(
-        op('i32.eqz', op('i32.and', op('f64.ge', get(value), f64(0)), op('f64.le', get(value), f64(largestTotal)))),
-        [giveBack(i32(1))],
+        op('i32.eq', get(oldGroup), get(newGroup)),
+        [addToSum(newGroup, op('f64.sub', get(value), get(old)))],
+        [when(op('f64.ne', get(old), f64(0)), takeOut), when(op('f64.ne', get(value), f64(0)), putIn)],
       ),
-      set(value, rounded),
-      set(value, select(get(value), f64(0), op('f64.ge', get(value), f64(leastPropensity)))),
-      set(old, real(record.propensity, get(at))),
-      when(op('f64.ne', get(value), get(old)), [
-        setReal(record.propensity, get(at), get(value)),
-        set(oldGroup, groupOf(old)),
-        set(newGroup, groupOf(value)),
-        when(
-          op('i32.eq', get(oldGroup), get(newGroup)),
-          [addToSum(newGroup, op('f64.sub', get(value), get(old)))],
-          [when(op('f64.ne', get(old), f64(0)), takeOut), when(op('f64.ne', get(value), f64(0)), putIn)],
-        ),
-      ]),
     ]),
-    giveBack(zero),
-  );
-}
-
-/** Statements that refresh every list of a firing; `bad` when one spoils the run. */
-export function emitRefresh(refresh: Callable<'i32'>, entry: Local<'i32'>, end: Node<'i32'>, bad: Node[]): Node {
-  return each(entry, end, list.bytes, [
-    when(call(refresh, word(list.begin, get(entry)), word(list.end, get(entry))), bad),
   ]);
 }

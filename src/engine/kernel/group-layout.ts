@@ -3,7 +3,7 @@
  * reactions and their dependency graph, and the groups of one replicate. Addresses are bytes; numbers are i32 unless f64 is said.
  */
 import type { PointTask } from '../replicate-group.ts';
-import { dependencyGraph } from './dependency-graph.ts';
+import { dependencyGraph, mostInOwnList } from './dependency-graph.ts';
 import { structureLayout } from './memory-layout.ts';
 import type { PreparedNetwork, PreparedReaction } from './prepared-network.ts';
 
@@ -13,12 +13,13 @@ export const record = {
   factor: 0,
   /** f64: the rounded propensity. */
   propensity: 8,
-  /** By kind: two addresses of counts; begin and end of orders; the number of a function. */
+  /** By kind, which stands in the last bits of the first: two addresses of counts; begin and end of orders; number of a function. */
   first: 16,
   second: 20,
-  kind: 24,
   /** Address of the place in its group's list; meaningless for a propensity of 0. */
-  member: 28,
+  member: 24,
+  /** Address of what firing it does. */
+  firing: 28,
   bytes: 32,
 } as const;
 
@@ -26,21 +27,27 @@ export const record = {
  * Kinds of law. The first two are factor · first · (second − kind): up to two reactants, a 1 standing for the missing ones.
  * `orders` is mass action of any order, `function` everything else.
  */
-export const lawKind = { product: 0, pairs: 1, orders: 2, function: 3 } as const;
+export const lawKind = { product: 0, pairs: 1, orders: 2, function: 3, bits: 3 } as const;
+/** A function's number is shifted to make room for the kind. */
+export const functionShift = 3;
 
-/** What firing a reaction does: begins and ends of its changes, of its lists of reactions and of its list of assigned parameters. */
+/**
+ * What firing a reaction does. Its changes follow it in memory, and then its own list of records to refresh, so that both mostly
+ * lie in one line of the cache; lists shared between reactions stand elsewhere.
+ */
 export const firing = {
-  changes: 0,
-  changesEnd: 4,
+  changesEnd: 0,
+  ownListEnd: 4,
+  /** Begin and end of the table of shared lists, and of the list of assigned parameters. */
   lists: 8,
   listsEnd: 12,
   assigned: 16,
   assignedEnd: 20,
-  bytes: 32,
+  changes: 24,
 } as const;
 
-/** f64 change and the address of the count. */
-export const change = { count: 0, place: 8, bytes: 16 } as const;
+/** Change, and the address of the count. */
+export const change = { count: 0, place: 4, bytes: 8 } as const;
 /** Address of a count and its order. */
 export const order = { place: 0, count: 4, bytes: 8 } as const;
 /** Begin and end of a list of addresses of records. */
@@ -68,8 +75,7 @@ export interface GroupLayout {
   /** f64 values of the assigned parameters. */
   assigned: number;
   records: number;
-  /** One more than reactions: the last stands for a change that may alter everything. */
-  firings: number;
+  /** A firing that stands for a change that may alter everything. */
   everything: number;
   groups: number;
   /** Addresses of the groups that have members, from the largest exponent down, and how many. */
@@ -114,7 +120,6 @@ export function groupTables(prepared: PreparedNetwork): Tables {
   const pageCount = pagesPerGroup + Math.min(reactions.length, groupCount);
 
   const records = take(record.bytes * reactions.length);
-  const firings = take(firing.bytes * (reactions.length + 1));
   const one = take(8);
   const assigned = take(8 * prepared.assigned.length);
   const groups = take(group.bytes * groupCount);
@@ -125,23 +130,27 @@ export function groupTables(prepared: PreparedNetwork): Tables {
   const pages = take(pageBytes * pageCount);
   const pageTables = take(4 * pagesPerGroup * groupCount);
   const observables = take(4 * prepared.countObservables.length);
-  const changesOf = reactions.map(({ changes }) => take(change.bytes * changes.length));
   const ordersOf = reactions.map(({ law }) => (law.kind === 'massAction' ? take(order.bytes * law.orders.length) : 0));
   const everyReaction = reactions.map((_, index) => index);
   const everyAssigned = prepared.assigned.map((_, index) => index);
   const listsOf = [...graph.reactions, [everyReaction]];
   const assignedOf = [...graph.assigned, everyAssigned];
-  const listStarts = listsOf.map((lists) => take(list.bytes * lists.length));
+  const ownLists = listsOf.map((lists) => (lists.length === 1 && lists[0]!.length <= mostInOwnList ? lists[0]! : []));
+  const sharedLists = listsOf.map((lists, index) => (ownLists[index]!.length > 0 ? [] : lists));
+  const firings = ownLists.map((own, index) => {
+    end = Math.ceil(end / 64) * 64;
+    return take(firing.changes + change.bytes * (reactions[index]?.changes.length ?? 0) + 4 * own.length);
+  });
+  const listStarts = sharedLists.map((lists) => take(list.bytes * lists.length));
   const begins = new Map<readonly number[], number>();
-  for (const numbers of [...listsOf.flat(), ...assignedOf])
+  for (const numbers of [...sharedLists.flat(), ...assignedOf])
     if (!begins.has(numbers)) begins.set(numbers, take(4 * numbers.length));
 
   const layout: GroupLayout = {
     one,
     assigned,
     records,
-    firings,
-    everything: firings + firing.bytes * reactions.length,
+    everything: firings.at(-1)!,
     groups,
     active,
     activeCount,
@@ -165,12 +174,12 @@ export function groupTables(prepared: PreparedNetwork): Tables {
       const at = records + record.bytes * index;
       const { law } = reaction;
       const asRecord = (kind: number, first: number, second: number): void => {
-        whole(at + record.kind, kind);
-        whole(at + record.first, first);
+        whole(at + record.first, first | kind);
         whole(at + record.second, second);
+        whole(at + record.firing, firings[index]!);
       };
       if (law.kind === 'expression' || !inTables(reaction)) {
-        asRecord(lawKind.function, functionOf.get(index)!, 0);
+        asRecord(lawKind.function, functionOf.get(index)! << functionShift, 0);
       } else {
         const { factor, orders } = law;
         real(
@@ -189,19 +198,20 @@ export function groupTables(prepared: PreparedNetwork): Tables {
           whole(ordersOf[index]! + order.bytes * i + order.count, count);
         });
       }
-      reaction.changes.forEach(({ species, count }, i) => {
-        real(changesOf[index]! + change.bytes * i + change.count, count);
-        whole(changesOf[index]! + change.bytes * i + change.place, place(species));
-      });
     });
-    for (let index = 0; index <= reactions.length; index++) {
-      const at = firings + firing.bytes * index;
-      const changes = changesOf[index] ?? 0;
-      whole(at + firing.changes, changes);
-      whole(at + firing.changesEnd, changes + change.bytes * (reactions[index]?.changes.length ?? 0));
+    firings.forEach((at, index) => {
+      const changes = reactions[index]?.changes ?? [];
+      const changesEnd = at + firing.changes + change.bytes * changes.length;
+      changes.forEach(({ species, count }, i) => {
+        whole(at + firing.changes + change.bytes * i + change.count, count);
+        whole(at + firing.changes + change.bytes * i + change.place, place(species));
+      });
+      ownLists[index]!.forEach((other, i) => whole(changesEnd + 4 * i, records + record.bytes * other));
+      whole(at + firing.changesEnd, changesEnd);
+      whole(at + firing.ownListEnd, changesEnd + 4 * ownLists[index]!.length);
       whole(at + firing.lists, listStarts[index]!);
-      whole(at + firing.listsEnd, listStarts[index]! + list.bytes * listsOf[index]!.length);
-      listsOf[index]!.forEach((numbers, i) => {
+      whole(at + firing.listsEnd, listStarts[index]! + list.bytes * sharedLists[index]!.length);
+      sharedLists[index]!.forEach((numbers, i) => {
         const entry = listStarts[index]! + list.bytes * i;
         whole(entry + list.begin, begins.get(numbers)!);
         whole(entry + list.end, begins.get(numbers)! + 4 * numbers.length);
@@ -209,8 +219,8 @@ export function groupTables(prepared: PreparedNetwork): Tables {
       const rules = assignedOf[index]!;
       whole(at + firing.assigned, begins.get(rules)!);
       whole(at + firing.assignedEnd, begins.get(rules)! + 4 * rules.length);
-    }
-    for (const numbers of new Set(listsOf.flat()))
+    });
+    for (const numbers of new Set(sharedLists.flat()))
       numbers.forEach((index, i) => whole(begins.get(numbers)! + 4 * i, records + record.bytes * index));
     for (const numbers of assignedOf) numbers.forEach((index, i) => whole(begins.get(numbers)! + 4 * i, index));
     for (let exponent = 1; exponent < groupCount - 1; exponent++) {

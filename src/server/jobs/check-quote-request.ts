@@ -23,7 +23,6 @@ export function checkQuoteRequest(request: QuoteRequest, document: NetworkDocume
   const faults = [
     ...unknownPassages(request, resolved.network),
     ...unfitStopping(request, resolved.network),
-    ...tooManyReactions(resolved.network),
     ...notBuilt(request),
     ...tooLarge(request, resolved.network),
   ];
@@ -33,18 +32,6 @@ export function checkQuoteRequest(request: QuoteRequest, document: NetworkDocume
 }
 
 const fault = ({ path, code, message }: InputFault): InputFault => ({ path, code, message });
-
-function tooManyReactions({ reactions }: ResolvedNetwork): InputFault[] {
-  if (reactions.length <= limits.reactionsPerJob) return [];
-  const [present, most] = [reactions.length, limits.reactionsPerJob].map((count) => count.toLocaleString('en'));
-  return [
-    {
-      path: 'modelVersionId',
-      code: 'too_many_reactions',
-      message: `The model has ${present} reactions; models of up to ${most} can be run yet. It stays stored as it is.`,
-    },
-  ];
-}
 
 function notBuilt({ method, sweep }: QuoteRequest): InputFault[] {
   const faults: InputFault[] = [];
