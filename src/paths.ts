@@ -38,6 +38,7 @@ export const paths = {
   projectCodes: (team: string) => `/t/${team}/team/project-codes`,
   tokens: (team: string) => `/t/${team}/team/tokens`,
   operate: '/operate',
+  operateBooks: '/operate/books',
   operateInvoices: '/operate/invoices',
   operateInvoice: (invoice: string) => `/operate/invoices/${invoice}`,
   operateTransfers: '/operate/transfers',

@@ -26,6 +26,7 @@ export const errorTable: Record<RefusalCode, { status: number; title: string }> 
   cap_too_low: { status: 422, title: 'Cap too low' },
   insufficient_credits: { status: 402, title: 'Not enough credits' },
   too_many_jobs: { status: 409, title: 'Too many open jobs' },
+  budget_exceeded: { status: 409, title: 'Beyond the budget' },
   project_code_closed: { status: 409, title: 'Project code closed' },
   job_not_running: { status: 409, title: 'The job is not running' },
   job_not_finished: { status: 409, title: 'The job has not finished' },

@@ -2,11 +2,13 @@
 import { archiveContracts } from './archives.ts';
 import { authContracts } from './auth.ts';
 import { billingContracts } from './billing.ts';
+import { budgetContracts } from './budgets.ts';
 import type { Contract } from './contract.ts';
 import { readJobCost } from './job-cost.ts';
 import { jobContracts } from './jobs.ts';
 import { ledgerContracts } from './ledger.ts';
 import { networkContracts } from './network.ts';
+import { operateContracts } from './operate.ts';
 import { statementContracts } from './statements.ts';
 import { systemContracts } from './system.ts';
 import { teamContracts } from './teams.ts';
@@ -22,4 +24,6 @@ export const contracts: Contract[] = [
   ...ledgerContracts,
   ...billingContracts,
   ...statementContracts,
+  ...budgetContracts,
+  ...operateContracts,
 ];

@@ -18,6 +18,8 @@ export const health = contract({
         engineVersion: z.string(),
         database: z.literal('ok'),
         workers: z.number().int(),
+        /** `unknown` until it was verified since the start. */
+        ledger: z.enum(['whole', 'broken', 'unknown']),
       }),
     },
   ],

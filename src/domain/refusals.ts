@@ -29,6 +29,7 @@ export const refusalCodes = [
   'insufficient_credits',
   'too_many_jobs',
   'project_code_closed',
+  'budget_exceeded',
   'job_not_running',
   'job_not_finished',
   'results_not_ready',

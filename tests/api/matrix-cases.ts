@@ -31,6 +31,7 @@ const quote = {
 };
 const sbml = '<sbml xmlns="http://www.sbml.org/sbml/level3/version2/core" level="3" version="2"><model id="m"/></sbml>';
 const address = 'invited@matrix.example';
+const rates = { exact: 1, leap: 1 };
 
 export const cases: Record<string, Case> = {
   health: plain,
@@ -122,6 +123,24 @@ export const cases: Record<string, Case> = {
   exportStatement: plain,
   readYearSummary: plain,
   exportYearSummary: plain,
+  readBudgets: plain,
+  setBudgets: { body: { monthlyMicrocredits: null, lowBalanceMicrocredits: null } },
+  // our books
+  readBooks: plain,
+  listPriceBooks: plain,
+  addPriceBook: {
+    body: {
+      startsAt: '2020-01-01T00:00:00Z',
+      microcreditsPerMillionEvents: { steady: rates, express: rates, overnight: rates },
+      packs: [{ credits: 1, netMinor: { EUR: 1, GBP: 1, USD: 1 } }],
+    },
+  },
+  grantGoodwill: { body: { team: 'nobody-here', microcredits: 1, reason: 'Goodwill' } },
+  listOpenTransfers: plain,
+  listQuestionedInvoices: plain,
+  readQuestionedInvoice: plain,
+  answerInvoice: { body: { body: 'It is the order of May.' } },
+  listOperatorActs: plain,
   receivePaymentEvent: { body: '{}', contentType: 'application/json' },
 };
 

@@ -69,6 +69,10 @@ const ownerPages = [
   `${team}/overview`,
   `${team}/credits`,
   `${team}/billing/invoices`,
+  `${team}/credits/ledger`,
+  `${team}/billing/statements`,
+  `${team}/billing/statements/${new Date().toISOString().slice(0, 7)}`,
+  `${team}/billing/budget`,
   `${team}/billing/pro-formas`,
   `${team}/billing/details`,
   `${team}/team/members`,
@@ -101,6 +105,29 @@ describe.each([
     expect(faults).toEqual([]);
     await page.context().close();
   });
+});
+
+describe('pages of the operator', () => {
+  it.each([
+    ['light', 1440],
+    ['dark', 390],
+  ] as const)(
+    'in the %s theme at %i pixels have no axe fault, console error or sideways scroll',
+    async (theme, width) => {
+      const options = { colorScheme: theme, viewport: { width, height: 900 } };
+      const { page, faults } = await openPage(browser, options);
+      const email = 'operator@burette.example';
+      await page.goto(`${app.url}/sign-in`);
+      await page.getByLabel('E-mail').fill(email);
+      await page.getByLabel('Password').fill(passwords.get(email)!);
+      await page.getByRole('button', { name: 'Sign in' }).click();
+      await page.waitForURL((url) => !url.pathname.startsWith('/sign-in'));
+      for (const name of ['books', 'transfers', 'invoices', 'credits', 'price-book', 'acts'])
+        await lookAt(page, `/operate/${name}`);
+      expect(faults).toEqual([]);
+      await page.context().close();
+    },
+  );
 });
 
 describe('without script', () => {

@@ -48,6 +48,10 @@ export function dayStartMs(day: string, timeZone: string, later = 0): number {
 export const yearIn = (atMs: number, timeZone: string): number =>
   new Date(localMs(wallClock(timeZone), atMs)).getUTCFullYear();
 
+/** `2026-12-01`: the calendar day of `atMs` in `timeZone`. */
+export const dayIn = (atMs: number, timeZone: string): string =>
+  new Date(localMs(wallClock(timeZone), atMs)).toISOString().slice(0, 10);
+
 /** `2026-12`: the calendar month of `atMs` in `timeZone`. */
 export const monthIn = (atMs: number, timeZone: string): string =>
   new Date(localMs(wallClock(timeZone), atMs)).toISOString().slice(0, 7);

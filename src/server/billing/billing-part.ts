@@ -1,5 +1,6 @@
-/** What of billing runs beside the requests: open payments are asked about, receipts go out, the ledger is verified. */
+/** What of billing runs beside the requests: open payments are asked about, receipts and alerts go out, the ledger is verified. */
 import { Cron } from 'croner';
+import { sendBudgetAlerts } from '../budgets/send-budget-alerts.ts';
 import { watchLedger } from '../ledger/watch-ledger.ts';
 import { log } from '../log.ts';
 import type { Part } from '../part.ts';
@@ -25,6 +26,7 @@ export const billingPart: Part = {
       await run('billing round', async () => {
         await reconcileTopUps();
         await sendReceipts();
+        await sendBudgetAlerts();
       });
     };
     const nightly = async (): Promise<void> => {

@@ -4,6 +4,8 @@ import { ProForma } from '@db/models/billing.ts';
 import { accept, refuse, type Result } from '@/domain/refusals.ts';
 import type { Actor } from '@/domain/teams/actor.ts';
 import { nowText } from '../clock.ts';
+import { recordAct } from '../operate/record-act.ts';
+import { requireOperator } from '../operate/require-operator.ts';
 import { issueBoughtCredits } from '../ledger/issue-bought-credits.ts';
 import { faceOf } from './face-of.ts';
 import { issueInvoice } from './issue-invoice.ts';
@@ -15,16 +17,20 @@ export async function markTransferReceived(options: {
   proFormaId: string;
 }): Promise<Result<{ invoiceId: string }>> {
   const { actor, proFormaId } = options;
-  if (actor.kind === 'anonymous') return refuse('not_signed_in', 'Sign in.');
-  const isOperator = actor.kind === 'system' || (actor.kind === 'user' && actor.operator);
-  if (!isOperator) return refuse('not_found', 'There is nothing here.');
+  const operator = requireOperator(actor);
+  if (!operator.ok) return operator;
   return inWriteTransaction(async () => {
     const row = await ProForma.findByPk(proFormaId);
     if (!row) return refuse('not_found', 'There is no such pro-forma.');
     if (row.state !== 'open' && row.state !== 'paid')
       return refuse('invalid_input', `This pro-forma is ${row.state}. Open a new one for this payment.`);
     const paidAt = nowText();
-    if (row.state === 'open') await row.update({ state: 'paid', decidedAt: paidAt });
+    const { userId } = operator.value;
+    if (row.state === 'open') {
+      await row.update({ state: 'paid', decidedAt: paidAt });
+      const { id: subjectId, number } = row;
+      await recordAct({ userId, act: 'mark_transfer_received', teamId: row.teamId, subjectId, details: { number } });
+    }
     const { teamId, creditsMicrocredits, netMinor, currency } = row;
     await issueBoughtCredits({
       teamId,
@@ -32,7 +38,7 @@ export async function markTransferReceived(options: {
       netMinor,
       currency,
       purchaseId: row.id,
-      userId: actor.kind === 'user' ? actor.userId : null,
+      userId,
       memo: { proFormaId: row.id },
     });
     const invoice = await issueInvoice({ teamId, face: faceOf(row), paidAt, proFormaId: row.id });

@@ -7,6 +7,7 @@ import { creditsText } from '@/domain/pricing/credits-text.ts';
 import { accept, refuse, type Result } from '@/domain/refusals.ts';
 import { nowText } from '../clock.ts';
 import { newId } from '../ids.ts';
+import { checkBudgets } from '../budgets/check-budgets.ts';
 import { holdCredits } from '../ledger/hold-credits.ts';
 import { Op } from 'sequelize';
 
@@ -58,6 +59,8 @@ export async function openSegment(options: {
   observables: number;
 }): Promise<Result<Segment>> {
   const { job, quote, userId, capMicrocredits, firstReplicate } = options;
+  const within = await checkBudgets({ teamId: job.teamId, projectCodeId: job.projectCodeId, capMicrocredits });
+  if (!within.ok) return within;
   const segmentId = newId('segment');
   const held = await holdCredits({
     teamId: job.teamId,

@@ -8,10 +8,16 @@ import { nowText } from '../clock.ts';
 import { log } from '../log.ts';
 import { verifyLedger, type Verification } from './verify-ledger.ts';
 
+const house = globalThis as typeof globalThis & { buretteLedger?: 'whole' | 'broken' };
+
+/** What the last verification of this process found. */
+export const ledgerStanding = (): 'whole' | 'broken' | 'unknown' => house.buretteLedger ?? 'unknown';
+
 /** Answers what was found and, when the ledger is whole, remembers how far. */
 export async function watchLedger(options: { full: boolean }): Promise<Verification> {
   const start = options.full ? undefined : await readCheckpoint();
   const found = await verifyLedger(start ? { start } : {});
+  house.buretteLedger = found.ok ? 'whole' : 'broken';
   if (!found.ok) {
     log().fatal({ ...found }, 'THE LEDGER IS BROKEN: stop selling and look at this transaction');
     return found;
