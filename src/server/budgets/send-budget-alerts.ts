@@ -42,7 +42,8 @@ async function alertTeam(teamId: string): Promise<number> {
   if (due.length === 0) return 0;
   const people = await financePeople(teamId);
   await inWriteTransaction(async () => {
-    for (const { ids, ...alert } of due) {
+    for (const alert of due) {
+      const { ids } = alert;
       for (const id of ids) await BudgetAlert.create({ teamId, month: budgets.month, alert: id, at: nowText() });
       const letter = letterOf(alert, team, budgets);
       for (const { email } of people)
@@ -56,7 +57,7 @@ async function alertTeam(teamId: string): Promise<number> {
   return due.length;
 }
 
-function letterOf(alert: Omit<DueAlert, 'ids'>, team: Team, { month }: BudgetsDocument): ComposedLetter {
+function letterOf(alert: DueAlert, team: Team, { month }: BudgetsDocument): ComposedLetter {
   if (alert.kind === 'low_balance')
     return composeLetter({
       subject: `${team.name}: ${creditsText(alert.availableMicrocredits)} left`,
