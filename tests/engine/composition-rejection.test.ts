@@ -15,6 +15,7 @@ import type { BatchTask } from '@/engine/ensemble.ts';
 import { roundedPropensity, roundingBits } from '@/engine/exact/composition-rejection.ts';
 import { compositionRejectionModule } from '@/engine/kernel/composition-rejection.ts';
 import { dependencyGraph } from '@/engine/kernel/dependency-graph.ts';
+import { directScalarModule } from '@/engine/kernel/direct-scalar.ts';
 import { groupTables } from '@/engine/kernel/group-layout.ts';
 import { prepareNetwork } from '@/engine/kernel/prepare-network.ts';
 import { encodeModule } from '@/engine/kernel/wasm/encode-module.ts';
@@ -317,6 +318,11 @@ describe('the choice of kernel', () => {
     expect(of(steadyChain(largestSimdNetwork + 2))).toBe(kernel);
     expect(of(hub(largestDenseNetwork))).toBe('direct-scalar');
     expect(of(hub(largestDenseNetwork + 1))).toBe(kernel);
+  });
+
+  it('leaves the scalar kernel able to hold 20,000 reactions, for who asks for it', () => {
+    const bytes = encodeModule(directScalarModule(prepareNetwork(steadyChain(20_000))));
+    expect(WebAssembly.validate(bytes)).toBe(true);
   });
 
   it('lets 20,000 reactions of one reactant run, all of which every firing alters', async () => {

@@ -33,6 +33,7 @@ import {
   memory,
   op,
   select,
+  sequence,
   set,
   when,
   type Local,
@@ -195,7 +196,7 @@ export function directScalarModule(prepared: PreparedNetwork, module = new Modul
         nextEvent,
         ...emitSettleTriggers(changing),
         ...emitPassages(changing, slot, time, passed),
-        ...propensities,
+        sequence('propensities', propensities),
         ...advance,
         when(op('i32.eqz', op('f64.le', get(newTime), nextStopTime)), [
           loop(

@@ -62,8 +62,11 @@ class ByteWriter {
 const emptyBlock = 0x40;
 const end = 0x0b;
 
+/** Encodes trees of any depth: what waits to be encoded stands in a list of its own, not on the host's stack. */
 class FunctionEncoder {
-  #labels: Label[] = [];
+  /** Position of each open label, counted from the outermost. */
+  #labels = new Map<Label, number>();
+  #waiting: (Node | (() => void))[] = [];
 
   constructor(
     readonly out: ByteWriter,
@@ -71,23 +74,48 @@ class FunctionEncoder {
     readonly typeIndex: (takes: readonly ValueType[]) => number,
   ) {}
 
+  encode(body: readonly Node[]): void {
+    this.#later(body);
+    for (let step = this.#waiting.pop(); step; step = this.#waiting.pop()) {
+      if (typeof step === 'function') {
+        step();
+      } else if (step.operands.length === 0) {
+        this.#own(step);
+      } else {
+        const node = step;
+        this.#waiting.push(() => this.#own(node));
+        this.#later(node.operands);
+      }
+    }
+  }
+
+  #later(nodes: readonly Node[]): void {
+    for (let index = nodes.length - 1; index >= 0; index--) this.#waiting.push(nodes[index]!);
+  }
+
   #depth(target: Label): number {
-    const position = this.#labels.lastIndexOf(target);
-    if (position < 0) throw new Error(`branch to ${target.name} from outside it`);
-    return this.#labels.length - 1 - position;
+    const position = this.#labels.get(target);
+    if (position === undefined) throw new Error(`branch to ${target.name} from outside it`);
+    return this.#labels.size - 1 - position;
   }
 
-  #structure(code: number, target: Label, body: readonly Node[]): void {
+  #structure(code: number, target: Label, body: readonly Node[], otherwise: readonly Node[] = []): void {
     this.out.bytes([code, emptyBlock]);
-    this.#labels.push(target);
-    for (const node of body) this.node(node);
-    this.#labels.pop();
-    this.out.byte(end);
+    this.#labels.set(target, this.#labels.size);
+    this.#waiting.push(() => {
+      this.#labels.delete(target);
+      this.out.byte(end);
+    });
+    if (otherwise.length > 0) {
+      this.#later(otherwise);
+      this.#waiting.push(() => this.out.byte(0x05));
+    }
+    this.#later(body);
   }
 
-  node({ operands, detail, name }: Node): void {
+  /** The node's own code, once that of its operands stands. */
+  #own({ detail, name }: Node): void {
     const { out } = this;
-    for (const operand of operands) this.node(operand);
     switch (detail.kind) {
       case 'operation':
         out.bytes(detail.code);
@@ -134,16 +162,7 @@ class FunctionEncoder {
       case 'loop':
         return this.#structure(0x03, detail.label, detail.body);
       case 'if':
-        out.bytes([0x04, emptyBlock]);
-        this.#labels.push({ name: 'if' });
-        for (const node of detail.body) this.node(node);
-        if (detail.otherwise.length > 0) {
-          out.byte(0x05);
-          for (const node of detail.otherwise) this.node(node);
-        }
-        this.#labels.pop();
-        out.byte(end);
-        return;
+        return this.#structure(0x04, { name: 'if' }, detail.body, detail.otherwise);
       case 'branch':
         out.byte(detail.conditional ? 0x0d : 0x0c);
         out.unsigned(this.#depth(detail.label));
@@ -188,7 +207,7 @@ function encodeBody(
     out.byte(valueTypeCodes[run.type]);
   }
   const encoder = new FunctionEncoder(out, functionIndex, typeIndex);
-  for (const node of builder.body) encoder.node(node);
+  encoder.encode(builder.body);
   out.byte(end);
   return out.view();
 }

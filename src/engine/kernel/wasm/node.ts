@@ -136,6 +136,9 @@ export const callIndirect = (takes: readonly ValueType[], operands: Node[], inde
 export const label = (name: string): Label => ({ name });
 export const block = (target: Label, ...body: Node[]): Node<'none'> =>
   node('block', 'none', [], { kind: 'block', label: target, body });
+/** A block of any number of statements: more than can be handed over as arguments. */
+export const sequence = (name: string, body: readonly Node[]): Node<'none'> =>
+  node('block', 'none', [], { kind: 'block', label: label(name), body });
 export const loop = (target: Label, ...body: Node[]): Node<'none'> =>
   node('loop', 'none', [], { kind: 'loop', label: target, body });
 export const when = (condition: Node<'i32'>, body: Node[], otherwise: Node[] = []): Node<'none'> =>
