@@ -128,7 +128,7 @@ describe('the main job', () => {
       // Quote, launch, watch.
       await page.getByRole('link', { name: /^Launch version 1/ }).click();
       await page.waitForURL(/\/jobs\/new/);
-      await page.getByLabel('Replicates').fill('5000');
+      await page.getByLabel('Replicates', { exact: true }).fill('5000');
       await page.getByLabel('Horizon').fill('20');
       const launch = page.getByRole('button', { name: /^Launch for up to/ });
       await launch.waitFor();

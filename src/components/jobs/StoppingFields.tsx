@@ -21,7 +21,7 @@ export function StoppingFields(props: {
         name="stopping"
         value={stopping.kind}
         choices={[
-          { value: 'replicates', label: 'After these replicates', hint: '' },
+          { value: 'replicates', label: 'When all are complete', hint: '' },
           {
             value: 'precision',
             label: 'Sooner, once a mean is known well enough',
