@@ -40,8 +40,9 @@ export async function openPage(
   return { page, faults };
 }
 
-/** What axe finds wrong on the present page, as readable lines (WCAG 2.2 A and AA). */
+/** What axe finds wrong on the present page once its islands are live, as readable lines (WCAG 2.2 A and AA). */
 export async function axeFaults(page: Page): Promise<string[]> {
+  await page.waitForFunction(() => document.querySelector('astro-island[ssr][client="load"]') === null);
   const { violations } = await new AxeBuilder({ page })
     .withTags(['wcag2a', 'wcag2aa', 'wcag21a', 'wcag21aa', 'wcag22aa'])
     .analyze();
