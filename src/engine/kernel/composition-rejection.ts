@@ -214,7 +214,7 @@ export function compositionRejectionModule(
 }
 
 const indexOf = (layout: GroupLayout, chosen: Local<'i32'>): Node<'i32'> =>
-  op('i32.shr_u', op('i32.sub', get(chosen), i32(layout.records)), i32(Math.log2(record.bytes)));
+  op('i32.div_u', op('i32.sub', get(chosen), i32(layout.records)), i32(record.bytes));
 /** The group by the prefix sums from the largest exponent down, then members until one is taken; its record in `chosen`. */
 function emitChoice(
   layout: GroupLayout,

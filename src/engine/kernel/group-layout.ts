@@ -20,7 +20,9 @@ export const record = {
   member: 24,
   /** Address of what firing it does. */
   firing: 28,
-  bytes: 32,
+  /** Room for a short firing, so that it lies beside what chooses it. */
+  ownFiring: 32,
+  bytes: 96,
 } as const;
 
 /**
@@ -138,8 +140,9 @@ export function groupTables(prepared: PreparedNetwork): Tables {
   const ownLists = listsOf.map((lists) => (lists.length === 1 && lists[0]!.length <= mostInOwnList ? lists[0]! : []));
   const sharedLists = listsOf.map((lists, index) => (ownLists[index]!.length > 0 ? [] : lists));
   const firings = ownLists.map((own, index) => {
-    end = Math.ceil(end / 64) * 64;
-    return take(firing.changes + change.bytes * (reactions[index]?.changes.length ?? 0) + 4 * own.length);
+    const bytes = firing.changes + change.bytes * (reactions[index]?.changes.length ?? 0) + 4 * own.length;
+    const fits = index < reactions.length && bytes <= record.bytes - record.ownFiring;
+    return fits ? records + record.bytes * index + record.ownFiring : take(bytes);
   });
   const listStarts = sharedLists.map((lists) => take(list.bytes * lists.length));
   const begins = new Map<readonly number[], number>();

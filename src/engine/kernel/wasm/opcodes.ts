@@ -56,6 +56,7 @@ export const instructions = {
   'i32.add': scalar(0x6a, 'i32', 'i32'),
   'i32.sub': scalar(0x6b, 'i32', 'i32'),
   'i32.mul': scalar(0x6c, 'i32', 'i32'),
+  'i32.div_u': scalar(0x6e, 'i32', 'i32'),
   'i32.and': scalar(0x71, 'i32', 'i32'),
   'i32.or': scalar(0x72, 'i32', 'i32'),
   'i32.xor': scalar(0x73, 'i32', 'i32'),
