@@ -3,7 +3,9 @@ import { identifierFault, reservedWords } from '@/domain/network/identifiers.ts'
 import type { Expression } from '@/domain/network/expression.ts';
 import { mapLeaves, symbolsOf } from '@/domain/network/expression-leaves.ts';
 import { ownNamespace } from './sbml-names.ts';
+import { timeId } from './read-mathml.ts';
 import type { SbmlReading } from './sbml-reading.ts';
+import { TimeSwitches } from './time-switches.ts';
 import type { XmlElement } from './xml-tree.ts';
 
 type Kind = 'compartment' | 'species' | 'parameter' | 'reaction';
@@ -20,6 +22,7 @@ export class ModelNames {
   /** Size symbol of species whose id means a concentration, null where it means the amount. */
   readonly sizeOf = new Map<string, string | null>();
   readonly compartmentOf = new Map<string, string>();
+  readonly timeSwitches: TimeSwitches;
   /** 1, or the factor by which amounts and laws were converted to items. */
   readonly itemsPerSubstance: number;
   /** Name of that factor among the parameters, null when it is 1. */
@@ -42,6 +45,8 @@ export class ModelNames {
       reaction: found('reaction'),
     };
     this.#taken = new Set(Object.values(all).flatMap((rows) => rows.map(({ written }) => written)));
+    for (const written of idsElsewhere(reading, model)) this.#taken.add(written);
+    this.timeSwitches = new TimeSwitches(reading, (wanted) => this.freeId(wanted));
     const named = (kind: Kind) =>
       all[kind].map(({ element, written }) => ({ element, id: this.#claim(element, written) }));
     this.#lists = {
@@ -81,12 +86,13 @@ export class ModelNames {
   }
 
   /**
-   * An expression of the file in the document's terms: renamed, amounts converted to items. Unknown names are refused at
-   * `element`. `local` lists the written ids of parameters that shadow others.
+   * An expression of the file in the document's terms: renamed, amounts converted to items, comparisons of the time with
+   * constants become switches. Unknown names are refused at `element`. `local` lists the written ids of parameters that
+   * shadow others.
    */
   inDocumentTerms(expression: Expression, element: XmlElement, local: ReadonlySet<string> = new Set()): Expression {
     for (const written of symbolsOf(expression)) if (!local.has(written)) this.#refuseUnknown(written, element);
-    return mapLeaves(expression, (leaf) => {
+    const own = mapLeaves(expression, (leaf) => {
       if (leaf.kind !== 'symbol') return leaf;
       const symbol: Expression = { kind: 'symbol', id: this.idOf(leaf.id) };
       const isAmount = this.factorId !== null && !local.has(leaf.id) && this.sizeOf.has(symbol.id);
@@ -94,6 +100,7 @@ export class ModelNames {
         ? { kind: 'binary', operator: 'divide', left: symbol, right: { kind: 'symbol', id: this.factorId! } }
         : symbol;
     });
+    return this.timeSwitches.putInto(own, element, new Set([...local].map((written) => this.idOf(written))));
   }
 
   /** A quantity in units of substance (or of substance per time or volume), in items. */
@@ -103,6 +110,7 @@ export class ModelNames {
   }
 
   #refuseUnknown(written: string, element: XmlElement): void {
+    if (written === timeId) return;
     const kind = this.elements.get(this.idOf(written))?.name;
     if (kind === undefined)
       this.#reading.refuse(element, 'unknown_name', `There is no species, parameter or compartment “${written}”.`);
@@ -157,6 +165,15 @@ export class ModelNames {
     if (reading.boolean(element, 'boundaryCondition', false) || reading.boolean(element, 'constant', false))
       this.#boundary.add(id);
   }
+}
+
+/** Ids of events and of parameters inside laws, which new names must not meet. */
+function idsElsewhere(reading: SbmlReading, model: XmlElement): string[] {
+  const inside = (parent: XmlElement, ...lists: string[]): XmlElement[] =>
+    parent.children.filter(({ name }) => lists.includes(name)).flatMap(({ children }) => children);
+  const laws = inside(model, 'listOfReactions').flatMap((reaction) => reading.child(reaction, 'kineticLaw') ?? []);
+  const locals = laws.flatMap((law) => inside(law, 'listOfLocalParameters', 'listOfParameters'));
+  return [...locals, ...inside(model, 'listOfEvents')].flatMap(({ attributes }) => attributes.get('id')?.trim() ?? []);
 }
 
 /** Whether the annotation of `element` bears our own mark `name`. */

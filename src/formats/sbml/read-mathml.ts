@@ -29,8 +29,10 @@ const elementsMost = 3 * leavesMost;
 /** As SBML Level 3 defines its symbol (value of CODATA 2006, kept by the specification; from memory). */
 const avogadro = 6.02214179e23;
 
+/** The symbol “time” in an expression that was read; no name of a file is written like this. See time-switches.ts. */
+export const timeId = '#time';
+
 const symbolAdvice: Record<string, string> = {
-  time: 'The symbol “time” cannot stand in an expression: with rates that drift in time the waiting times are no longer exponential. Make the rate constant.',
   delay:
     'The symbol “delay” is not supported: the state must not depend on the past. Model the delay as a chain of intermediate species.',
   rateOf: 'The symbol “rateOf” is not supported: counts change by jumps and have no rate. Write the law out.',
@@ -138,6 +140,7 @@ function readTwoParts(text: string, type: string): number {
 function readSymbol(element: XmlElement): Expression {
   const which = /([A-Za-z]+)\/?$/.exec(element.attributes.get('definitionURL')?.trim() ?? '')?.[1] ?? '';
   if (which === 'avogadro') return number(avogadro);
+  if (which === 'time') return { kind: 'symbol', id: timeId };
   const message = Object.hasOwn(symbolAdvice, which) ? symbolAdvice[which]! : `The symbol “${which}” is not supported.`;
   throw new MathFault(element, `symbol_${Object.hasOwn(symbolAdvice, which) ? which : 'unknown'}`, message);
 }
@@ -145,7 +148,10 @@ function readSymbol(element: XmlElement): Expression {
 function readApply(element: XmlElement, functions: ReadonlyMap<string, FunctionDefinition>): Expression {
   const [head, ...rest] = element.children;
   if (head === undefined) throw new MathFault(element, 'empty_math', '<apply> is empty.');
-  if (head.name === 'csymbol') return readSymbol(head);
+  if (head.name === 'csymbol') {
+    readSymbol(head);
+    throw new MathFault(head, 'unsupported_math', 'This symbol is no function, so it cannot be applied.');
+  }
   if (head.name === 'log' || head.name === 'root') return readQualified(head, rest, functions);
   const operands = rest.map((child) => read(child, functions));
   if (head.name === 'ci') return inlined(head, operands, functions);

@@ -27,6 +27,8 @@ export function startValuesOf(reading: SbmlReading, names: ModelNames, assigned:
     const before = known.get(id);
     if (before !== undefined) return before;
     if (id === names.factorId) return names.itemsPerSubstance;
+    const moment = names.timeSwitches.momentOf(id);
+    if (moment !== null) return evaluateExpression(moment, { symbol: valueOf }) > 0 ? 0 : 1;
     const element = names.elements.get(id);
     if (element === undefined) return NaN;
     if (open.has(id) || open.size > chainMost) {

@@ -89,7 +89,7 @@ function readModel(reading: SbmlReading, model: XmlElement): NetworkDocument | n
     });
   const timeUnit = units.textOf(model.attributes.get('timeUnits'));
   const changes = changesDuringRun(names, assigned);
-  const stateChanges = readChanges({ reading, names, start, changes }, model);
+  const events = readChanges({ reading, names, start, changes }, model);
   const recognised: XmlElement[] = [];
   const reactions = readReactions({
     reading,
@@ -107,11 +107,13 @@ function readModel(reading: SbmlReading, model: XmlElement): NetworkDocument | n
       `${recognised.length} of ${reactions.length} laws are mass action in every state and were read as such; the others were kept word for word.`,
     );
   }
+  const switches = names.timeSwitches.rows(start, changes);
+  const stateChanges = [...switches.changes, ...events];
   return {
     ...(timeUnit === undefined ? {} : { timeUnit }),
     compartments: readCompartments(reading, names, units, start, assigned),
     species,
-    parameters: parameters.filter(({ id }) => !observed.has(id)),
+    parameters: [...parameters.filter(({ id }) => !observed.has(id)), ...switches.parameters],
     assignmentRules: [...rules].flatMap(([variable, rule]) =>
       observed.has(variable) ? [] : [{ variable, expression: textOf(reading, rule.element, rule.expression) }],
     ),
