@@ -154,16 +154,13 @@ describe('the graduated column', () => {
     const { page } = await signIn('modeller');
     const column = page.getByRole('img', { name: /credits available/ }).first();
     expect(await column.getAttribute('aria-label')).toMatch(/^[\d.,]+ credits available\.$/);
-    await page.locator('aside[aria-label="Credits"] astro-island:not([ssr])').waitFor();
-    await page.evaluate(() =>
+    // Told again until the column has come to life and listens.
+    await page.waitForFunction(() => {
       window.dispatchEvent(
         new CustomEvent('burette:quote', { detail: { expectedMicrocredits: 5_000_000, highMicrocredits: 6_000_000 } }),
-      ),
-    );
-    await page
-      .getByRole('img', { name: /after the quote on this page/ })
-      .first()
-      .waitFor();
+      );
+      return document.querySelector('[role="img"][aria-label*="after the quote on this page"]') !== null;
+    });
     await page.context().close();
   });
 });
