@@ -59,9 +59,8 @@ describe('a script with curl', () => {
 });
 
 describe.each([
+  // Colours depend on the theme and layout on the width: two walks see both of each.
   { colorScheme: 'light', width: 1440 },
-  { colorScheme: 'dark', width: 1440 },
-  { colorScheme: 'light', width: 390 },
   { colorScheme: 'dark', width: 390 },
 ] as const)('the modeller’s pages, $colorScheme at $width px', ({ colorScheme, width }) => {
   it('have no axe fault, no console error and no sideways scroll', async () => {
