@@ -7,5 +7,6 @@ import { billing } from './0004-billing.ts';
 import { models } from './0005-models.ts';
 import { jobs } from './0006-jobs.ts';
 import { finance } from './0007-finance.ts';
+import { creditReturns } from './0008-credit-returns.ts';
 
-export const migrations: Migration[] = [people, teams, ledger, billing, models, jobs, finance];
+export const migrations: Migration[] = [people, teams, ledger, billing, models, jobs, finance, creditReturns];

@@ -130,6 +130,30 @@ export class InvoiceReview extends Model<Attributes<InvoiceReview>, Creation<Inv
   declare at: string;
 }
 
+/** Credits of a lot taken back, with their credit note and how the money goes. */
+export class CreditReturn extends Model<Attributes<CreditReturn>, Creation<CreditReturn>> {
+  declare id: string;
+  declare teamId: string;
+  declare cause: 'refund' | 'dispute';
+  declare lotId: string;
+  declare invoiceId: string;
+  declare creditNoteId: string;
+  declare amountMicrocredits: number;
+  declare netMinor: number;
+  declare taxMinor: number;
+  declare totalMinor: number;
+  declare currency: string;
+  declare reason: string;
+  declare userId: string | null;
+  declare state: 'pending' | 'sent' | 'failed' | 'by_transfer' | 'taken';
+  declare paymentIntentId: string | null;
+  declare idempotencyKey: string;
+  declare serviceRefundId: CreationOptional<string | null>;
+  declare problem: CreationOptional<string | null>;
+  declare createdAt: string;
+  declare sentAt: CreationOptional<string | null>;
+}
+
 export class TaxRateRow extends Model<Attributes<TaxRateRow>, Creation<TaxRateRow>> {
   declare country: string;
   declare rateHundredths: number;
@@ -270,6 +294,31 @@ export function defineBilling(sequelize: Sequelize): void {
       at: column.text(),
     },
     table('invoiceReviews'),
+  );
+  CreditReturn.init(
+    {
+      id: column.id(),
+      teamId: column.text(),
+      cause: column.text(),
+      lotId: column.text(),
+      invoiceId: column.text(),
+      creditNoteId: column.text(),
+      amountMicrocredits: column.integer(),
+      netMinor: column.integer(),
+      taxMinor: column.integer(),
+      totalMinor: column.integer(),
+      currency: column.text(),
+      reason: column.text(),
+      userId: column.optionalText(),
+      state: column.text(),
+      paymentIntentId: column.optionalText(),
+      idempotencyKey: column.text(),
+      serviceRefundId: column.optionalText(),
+      problem: column.optionalText(),
+      createdAt: column.text(),
+      sentAt: column.optionalText(),
+    },
+    table('creditReturns'),
   );
   TaxRateRow.init(
     {

@@ -6,9 +6,11 @@ import { invoiceContracts } from './invoices.ts';
 import { pageQuery } from './page.ts';
 import { proFormaContracts } from './pro-formas.ts';
 import { currency, line, money, pack } from './purchase.ts';
+import { refundContracts } from './refunds.ts';
 
 export * from './invoices.ts';
 export * from './pro-formas.ts';
+export * from './refunds.ts';
 export { money, type Money } from './purchase.ts';
 
 const team = ['not_signed_in', 'not_found', 'forbidden'] as const;
@@ -173,5 +175,6 @@ export const billingContracts = [
   setBillingDetails,
   ...invoiceContracts,
   ...proFormaContracts,
+  ...refundContracts,
   receivePaymentEvent,
 ];

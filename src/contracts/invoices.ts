@@ -17,7 +17,8 @@ export const invoiceSummary = z.object({
   issuedAt: z.string(),
   buyerName: z.string(),
   description: z.string(),
-  credits: z.number().int(),
+  /** Of a credit note: taken back, to six decimals. */
+  credits: z.number(),
   net: money,
   tax: money,
   total: money,

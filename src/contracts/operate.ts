@@ -193,6 +193,7 @@ export const operatorActKinds = [
   'grant_goodwill',
   'mark_transfer_received',
   'answer_invoice',
+  'refund_purchase',
 ] as const;
 
 export const operatorAct = z.object({

@@ -20,6 +20,7 @@ export type IdKind =
   | 'topup'
   | 'invoice'
   | 'proforma'
+  | 'return'
   | 'mail'
   | 'payment'
   | 'request'

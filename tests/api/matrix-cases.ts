@@ -141,6 +141,7 @@ export const cases: Record<string, Case> = {
   readQuestionedInvoice: plain,
   answerInvoice: { body: { body: 'It is the order of May.' } },
   listOperatorActs: plain,
+  refundPurchase: { body: { reason: 'Asked for.' } },
   receivePaymentEvent: { body: '{}', contentType: 'application/json' },
 };
 

@@ -2,6 +2,7 @@
  * Timed and triggered changes and first passages by every form of the direct method, against hand-derived expectations and
  * laws known in closed form (citations from memory, values recomputed). False-alarm rate: statistical-checks.ts.
  */
+import binomial from '@stdlib/stats-base-dists-binomial';
 import poisson from '@stdlib/stats-base-dists-poisson';
 import { describe, expect, it } from 'vitest';
 import type { Expression } from '@/domain/network/expression.ts';
@@ -176,6 +177,29 @@ describe('doses into immigration-death (superposition: old molecules die indepen
       counts.set(values[2]!, (counts.get(values[2]!) ?? 0) + 1);
     }
     expectDistribution(counts, (value) => poisson.pmf(value, lambda), n);
+  });
+
+  it('a dose of 50 at 4 and half the immigration from 6 on: at 10 binomial(50, e^−0.6) and Poisson together', async () => {
+    const n = 50_000;
+    const model = {
+      ...immigrationDeath(),
+      changes: [at([4], setSpecies(0, plus(50))), at([6], setParameter(0, number(5)))],
+    };
+    // ∫ rate · e^(−0.1 (10 − s)) ds: 100 (e^−0.4 − e^−1) up to 6, then 50 (1 − e^−0.4).
+    const lambda = 100 * (Math.exp(-0.4) - Math.exp(-1)) + 50 * (1 - Math.exp(-0.4));
+    const alive = Math.exp(-0.6);
+    const pmf = (value: number): number => {
+      let sum = 0;
+      for (let old = 0; old <= 50; old++) sum += binomial.pmf(old, 50, alive) * poisson.pmf(value - old, lambda);
+      return sum;
+    };
+    // Intervals of 2.5: the dose lies off the grid.
+    const { traces } = await runBatch(batchTask(model, { gridIntervals: 4, replicateCount: n, keptTraces: n }));
+    const counts = new Map<number, number>();
+    for (const { values } of traces) counts.set(values[4]!, (counts.get(values[4]!) ?? 0) + 1);
+    expectDistribution(counts, pmf, n);
+    const average = traces.reduce((sum, { values }) => sum + values[4]!, 0) / n;
+    expectMean(average, lambda + 50 * alive, Math.sqrt(lambda + 50 * alive * (1 - alive)), n);
   });
 });
 

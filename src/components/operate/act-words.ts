@@ -6,6 +6,7 @@ const words: Record<string, string> = {
   grant_goodwill: 'Goodwill granted',
   mark_transfer_received: 'Transfer marked received',
   answer_invoice: 'Invoice answered',
+  refund_purchase: 'Purchase refunded',
 };
 
 /** An act that is not in the list is shown by its stored name. */

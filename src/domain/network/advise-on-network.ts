@@ -15,19 +15,12 @@ const reactionsLookedInto = 2_000;
 
 /** Advice on `document`, of which `network` is the resolved form without overrides. */
 export function adviseOnNetwork(document: NetworkDocument, network: ResolvedNetwork): Problem[] {
-  // What a timed or triggered change sets is neither conserved nor idle for good.
-  const set = new Set(
-    (network.changes ?? []).flatMap(({ sets }) =>
-      sets.flatMap(({ target }) => (target.kind === 'species' ? [target.index] : [])),
-    ),
-  );
   const advice = [...neverFiring(network), ...idleConstants(network), ...badStarts(network), ...shadowing(document)];
   if (network.reactions.length > reactionsLookedInto) {
     const message = `With more than ${reactionsLookedInto.toLocaleString('en')} reactions, conserved totals, growth and laws without reactants are not looked into.`;
     return [...advice, information('reactions', 'not_looked_into', message)];
   }
-  const totals =
-    conservedTotals(network)?.filter(({ terms }) => terms.every(({ species }) => !set.has(species))) ?? null;
+  const totals = conservedTotals(network);
   return [
     ...advice,
     ...guarded(network),
@@ -52,6 +45,7 @@ function neverFiring(network: ResolvedNetwork): Problem[] {
 }
 
 function idleConstants(network: ResolvedNetwork): Problem[] {
+  // A change of a parameter may wake a constant, through rules too.
   if ((network.changes ?? []).some(({ sets }) => sets.some(({ target }) => target.kind === 'parameter'))) return [];
   const parameters = parameterValuesAt(
     network,

@@ -169,6 +169,9 @@ describe('timed and triggered changes', () => {
   it('cannot be timed by a parameter that another change sets', () => {
     const document = withChanges({ when: { kind: 'time', time: 'interval' } }, set('interval', '3'));
     expect(errors(document)).toEqual(['changes[0].when.time time_not_constant']);
+    const ruled = { ...document, assignmentRules: [{ variable: 'ruled', expression: '2 * interval' }] };
+    ruled.changes![0]!.when = { kind: 'time', time: 'ruled' };
+    expect(errors(ruled)).toEqual(['changes[0].when.time time_not_constant']);
   });
 
   it('make a species reachable, and end the conservation of what they set', () => {
@@ -177,6 +180,26 @@ describe('timed and triggered changes', () => {
     expect(advice(withChanges())).toContain('species[1].id conserved_total');
     expect(advice(withChanges({}))).not.toContain('reactions[0].equation never_fires');
     expect(advice(withChanges(set('C')))).not.toContain('species[1].id conserved_total');
+  });
+
+  it('leave the totals of the others: of A + B → C → D those without what is dosed', () => {
+    const species = ['A', 'B', 'C', 'D'].map((id) => ({ id, initialCount: 2 }));
+    const swap = (id: string, equation: string) => ({
+      id,
+      equation,
+      rateLaw: { kind: 'massAction' as const, constant: '1' },
+    });
+    // Weights with a + b = c = d, by hand: (1, 0, 1, 1) and (0, 1, 1, 1); with d = 0 too, (1, −1, 0, 0).
+    const document = { species, reactions: [swap('r', 'A + B → C'), swap('s', 'C → D')] };
+    const totals = (dosed: string) => {
+      const when = { kind: 'time' as const, time: '1' };
+      const changes = [{ id: 'dose', when, assignments: [{ variable: dosed, expression: '9' }] }];
+      return checkNetwork({ ...document, changes }).flatMap(({ code, message }) =>
+        code === 'conserved_total' ? [message] : [],
+      );
+    };
+    expect(totals('B')).toEqual(['Conserved: A + C + D = 6.']);
+    expect(totals('D')).toEqual(['Conserved: A − B = 0.']);
   });
 
   it('are part of the canonical form and of the difference', () => {

@@ -62,7 +62,7 @@ function checkConstant(
 ): Problem[] {
   if (expression === null) return [];
   for (const id of symbolsOf(expression)) {
-    const behind = speciesBehind(network, id) ?? (set.has(id) ? id : null);
+    const behind = speciesBehind(network, id, set);
     if (behind === null) continue;
     return [
       error(

@@ -83,8 +83,12 @@ function nameFault(
   }
 }
 
-/** The first species on which the value of `id` depends, following rules; null when there is none. */
-export function speciesBehind(network: ParsedNetwork, id: string): string | null {
+/** The first species, or name among `others`, on which the value of `id` depends, following rules; null when there is none. */
+export function speciesBehind(
+  network: ParsedNetwork,
+  id: string,
+  others: ReadonlySet<string> = new Set(),
+): string | null {
   const seen = new Set<string>();
   const waiting = [id];
   for (let next = waiting.pop(); next !== undefined; next = waiting.pop()) {
@@ -92,7 +96,7 @@ export function speciesBehind(network: ParsedNetwork, id: string): string | null
     seen.add(next);
     const rule = network.rules[network.ruleOf.get(next) ?? -1];
     if (rule !== undefined && rule !== null) waiting.push(...symbolsOf(rule));
-    else if (network.names.get(next)?.kind === 'species') return next;
+    else if (network.names.get(next)?.kind === 'species' || others.has(next)) return next;
   }
   return null;
 }

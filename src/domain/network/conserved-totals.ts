@@ -1,10 +1,10 @@
 /**
- * Conserved totals: weighted sums of counts that no reaction changes, as integer vectors of the left null space of the
- * stoichiometry matrix, found exactly by fraction-free elimination.
+ * Conserved totals: weighted sums of counts that no reaction alters, of species that no timed or triggered change sets, as
+ * integer vectors of the left null space of the stoichiometry matrix, found exactly by fraction-free elimination.
  */
 import type { ResolvedNetwork } from './resolved.ts';
 
-/** Σ weight · count over `terms` is the same after every firing. Species of weight 0 are left out. */
+/** Σ weight · count over `terms` is the same after every firing and change. Species of weight 0 are left out. */
 export interface ConservedTotal {
   terms: { species: number; weight: bigint }[];
   /** Its value in the initial state. */
@@ -13,7 +13,7 @@ export interface ConservedTotal {
 
 type SparseRow = Map<number, bigint>;
 interface Row {
-  /** Net change of this combination of species per firing, by reaction. */
+  /** Net change of this combination of species per firing, by reaction; then by species that is set. */
   changes: SparseRow;
   /** The combination, by species. */
   weights: SparseRow;
@@ -31,6 +31,9 @@ export function conservedTotals(network: ResolvedNetwork): ConservedTotal[] | nu
   network.reactions.forEach(({ changes }, reaction) => {
     for (const { species, count } of changes) rows[species]!.changes.set(reaction, BigInt(count));
   });
+  // A column of its own keeps a species that is set out of every total, and the others' totals in.
+  for (const { target } of (network.changes ?? []).flatMap(({ sets }) => sets))
+    if (target.kind === 'species') rows[target.index]!.changes.set(network.reactions.length + target.index, 1n);
   const free = rows.filter((_, species) => !network.species[species]!.boundary);
   const basis = leftNullSpace(free);
   if (basis === null) return null;

@@ -1,10 +1,12 @@
-/** What of billing runs beside the requests: open payments are asked about, receipts and alerts go out, the ledger is verified. */
+/** What of billing runs beside the requests: open payments and refunds are asked about, receipts, reminders and alerts go out, the ledger is verified. */
 import { Cron } from 'croner';
 import { sendBudgetAlerts } from '../budgets/send-budget-alerts.ts';
 import { watchLedger } from '../ledger/watch-ledger.ts';
 import { log } from '../log.ts';
 import type { Part } from '../part.ts';
 import { reconcileTopUps } from './reconcile-top-ups.ts';
+import { remindProFormas } from './remind-pro-formas.ts';
+import { sendOpenRefunds } from './send-refund.ts';
 import { sendReceipts } from './send-receipts.ts';
 import { onReceipts } from './wake-receipts.ts';
 
@@ -25,20 +27,26 @@ export const billingPart: Part = {
     const round = async (): Promise<void> => {
       await run('billing round', async () => {
         await reconcileTopUps();
+        await sendOpenRefunds();
         await sendReceipts();
         await sendBudgetAlerts();
       });
+    };
+    const hourly = async (): Promise<void> => {
+      await run('reminders of pro-formas', remindProFormas);
     };
     const nightly = async (): Promise<void> => {
       await run('ledger verification', () => watchLedger({ full: true }));
     };
     const jobs = [
       new Cron('*/20 * * * * *', { protect: true, unref: true }, round),
+      new Cron('7 * * * *', { protect: true, unref: true }, hourly),
       new Cron('17 3 * * *', { protect: true, unref: true }, nightly),
     ];
     onReceipts(() => void run('receipts', sendReceipts));
     void run('ledger verification', () => watchLedger({ full: false }));
     void round();
+    void hourly();
     return async () => {
       stopping = true;
       onReceipts(null);

@@ -1,9 +1,10 @@
 /** Issues an invoice: the next number of its series and year, in the transaction of the payment that it is for. */
 import { inWriteTransaction } from '@db/in-write-transaction.ts';
 import { Invoice } from '@db/models/billing.ts';
-import { invoiceNumber, type InvoiceFace } from '@/domain/billing/invoice-face.ts';
+import type { InvoiceFace } from '@/domain/billing/invoice-face.ts';
 import { nowText } from '../clock.ts';
 import { newId } from '../ids.ts';
+import { nextInvoiceNumber } from './next-invoice-number.ts';
 
 export const invoiceSeries = 'BUR';
 
@@ -18,20 +19,15 @@ export interface IssueInvoice {
 /** Joins the caller's write transaction. A purchase has one invoice: asking again answers the first. */
 export async function issueInvoice(options: IssueInvoice): Promise<Invoice> {
   const { teamId, face, paidAt, topUpId = null, proFormaId = null } = options;
+  if ((topUpId === null) === (proFormaId === null)) throw new Error('An invoice is for one purchase.');
   return inWriteTransaction(async () => {
     const earlier = await Invoice.findOne({ where: topUpId ? { topUpId } : { proFormaId } });
     if (earlier) return earlier;
     const issuedAt = nowText();
-    const year = Number(issuedAt.slice(0, 4));
-    const last = (await Invoice.max('numberInYear', { where: { series: invoiceSeries, year } })) as number | null;
-    const numberInYear = (last ?? 0) + 1;
     return Invoice.create({
       id: newId('invoice'),
       kind: 'invoice',
-      series: invoiceSeries,
-      year,
-      numberInYear,
-      number: invoiceNumber(invoiceSeries, year, numberInYear),
+      ...(await nextInvoiceNumber(invoiceSeries, issuedAt)),
       teamId,
       issuedAt,
       taxPoint: paidAt,

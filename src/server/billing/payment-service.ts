@@ -161,6 +161,25 @@ export async function fetchCheckout(sessionId: string): Promise<Result<FetchedCh
   });
 }
 
+/** Gives money of a payment back; the same key gives it once. `failed`: the bank would not take it. */
+export async function createRefund(options: {
+  returnId: string;
+  paymentIntentId: string;
+  totalMinor: number;
+  idempotencyKey: string;
+}): Promise<Result<{ refundId: string; failed: boolean }>> {
+  const { returnId, paymentIntentId, totalMinor, idempotencyKey } = options;
+  const made = await call('refunds.create', (stripe) =>
+    stripe.refunds.create(
+      { payment_intent: paymentIntentId, amount: totalMinor, metadata: { returnId } },
+      { idempotencyKey },
+    ),
+  );
+  if (!made.ok) return made;
+  const { id, status } = made.value;
+  return accept({ refundId: id, failed: status === 'failed' || status === 'canceled' });
+}
+
 export interface ReceivedEvent {
   id: string;
   type: string;
