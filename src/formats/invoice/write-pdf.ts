@@ -1,10 +1,14 @@
-/** Sets an invoice, credit note or pro-forma as a tagged PDF on one A4 page. */
+/** Sets an invoice, credit note or pro-forma as a tagged PDF: one A4 page in the common case, more for long ones. */
 import PDFDocument from 'pdfkit';
 import { rateText, type Party } from '@/domain/billing/invoice-face.ts';
 import { dayText, moneyText } from '@/domain/billing/money-text.ts';
 import { accent, ink, left, right, Sheet, soft } from '../pdf/sheet.ts';
 import type { FontSet, Weight } from '../pdf/typeface.ts';
 import type { PrintedDocument } from './printed-document.ts';
+
+/** Where text ends on a page; below stands its foot. */
+const bottom = 720;
+const topOfNextPages = 100;
 
 export async function writePdf(document: PrintedDocument, fonts: FontSet): Promise<Buffer> {
   const { title, number, issuedAt, face } = document;
@@ -16,6 +20,8 @@ export async function writePdf(document: PrintedDocument, fonts: FontSet): Promi
     tagged: true,
     lang: 'en-GB',
     displayTitle: true,
+    // Feet name the number of pages, which is known at the end.
+    bufferPages: true,
     info: {
       Title: `${title} ${number}`,
       Author: face.seller.name,
@@ -31,14 +37,28 @@ export async function writePdf(document: PrintedDocument, fonts: FontSet): Promi
     pdf.on('error', reject);
   });
   const sheet = new Sheet(pdf, fonts);
+  /** Answers where to go on: at `y` when `height` points fit below it, or else on another page. */
+  const room: Room = (y, height) => {
+    if (y + height <= bottom) return y;
+    pdf.addPage();
+    sheet.artifact(`${title} ${number}, continued`, { x: left, y: 62, size: 9 });
+    return topOfNextPages;
+  };
   let y = writeHead(sheet, document);
   y = writeParties(sheet, document, y);
-  y = writeLines(sheet, document, y);
-  y = writeTotals(sheet, document, y);
-  writeFoot(sheet, document, y);
+  y = writeLines(sheet, document, y, room);
+  y = writeTotals(sheet, document, y, room);
+  writeNotes(sheet, document, y, room);
+  const { count } = pdf.bufferedPageRange();
+  for (let page = 0; page < count; page++) {
+    pdf.switchToPage(page);
+    writeFoot(sheet, document, `Page ${page + 1} of ${count}.`);
+  }
   sheet.end();
   return finished;
 }
+
+type Room = (y: number, height: number) => number;
 
 function writeHead(sheet: Sheet, { title, number }: PrintedDocument): number {
   sheet.text('Burette', { x: left, y: 62, width: 200, size: 13, weight: 'bold', colour: accent });
@@ -65,13 +85,19 @@ function writeParties(sheet: Sheet, { face, facts }: PrintedDocument, top: numbe
 const countryNames = new Intl.DisplayNames('en', { type: 'region' });
 const countryName = (code: string): string => (/^[A-Z]{2}$/.test(code) ? (countryNames.of(code) ?? code) : code);
 
-function writeLines(sheet: Sheet, { face }: PrintedDocument, top: number): number {
+function writeLineHead(sheet: Sheet, top: number): number {
   const small = { size: 8, colour: soft, tag: 'TH' as const };
   sheet.text('Description', { x: left, y: top, width: 240, ...small });
   sheet.text('Quantity', { x: 300, y: top, width: 60, align: 'right', ...small });
   sheet.text('Unit price', { x: 365, y: top, width: 80, align: 'right', ...small });
-  let y = sheet.text('Net', { x: 450, y: top, width: 83, align: 'right', ...small }) + 2;
+  return sheet.text('Net', { x: 450, y: top, width: 83, align: 'right', ...small }) + 2;
+}
+
+function writeLines(sheet: Sheet, { face }: PrintedDocument, top: number, room: Room): number {
+  let y = writeLineHead(sheet, room(top, 60));
   for (const { description, quantity, unit, netMinor } of face.lines) {
+    const next = room(y, 10 + sheet.heightOf(description, { width: 235 }));
+    y = next === y ? y : writeLineHead(sheet, next);
     sheet.line(y);
     y += 6;
     sheet.text(`${quantity} ${unit}`, { x: 300, y, width: 60, align: 'right', tag: 'TD' });
@@ -83,9 +109,9 @@ function writeLines(sheet: Sheet, { face }: PrintedDocument, top: number): numbe
   return y + 8;
 }
 
-function writeTotals(sheet: Sheet, { face }: PrintedDocument, top: number): number {
+function writeTotals(sheet: Sheet, { face }: PrintedDocument, top: number, room: Room): number {
   const { currency } = face;
-  let y = top;
+  let y = room(top, 50 + 16 * face.taxes.length);
   const row = (label: string, amountMinor: number, weight: Weight = 'regular', size = 9) => {
     sheet.text(moneyText(amountMinor, currency), { x: 420, y, width: 113, align: 'right', weight, size, tag: 'TD' });
     y = sheet.text(label, { x: 230, y, width: 190, weight, size, tag: 'TD' }) + 3;
@@ -101,11 +127,20 @@ function writeTotals(sheet: Sheet, { face }: PrintedDocument, top: number): numb
   return y + 16;
 }
 
-function writeFoot(sheet: Sheet, { face, standing, cautions, issuedAt }: PrintedDocument, top: number): void {
-  let y = sheet.text(standing, { x: left, y: top, width: right - left, weight: 'bold' }) + 8;
-  for (const note of face.notes) y = sheet.text(note, { x: left, y, width: right - left, colour: soft }) + 3;
+function writeNotes(sheet: Sheet, { face, standing }: PrintedDocument, top: number, room: Room): void {
+  const width = right - left;
+  const y = room(top, sheet.heightOf(standing, { width, weight: 'bold' }));
+  let bottomOfNote = sheet.text(standing, { x: left, y, width, weight: 'bold' }) + 8;
+  for (const note of face.notes) {
+    const place = room(bottomOfNote, sheet.heightOf(note, { width }));
+    bottomOfNote = sheet.text(note, { x: left, y: place, width, colour: soft }) + 3;
+  }
+}
+
+/** Stands on every page, outside the text that a reader hears. */
+function writeFoot(sheet: Sheet, { cautions, issuedAt }: PrintedDocument, page: string): void {
   sheet.line(742);
-  y = 750;
-  for (const caution of [...cautions, `Issued ${dayText(issuedAt)}. Page 1 of 1.`])
-    y = sheet.text(caution, { x: left, y, width: right - left, size: 7.5, colour: soft }) + 1;
+  let y = 750;
+  for (const caution of [...cautions, `Issued ${dayText(issuedAt)}. ${page}`])
+    y = sheet.artifact(caution, { x: left, y }) + 1;
 }

@@ -62,6 +62,11 @@ export class Sheet {
     return bottom;
   }
 
+  /** Height in points of a paragraph as `text` would write it. */
+  heightOf(text: string, { width, size = 9, weight = 'regular' }: Omit<TextOptions, 'x' | 'y'>): number {
+    return text.split('\n').flatMap((paragraph) => this.#wrap(paragraph, width, size, weight)).length * size * 1.45;
+  }
+
   line(y: number, colour = rule, width = 0.75): void {
     this.#document.markContent('Artifact');
     this.#document.moveTo(left, y).lineTo(right, y).lineWidth(width).strokeColor(colour).stroke();
@@ -84,13 +89,27 @@ export class Sheet {
 
   /** A line at the foot of the page, not part of the text. */
   foot(text: string): void {
+    this.artifact(text, { x: left, y: 800 });
+  }
+
+  /** Writes what stands on pages without being part of the text, wrapped to the page; answers where the next line begins. */
+  artifact(text: string, { x, y, size = 7.5 }: { x: number; y: number; size?: number }): number {
+    let bottom = y;
     this.#document.markContent('Artifact');
-    let x = left;
-    for (const run of this.#type.runs(text, 'regular')) {
-      this.#document.font(run.font).fontSize(7.5).fillColor(soft).text(run.text, x, 800, { lineBreak: false });
-      x += this.#document.widthOfString(run.text);
+    for (const line of this.#wrap(text, right - x, size, 'regular')) {
+      let place = x;
+      for (const run of this.#type.runs(line, 'regular')) {
+        this.#document
+          .font(run.font)
+          .fontSize(size)
+          .fillColor(soft)
+          .text(run.text, place, bottom, { lineBreak: false });
+        place += this.#document.widthOfString(run.text);
+      }
+      bottom += size * 1.45;
     }
     this.#document.endMarkedContent();
+    return bottom;
   }
 
   end(): void {
