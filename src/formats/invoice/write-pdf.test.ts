@@ -42,7 +42,12 @@ describe('the paper of an invoice', () => {
     const pdf = await paper();
     expect(pages(pdf)).toBe(1);
     const text = pdf.toString('latin1');
-    for (const part of ['/MarkInfo', '/Lang (en-GB)', '/DisplayDocTitle true', '<rdf:li xml:lang="x-default">Invoice BUR-2026-00007</rdf:li>'])
+    for (const part of [
+      '/MarkInfo',
+      '/Lang (en-GB)',
+      '/DisplayDocTitle true',
+      '<rdf:li xml:lang="x-default">Invoice BUR-2026-00007</rdf:li>',
+    ])
       expect(text).toContain(part);
     expect(await paper()).toEqual(pdf);
   });
