@@ -49,10 +49,6 @@ export async function submit(
   return { status: response.status, location: response.headers.get('location') ?? '', text: await response.text() };
 }
 
-export const cards = {
-  accepted: '4242 4242 4242 4242',
-  declined: '4000 0000 0000 0002',
-  authentication: '4000 0025 0000 3155',
-};
+export { cards } from './payment-cards.ts';
 
 export const payByCard = (checkoutUrl: string, card: string) => submit(checkoutUrl, { way: 'card', card });
