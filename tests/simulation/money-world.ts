@@ -86,12 +86,12 @@ export class MoneyWorld {
         await startTopUp({ actor: system, team: this.#slug, pack: packs[place % 2]!, currency: 'EUR' });
         return;
       case 'payByCard': {
-        const session = this.#openSession(place);
+        const session = await this.#openSession(place);
         if (session) this.#payByCard(session, amount);
         return;
       }
       case 'payByDebit': {
-        const session = this.#openSession(place);
+        const session = await this.#openSession(place);
         if (session) this.fake.payments.payByDebit(session, amount % 3 > 0);
         return;
       }
@@ -141,6 +141,12 @@ export class MoneyWorld {
     }
   }
 
+  async buyOnePack(): Promise<void> {
+    await this.perform('bought', { name: 'openCheckout', place: 0, amount: 1 });
+    await this.perform('bought', { name: 'payByCard', place: 0, amount: 4 });
+    await this.perform('bought', { name: 'reconcile', place: 0, amount: 1 });
+  }
+
   /** Everything that was lost on the way arrives in the end. */
   async heal(): Promise<void> {
     Object.assign(this.fake.store.state.switches, { failNext: 0, hangNext: 0 });
@@ -150,8 +156,12 @@ export class MoneyWorld {
 
   topUps = (): Promise<TopUp[]> => TopUp.findAll({ where: { teamId: this.teamId }, order: [['createdAt', 'ASC']] });
 
-  #openSession(place: number): FakeSession | undefined {
-    const open = Object.values(this.fake.store.state.sessions).filter(({ status }) => status === 'open');
+  /** Only a page whose address we have given somebody can be paid. */
+  async #openSession(place: number): Promise<FakeSession | undefined> {
+    const shown = new Set((await this.topUps()).map(({ sessionId }) => sessionId));
+    const open = Object.values(this.fake.store.state.sessions).filter(
+      ({ id, status }) => status === 'open' && shown.has(id),
+    );
     return open[place % Math.max(1, open.length)];
   }
 

@@ -5,7 +5,8 @@
  */
 import { existsSync } from 'node:fs';
 import fc from 'fast-check';
-import { afterAll, expect, it } from 'vitest';
+import Stripe from 'stripe';
+import { afterAll, expect, it, vi } from 'vitest';
 import { verifyLedger } from '@/server/ledger/verify-ledger.ts';
 import { startPaymentFake } from '@tests/fakes/payment/server.ts';
 import { useTestDatabase } from '@tests/support/test-database.ts';
@@ -15,16 +16,18 @@ import { actNames, MoneyWorld, webhookSecret } from './money-world.ts';
 // In memory where the machine has such a place: a power cut is not among the acts.
 if (existsSync('/dev/shm')) process.env.TMPDIR = '/dev/shm';
 
+// The SDK asks again after half a second; here it does not wait.
+vi.spyOn(
+  Stripe.prototype as unknown as { getInitialNetworkRetryDelay(): number },
+  'getInitialNetworkRetryDelay',
+).mockReturnValue(0.001);
+
 const fake = await startPaymentFake({ port: 0, webhookUrl: 'http://127.0.0.1:9', webhookSecret });
 afterAll(() => fake.close());
 useTestDatabase({ STRIPE_FAKE_URL: fake.url, STRIPE_WEBHOOK_SECRET: webhookSecret });
 
 const act = fc.record({
-  // An outage costs half a second of the SDK's patience, so it is rarer than the rest.
-  name: fc.oneof(
-    { weight: 80, arbitrary: fc.constantFrom(...actNames.filter((name) => name !== 'serviceFails')) },
-    { weight: 1, arbitrary: fc.constant('serviceFails' as const) },
-  ),
+  name: fc.constantFrom(...actNames),
   place: fc.nat(5),
   // Up to 40 credits, so that holds and refunds reach beyond a pack of 25 and stay within one of 100.
   amount: fc.integer({ min: 1, max: 40_000_000 }),
@@ -33,8 +36,10 @@ const { BURETTE_SIMULATION_SEED: seed = '20261201', BURETTE_SIMULATION_PATH: pat
 
 it('keeps every invariant after every step of 2,000 sequences', async () => {
   await fc.assert(
-    fc.asyncProperty(fc.array(act, { minLength: 4, maxLength: 12 }), async (acts) => {
+    fc.asyncProperty(fc.nat(3), fc.array(act, { minLength: 4, maxLength: 10 }), async (begun, acts) => {
       const world = await MoneyWorld.open(fake);
+      // Most sequences begin with something bought, so that there is something to lose.
+      if (begun > 0) await world.buyOnePack();
       for (const [step, each] of acts.entries()) {
         await world.perform(String(step), each);
         await expectInvariants(world);
