@@ -14,9 +14,10 @@ export type KernelName =
   | 'direct-simd'
   | 'composition-rejection'
   | 'tau-leaping'
-  /** Plain and slow: of the direct method, and of composition-rejection. */
+  /** Plain and slow: of the direct method, of composition-rejection, and of tau-leaping. */
   | 'reference'
-  | 'composition-rejection-reference';
+  | 'composition-rejection-reference'
+  | 'tau-leaping-reference';
 
 /**
  * A first passage: when the observable first is at least (`rises_to`) or at most (`falls_to`) the threshold. Looked at at
@@ -49,6 +50,11 @@ export interface BatchTask {
   eventBudgetPerReplicate: number | null;
   /** Stops the batch early after this many events in all, keeping complete replicates (pilots); null for none. */
   eventBudgetPerBatch: number | null;
+  /**
+   * Tau-leaping with this ε, above 0 and at most 0.5: by how much of itself a propensity may change in a leap. Left out: exact.
+   * Networks with triggered changes do not leap.
+   */
+  epsilon?: number;
   /** Whether the answer carries the batch's share of the blocks (statistics/blocks.ts); default no. */
   blocks?: boolean;
   /** For tests; normally a fixed, versioned function of the network decides. */
@@ -78,7 +84,7 @@ export interface BatchResult {
   firstReplicate: number;
   /** Complete replicates, from `firstReplicate`: less than asked after a failure or when the batch budget ran out. */
   replicateCount: number;
-  /** Events of each complete replicate, in order: what the meter charges. */
+  /** Events of each complete replicate, in order: what the meter charges. Firings, or the work of leaps (leaping/tau-leaping.ts). */
   eventsPerReplicate: Float64Array;
   /** The mergeable accumulators of the complete replicates. */
   summary: EnsembleSummary;

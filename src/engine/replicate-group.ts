@@ -15,8 +15,10 @@ export interface PointTask {
   gridTimes: Float64Array;
   /** random/stream-key.ts */
   streamBase: bigint;
-  /** Firings allowed in one replicate. */
+  /** Events allowed in one replicate. */
   eventLimit: number;
+  /** Of tau-leaping; null for the exact methods. */
+  epsilon: number | null;
   /** Replicates in a group at most. */
   slots: number;
 }

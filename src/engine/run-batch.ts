@@ -4,11 +4,15 @@ import { chooseKernel } from './choose-kernel.ts';
 import type { BatchResult, BatchTask, KernelName, ModelFailure, Trace } from './ensemble.ts';
 import { initialState, scheduleOf } from './exact/changes.ts';
 import { gridTimes, largestHorizon } from './exact/direct-method.ts';
+import { runReferenceReplicate } from './exact/reference-direct.ts';
 import { groupSelection } from './exact/reference-groups.ts';
 import { referenceRunner } from './exact/reference-runner.ts';
 import { compositionRejectionRunner } from './kernel/composition-runner.ts';
 import { directScalarRunner, directSimdRunner } from './kernel/direct-runner.ts';
 import { constantValues, prepareNetwork } from './kernel/prepare-network.ts';
+import type { PreparedNetwork } from './kernel/prepared-network.ts';
+import { hasTriggers } from './kernel/emit-changes.ts';
+import { runReferenceLeap } from './leaping/reference-leap.ts';
 import { streamBase } from './random/stream-key.ts';
 import {
   changeFailure,
@@ -29,7 +33,8 @@ import { Summary } from './statistics/summary.ts';
 export async function runBatch(task: BatchTask): Promise<BatchResult> {
   checkTask(task);
   const prepared = prepareNetwork(task.network, task.passages);
-  const kernel = task.kernel ?? chooseKernel(prepared);
+  checkLeaping(task, prepared);
+  const kernel = task.kernel ?? (task.epsilon === undefined ? chooseKernel(prepared) : 'tau-leaping');
   const constants = constantValues(prepared, task.network);
   const initial = initialState(prepared, task.network, constants);
   const point: PointTask = {
@@ -41,6 +46,7 @@ export async function runBatch(task: BatchTask): Promise<BatchResult> {
     gridTimes: gridTimes(task.horizon, task.gridIntervals),
     streamBase: streamBase(task.seed, task.purpose, task.point),
     eventLimit: task.eventBudgetPerReplicate ?? limits.eventsPerReplicate,
+    epsilon: task.epsilon ?? null,
     slots: groupSlots(prepared, task.gridIntervals + 1, task.replicateCount),
   };
   const collector = new Collector(task, point);
@@ -67,7 +73,11 @@ function runnerOf(kernel: KernelName, point: PointTask): GroupRunner | Promise<G
     case 'direct-simd':
       return directSimdRunner(point);
     case 'composition-rejection-reference':
-      return referenceRunner(point, groupSelection);
+      return referenceRunner(point, (replicate) =>
+        runReferenceReplicate(replicate, groupSelection(replicate.prepared)),
+      );
+    case 'tau-leaping-reference':
+      return referenceRunner(point, (replicate) => runReferenceLeap(replicate, point.epsilon!));
     case 'composition-rejection':
       return compositionRejectionRunner(point);
     default:
@@ -176,6 +186,15 @@ class Collector {
       failure: this.#failure,
     };
   }
+}
+
+/** Leaping kernels and ε go together. */
+function checkLeaping({ kernel, epsilon }: BatchTask, prepared: PreparedNetwork): void {
+  const leaps = kernel === undefined ? epsilon !== undefined : kernel.startsWith('tau-leaping');
+  if (leaps !== (epsilon !== undefined)) throw new RangeError(`batch task: kernel ${kernel} with ε ${epsilon}`);
+  if (epsilon === undefined) return;
+  if (!(epsilon > 0 && epsilon <= 0.5)) throw new RangeError(`batch task: ε ${epsilon} is not in (0, 0.5]`);
+  if (hasTriggers(prepared)) throw new RangeError('batch task: triggered changes do not leap');
 }
 
 function checkTask(task: BatchTask): void {

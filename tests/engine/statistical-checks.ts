@@ -1,5 +1,5 @@
 /**
- * Statistical checks with a stated false-alarm rate: all checks of the exact method together raise a false alarm with
+ * Statistical checks with a stated false-alarm rate: all checks of the simulating methods together raise a false alarm with
  * probability 0.001 at most (Bonferroni over `checksInAll`); seeds are fixed, so that a pass stays a pass.
  */
 import binomial from '@stdlib/stats-base-dists-binomial';
@@ -8,9 +8,9 @@ import normal from '@stdlib/stats-base-dists-normal';
 import { expect } from 'vitest';
 
 /** At least as many as the tests that use this file make. */
-const checksInAll = 100;
+const checksInAll = 200;
 const falseAlarm = 0.001 / checksInAll;
-/** Two-sided normal bound of one check, about 4.4. */
+/** Two-sided normal bound of one check, about 4.6. */
 export const bound: number = normal.quantile(1 - falseAlarm / 2, 0, 1);
 
 /** The mean of n replicates of a variable with this mean and standard deviation. */

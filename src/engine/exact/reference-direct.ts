@@ -88,7 +88,7 @@ export function directSelection(prepared: PreparedNetwork): Selection {
 }
 
 /** Notes the passages that the present state, which began at `time`, makes for the first time. */
-function notePassages(prepared: PreparedNetwork, state: StateValues, passages: number[], time: number): void {
+export function notePassages(prepared: PreparedNetwork, state: StateValues, passages: number[], time: number): void {
   prepared.passages.forEach(({ value, direction, threshold }, passage) => {
     if (passages[passage] !== Infinity) return;
     const present = evaluateTerm(value, state);

@@ -9,13 +9,12 @@ import {
 import type { ModelFailure } from '../ensemble.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 import { replicateState } from '../random/stream-key.ts';
-import type { PreparedNetwork } from '../kernel/prepared-network.ts';
-import { directSelection, runReferenceReplicate, type Cause, type Selection } from './reference-direct.ts';
+import { runReferenceReplicate, type Cause, type ReferenceReplicate, type ReferenceTask } from './reference-direct.ts';
 
-/** `selection`: the method, begun anew for each replicate. */
+/** `runReplicate`: the method. */
 export function referenceRunner(
   task: PointTask,
-  selection: (prepared: PreparedNetwork) => Selection = directSelection,
+  runReplicate: (replicate: ReferenceTask) => ReferenceReplicate = (replicate) => runReferenceReplicate(replicate),
 ): GroupRunner {
   const { prepared, network, gridTimes, slots } = task;
   const outcome: GroupOutcome = {
@@ -34,10 +33,7 @@ export function referenceRunner(
         const replicate = first + slot;
         const eventLimit = Math.min(task.eventLimit, left);
         const generator = replicateState(task.streamBase, replicate);
-        const { cause, firings, counts, reals, passages } = runReferenceReplicate(
-          { ...task, generator, eventLimit },
-          selection(prepared),
-        );
+        const { cause, firings, counts, reals, passages } = runReplicate({ ...task, generator, eventLimit });
         if (cause) {
           const spent = cause.kind === 'event_limit' && left < task.eventLimit;
           return { ...outcome, completed: slot, end: spent ? 'allowance_spent' : failureOf(network, cause, replicate) };
