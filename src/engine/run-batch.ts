@@ -9,9 +9,11 @@ import { groupSelection } from './exact/reference-groups.ts';
 import { referenceRunner } from './exact/reference-runner.ts';
 import { compositionRejectionRunner } from './kernel/composition-runner.ts';
 import { directScalarRunner, directSimdRunner } from './kernel/direct-runner.ts';
+import { tauLeapingRunner } from './kernel/leap-runner.ts';
 import { constantValues, prepareNetwork } from './kernel/prepare-network.ts';
 import type { PreparedNetwork } from './kernel/prepared-network.ts';
 import { hasTriggers } from './kernel/emit-changes.ts';
+import { largestLeapingNetwork } from './leaping/tau-leaping.ts';
 import { runReferenceLeap } from './leaping/reference-leap.ts';
 import { streamBase } from './random/stream-key.ts';
 import {
@@ -80,8 +82,8 @@ function runnerOf(kernel: KernelName, point: PointTask): GroupRunner | Promise<G
       return referenceRunner(point, (replicate) => runReferenceLeap(replicate, point.epsilon!));
     case 'composition-rejection':
       return compositionRejectionRunner(point);
-    default:
-      throw new RangeError(`the kernel ${kernel} is not part of this engine version`);
+    case 'tau-leaping':
+      return tauLeapingRunner(point);
   }
 }
 
@@ -195,6 +197,8 @@ function checkLeaping({ kernel, epsilon }: BatchTask, prepared: PreparedNetwork)
   if (epsilon === undefined) return;
   if (!(epsilon > 0 && epsilon <= 0.5)) throw new RangeError(`batch task: ε ${epsilon} is not in (0, 0.5]`);
   if (hasTriggers(prepared)) throw new RangeError('batch task: triggered changes do not leap');
+  if (prepared.reactions.length > largestLeapingNetwork)
+    throw new RangeError(`batch task: ${prepared.reactions.length} reactions do not leap`);
 }
 
 function checkTask(task: BatchTask): void {

@@ -48,7 +48,7 @@ describe('explicit leaps of a fixed step (Cao, Petzold, Rathinam & Gillespie 200
   });
 });
 
-const kernels: KernelName[] = ['tau-leaping-reference'];
+const kernels: KernelName[] = ['tau-leaping-reference', 'tau-leaping'];
 
 describe.each(kernels)('%s', (kernel) => {
   const run = (model: ResolvedNetwork, given: Partial<BatchTask> = {}): Promise<BatchResult> =>

@@ -285,9 +285,9 @@ function emitPropensities(
 }
 
 /** Applies the chosen reaction's changes; a count above the largest leaves through `overflow` with the state as before. */
-function emitFiring(
+export function emitFiring(
   prepared: PreparedNetwork,
-  state: State,
+  state: ChangeContext['state'],
   chosen: Local<'i32'>,
   overflow: (reaction: number) => Node[],
 ): Node {

@@ -1,4 +1,4 @@
-/** Groups of replicates by a generated exact kernel: memory, calls in chunks, allowances, failures. */
+/** Groups of replicates by a generated kernel: memory, calls in chunks, allowances, failures. */
 import { stateValues } from '../exact/changes.ts';
 import { prefixSums } from '../exact/reference-direct.ts';
 import type { ModelFailure } from '../ensemble.ts';
@@ -171,6 +171,7 @@ function writeTask(memory: WebAssembly.Memory, task: PointTask, layout: TaskLayo
   // Grid time 0 is always written before the first firing, even one at time 0.
   view.setFloat64(layout.gridTimes, -1, true);
   view.setBigUint64(control.streamBase, task.streamBase, true);
+  view.setFloat64(control.epsilon, task.epsilon ?? 0, true);
   const words: [number, number][] = [
     [control.gridIntervals, gridTimes.length - 1],
     [control.gridTimes, layout.gridTimes],

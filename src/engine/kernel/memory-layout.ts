@@ -43,7 +43,11 @@ export const control = {
   /** i32: addresses of the schedule of timed changes and of the table of passage times. */
   schedule: 136,
   passages: 140,
-  end: 144,
+  /** Of tau-leaping: i32 exact steps left, f64 ε, f64 the longest leap after a rejected one. */
+  exactSteps: 144,
+  epsilon: 152,
+  longestLeap: 160,
+  end: 168,
 } as const;
 
 /** What a call of a kernel answers. */

@@ -113,7 +113,7 @@ export function runReferenceLeap(task: ReferenceTask, epsilon: number): Referenc
       const length = Math.min(step.length, longest);
       const stop = Math.min(nextGridTime(), nextChangeTime());
       const toStop = stop - time;
-      if (!(step.leapingTotal > 0) || Math.min(length, toStop) < leastFiringsOfLeap / total) {
+      if (!(step.leapingTotal > 0 && Math.min(length, toStop) >= leastFiringsOfLeap / total)) {
         exactSteps = exactStepsInARow;
         longest = Infinity;
         continue nextState;
@@ -124,9 +124,7 @@ export function runReferenceLeap(task: ReferenceTask, epsilon: number): Referenc
       const numbers = prepared.reactions.map(() => 0);
       let events = 0;
       if (waiting < Math.min(toStop, length)) {
-        const threshold = uniform() * step.criticalTotal;
-        let prefix = 0;
-        numbers[step.critical.findIndex((value) => (prefix += value) > threshold)] = 1;
+        numbers[firstAbove(step.critical, uniform() * step.criticalTotal)] = 1;
         events++;
       }
       for (const [j, propensity] of step.leaping.entries()) {
@@ -153,6 +151,12 @@ export function runReferenceLeap(task: ReferenceTask, epsilon: number): Referenc
       longest = length / 2;
     }
   }
+}
+
+/** The first whose prefix sum is above `threshold`. */
+function firstAbove(values: readonly number[], threshold: number): number {
+  let prefix = 0;
+  return values.findIndex((value) => (prefix += value) > threshold);
 }
 
 const causeOf = ({ kind, change }: ChangeFault, time: number, counts: number[]): Cause => ({

@@ -38,3 +38,9 @@ export const leastFiringsOfLeap = 10;
 export const exactStepsInARow = 100;
 /** Expected firings of one leap at most, so that their numbers are whole numbers which a double holds. */
 export const mostFiringsOfLeap = 2 ** 50;
+
+/**
+ * Networks of more reactions do not leap: the kernel's code grows with them, and each leap draws a number for each, which large
+ * networks of few molecules never earn back.
+ */
+export const largestLeapingNetwork = 1_000;
