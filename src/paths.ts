@@ -33,6 +33,7 @@ export const paths = {
   ledger: (team: string, query?: Record<string, string>) =>
     `/t/${team}/credits/ledger${query ? `?${new URLSearchParams(query)}` : ''}`,
   members: (team: string) => `/t/${team}/team/members`,
+  automaticTopUp: (team: string) => `/t/${team}/billing/automatic-top-up`,
   billingDetails: (team: string) => `/t/${team}/billing/details`,
   proFormas: (team: string) => `/t/${team}/billing/pro-formas`,
   projectCodes: (team: string) => `/t/${team}/team/project-codes`,

@@ -8,5 +8,16 @@ import { models } from './0005-models.ts';
 import { jobs } from './0006-jobs.ts';
 import { finance } from './0007-finance.ts';
 import { creditReturns } from './0008-credit-returns.ts';
+import { cardsAndDisputes } from './0009-cards-and-disputes.ts';
 
-export const migrations: Migration[] = [people, teams, ledger, billing, models, jobs, finance, creditReturns];
+export const migrations: Migration[] = [
+  people,
+  teams,
+  ledger,
+  billing,
+  models,
+  jobs,
+  finance,
+  creditReturns,
+  cardsAndDisputes,
+];

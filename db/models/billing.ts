@@ -59,6 +59,9 @@ export class TopUp extends Model<Attributes<TopUp>, Creation<TopUp>> {
   declare paidAt: CreationOptional<string | null>;
   declare checks: CreationOptional<number>;
   declare nextCheckAt: CreationOptional<string | null>;
+  /** `automatic`: a saved card is charged, nobody visits a page. */
+  declare way: CreationOptional<'checkout' | 'automatic'>;
+  declare paymentMethodId: CreationOptional<string | null>;
 }
 
 export class PaymentEvent extends Model<Attributes<PaymentEvent>, Creation<PaymentEvent>> {
@@ -66,6 +69,8 @@ export class PaymentEvent extends Model<Attributes<PaymentEvent>, Creation<Payme
   declare type: string;
   declare objectId: string | null;
   declare topUpId: string | null;
+  declare cardSetupId: CreationOptional<string | null>;
+  declare disputeId: CreationOptional<string | null>;
   declare receivedAt: string;
   declare state: 'recorded' | 'handled' | 'ignored';
   declare outcome: CreationOptional<string | null>;
@@ -239,6 +244,8 @@ export function defineBilling(sequelize: Sequelize): void {
       paidAt: column.optionalText(),
       checks: { ...column.integer(), defaultValue: 0 },
       nextCheckAt: column.optionalText(),
+      way: { ...column.text(), defaultValue: 'checkout' },
+      paymentMethodId: column.optionalText(),
     },
     table('topUps'),
   );
@@ -248,6 +255,8 @@ export function defineBilling(sequelize: Sequelize): void {
       type: column.text(),
       objectId: column.optionalText(),
       topUpId: column.optionalText(),
+      cardSetupId: column.optionalText(),
+      disputeId: column.optionalText(),
       receivedAt: column.text(),
       state: column.text(),
       outcome: column.optionalText(),

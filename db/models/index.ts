@@ -1,6 +1,7 @@
 /** Defines every model on the connection. A model class is usable once `openDatabase` has run. */
 import type { Sequelize } from 'sequelize';
 import { defineBilling } from './billing.ts';
+import { defineCards } from './cards.ts';
 import { defineFinance } from './finance.ts';
 import { defineJobs } from './jobs.ts';
 import { defineLedger } from './ledger.ts';
@@ -13,6 +14,7 @@ export function defineModels(sequelize: Sequelize): void {
   defineTeams(sequelize);
   defineLedger(sequelize);
   defineBilling(sequelize);
+  defineCards(sequelize);
   defineNetworkModels(sequelize);
   defineJobs(sequelize);
   defineFinance(sequelize);

@@ -1,16 +1,22 @@
 /** Price book, top-ups, billing details and payment webhooks; what belongs to them is passed on from its own files. */
 import { z } from 'zod';
 import { limits } from '@/domain/limits.ts';
+import { automaticTopUpContracts } from './automatic-top-up.ts';
+import { cardContracts } from './cards.ts';
 import { contract } from './contract.ts';
 import { invoiceContracts } from './invoices.ts';
 import { pageQuery } from './page.ts';
 import { proFormaContracts } from './pro-formas.ts';
 import { currency, line, money, pack } from './purchase.ts';
 import { refundContracts } from './refunds.ts';
+import { topUp } from './top-up.ts';
 
+export * from './automatic-top-up.ts';
+export * from './cards.ts';
 export * from './invoices.ts';
 export * from './pro-formas.ts';
 export * from './refunds.ts';
+export * from './top-up.ts';
 export { money, type Money } from './purchase.ts';
 
 const team = ['not_signed_in', 'not_found', 'forbidden'] as const;
@@ -36,26 +42,6 @@ export const readPriceBook = contract({
   answers: [{ status: 200, description: 'Price book', schema: priceBookAnswer }],
   refusals: [],
 });
-
-/** `processing`: paid by a method that settles later. Only `paid` has issued credits. */
-export const topUpStates = ['pending', 'processing', 'paid', 'failed', 'expired'] as const;
-
-export const topUp = z.object({
-  id: z.string(),
-  state: z.enum(topUpStates),
-  credits: z.number().int(),
-  net: money,
-  tax: money,
-  total: money,
-  createdAt: z.string(),
-  paidAt: z.string().nullable(),
-  /** Where to go on paying, while it is pending. */
-  checkoutUrl: z.string().nullable(),
-  /** Why the last attempt did not pass, in words. */
-  problem: z.string().nullable(),
-  invoiceId: z.string().nullable(),
-});
-export type TopUpDocument = z.infer<typeof topUp>;
 
 export const startTopUp = contract({
   id: 'startTopUp',
@@ -176,5 +162,7 @@ export const billingContracts = [
   ...invoiceContracts,
   ...proFormaContracts,
   ...refundContracts,
+  ...cardContracts,
+  ...automaticTopUpContracts,
   receivePaymentEvent,
 ];

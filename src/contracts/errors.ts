@@ -33,6 +33,8 @@ export const errorTable: Record<RefusalCode, { status: number; title: string }> 
   results_not_ready: { status: 409, title: 'No results yet' },
   unknown_pack: { status: 422, title: 'Unknown credit pack' },
   payment_service_unavailable: { status: 503, title: 'Payment service unavailable' },
+  card_missing: { status: 409, title: 'No saved card' },
+  payment_owed: { status: 402, title: 'A payment is owed' },
   billing_details_missing: { status: 409, title: 'Billing details missing' },
   bad_signature: { status: 400, title: 'Bad signature' },
   idempotency_key_reused: { status: 409, title: 'Idempotency key used for another request' },

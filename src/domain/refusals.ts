@@ -37,6 +37,8 @@ export const refusalCodes = [
   'unknown_pack',
   'payment_service_unavailable',
   'billing_details_missing',
+  'card_missing',
+  'payment_owed',
   'bad_signature',
   // requests in general
   'idempotency_key_reused',

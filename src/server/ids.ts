@@ -21,6 +21,8 @@ export type IdKind =
   | 'invoice'
   | 'proforma'
   | 'return'
+  | 'setup'
+  | 'receivable'
   | 'mail'
   | 'payment'
   | 'request'

@@ -123,6 +123,13 @@ export const cases: Record<string, Case> = {
   exportStatement: plain,
   readYearSummary: plain,
   exportYearSummary: plain,
+  readCard: plain,
+  saveCard: { body: {} },
+  removeCard: plain,
+  readAutomaticTopUp: plain,
+  setAutomaticTopUp: {
+    body: { on: false, thresholdMicrocredits: 1, pack: 'none', currency: 'GBP', monthlyCeilingMinor: 1 },
+  },
   readBudgets: plain,
   setBudgets: { body: { monthlyMicrocredits: null, lowBalanceMicrocredits: null } },
   // our books

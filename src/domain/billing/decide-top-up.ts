@@ -35,7 +35,7 @@ export interface FetchedCheckout {
 export type TopUpDecision =
   | { kind: 'paid'; paymentIntentId: string }
   | { kind: 'processing'; paymentIntentId: string }
-  | { kind: 'failed'; problem: string }
+  | { kind: 'failed'; problem: string; needsHolder?: boolean }
   | { kind: 'expired' }
   | { kind: 'pending'; problem: string | null }
   /** The service's object is not the one that we asked for: nothing is issued, somebody looks. */

@@ -1,14 +1,34 @@
-/** What of billing runs beside the requests: open payments and refunds are asked about, receipts, reminders and alerts go out, the ledger is verified. */
+/** What of billing runs beside the requests: payments, cards and refunds are asked about, automatic top-ups begin, receipts and alerts go out, the ledger is verified. */
 import { Cron } from 'croner';
 import { sendBudgetAlerts } from '../budgets/send-budget-alerts.ts';
 import { watchLedger } from '../ledger/watch-ledger.ts';
 import { log } from '../log.ts';
 import type { Part } from '../part.ts';
+import { forgetCards } from './discard-card.ts';
+import { reconcileCardSetups } from './reconcile-card-setups.ts';
 import { reconcileTopUps } from './reconcile-top-ups.ts';
 import { remindProFormas } from './remind-pro-formas.ts';
 import { sendOpenRefunds } from './send-refund.ts';
 import { sendReceipts } from './send-receipts.ts';
-import { onReceipts } from './wake-receipts.ts';
+import { runAutomaticTopUps } from './run-automatic-top-ups.ts';
+import { onLedgerChanged } from './wake-automatic-top-ups.ts';
+import { onBillingWoken } from './wake-billing.ts';
+
+/** Runs now, or once more after the present run: however many calls come meanwhile. */
+function oneAtATime(work: () => Promise<unknown>): () => void {
+  let state: 'idle' | 'running' | 'again' = 'idle';
+  const begin = async (): Promise<void> => {
+    do {
+      state = 'running';
+      await work();
+    } while ((state as string) === 'again');
+    state = 'idle';
+  };
+  return () => {
+    if (state === 'idle') void begin();
+    else state = 'again';
+  };
+}
 
 export const billingPart: Part = {
   name: 'billing',
@@ -27,6 +47,9 @@ export const billingPart: Part = {
     const round = async (): Promise<void> => {
       await run('billing round', async () => {
         await reconcileTopUps();
+        await reconcileCardSetups();
+        await runAutomaticTopUps();
+        await forgetCards();
         await sendOpenRefunds();
         await sendReceipts();
         await sendBudgetAlerts();
@@ -43,13 +66,21 @@ export const billingPart: Part = {
       new Cron('7 * * * *', { protect: true, unref: true }, hourly),
       new Cron('17 3 * * *', { protect: true, unref: true }, nightly),
     ];
-    onReceipts(() => void run('receipts', sendReceipts));
+    onBillingWoken(
+      () =>
+        void run('billing after a commit', async () => {
+          await sendReceipts();
+          await forgetCards();
+        }),
+    );
+    onLedgerChanged(oneAtATime(() => run('automatic top-ups', runAutomaticTopUps)));
     void run('ledger verification', () => watchLedger({ full: false }));
     void round();
     void hourly();
     return async () => {
       stopping = true;
-      onReceipts(null);
+      onBillingWoken(null);
+      onLedgerChanged(null);
       for (const job of jobs) job.stop();
       await Promise.all(running);
     };

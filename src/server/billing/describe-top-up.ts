@@ -21,6 +21,7 @@ export async function describeTopUps(rows: TopUp[]): Promise<TopUpDocument[]> {
       paidAt: row.paidAt,
       checkoutUrl: row.state === 'pending' ? row.checkoutUrl : null,
       problem: row.problem,
+      way: row.way,
       invoiceId: invoices.find(({ topUpId }) => topUpId === row.id)?.id ?? null,
     };
   });

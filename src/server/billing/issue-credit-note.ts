@@ -7,7 +7,7 @@ import { newId } from '../ids.ts';
 import type { OpenLotRow } from '../ledger/read-open-lots.ts';
 import { faceOf } from './face-of.ts';
 import { nextInvoiceNumber } from './next-invoice-number.ts';
-import { wakeReceipts } from './wake-receipts.ts';
+import { wakeBilling } from './wake-billing.ts';
 
 /** A series of its own, without gaps. */
 export const creditNoteSeries = 'BCN';
@@ -63,7 +63,7 @@ export async function issueCreditNote(options: IssueCreditNote): Promise<CreditR
     const topUp = invoice.topUpId ? await TopUp.findByPk(invoice.topUpId) : null;
     const byCard = topUp ? 'pending' : 'by_transfer';
     const { totalMinor, taxMinor, currency } = face;
-    afterCommit(wakeReceipts);
+    afterCommit(wakeBilling);
     return CreditReturn.create({
       id: returnId,
       teamId: invoice.teamId,

@@ -9,7 +9,7 @@ import { requireOperator } from '../operate/require-operator.ts';
 import { issueBoughtCredits } from '../ledger/issue-bought-credits.ts';
 import { faceOf } from './face-of.ts';
 import { issueInvoice } from './issue-invoice.ts';
-import { wakeReceipts } from './wake-receipts.ts';
+import { wakeBilling } from './wake-billing.ts';
 
 /** Marking twice changes nothing and answers the same invoice. One that expired or was cancelled is refused. */
 export async function markTransferReceived(options: {
@@ -42,7 +42,7 @@ export async function markTransferReceived(options: {
       memo: { proFormaId: row.id },
     });
     const invoice = await issueInvoice({ teamId, face: faceOf(row), paidAt, proFormaId: row.id });
-    afterCommit(wakeReceipts);
+    afterCommit(wakeBilling);
     return accept({ invoiceId: invoice.id });
   });
 }

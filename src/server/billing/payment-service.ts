@@ -1,65 +1,12 @@
-/**
- * The only module that talks to the payment service. With STRIPE_SECRET_KEY the hosted one; without it the local
- * fake at STRIPE_FAKE_URL, over HTTP through the same SDK.
- */
-import Stripe from 'stripe';
+/** Customers, hosted checkouts, refunds and signed events of the payment service. */
 import type { FetchedCheckout } from '@/domain/billing/decide-top-up.ts';
-import { accept, refuse, type Refusal, type Result } from '@/domain/refusals.ts';
-import { env, type Env } from '../env.ts';
+import { accept, refuse, type Result } from '@/domain/refusals.ts';
+import { env } from '../env.ts';
 import { log } from '../log.ts';
+import { callService as call, idOf, paymentClient } from './payment-client.ts';
 
 /** What the local fake signs with when nothing else is configured. It guards nothing: no money moves there. */
 export const practiceWebhookSecret = 'whsec_local_practice';
-
-const unavailable = (): Refusal =>
-  refuse(
-    'payment_service_unavailable',
-    'The payment service cannot be reached. Nothing was charged; try again in a few minutes.',
-  );
-
-let made: { env: Env; stripe: Stripe } | undefined;
-
-/** Made anew when the environment changes, as it does between tests. Null when no service is configured. */
-function client(): Stripe | null {
-  const settings = env();
-  if (made?.env === settings) return made.stripe;
-  const common = { timeout: 20_000, maxNetworkRetries: 1, telemetry: false, appInfo: { name: 'Burette' } };
-  if (settings.STRIPE_SECRET_KEY) made = { env: settings, stripe: new Stripe(settings.STRIPE_SECRET_KEY, common) };
-  else if (settings.STRIPE_FAKE_URL) {
-    const { hostname, port, protocol } = new URL(settings.STRIPE_FAKE_URL);
-    made = {
-      env: settings,
-      stripe: new Stripe('practice-key', {
-        ...common,
-        host: hostname,
-        port: port || (protocol === 'https:' ? '443' : '80'),
-        protocol: protocol === 'https:' ? 'https' : 'http',
-      }),
-    };
-  } else return null;
-  return made.stripe;
-}
-
-/** An outage of the service is a refusal; a request that it finds wrong is our bug and thrown. */
-async function call<T>(name: string, work: (stripe: Stripe) => Promise<T>): Promise<Result<T>> {
-  const stripe = client();
-  if (!stripe) {
-    log().error('no payment service is configured: set STRIPE_SECRET_KEY or STRIPE_FAKE_URL');
-    return unavailable();
-  }
-  try {
-    return accept(await work(stripe));
-  } catch (error) {
-    const outage =
-      error instanceof Stripe.errors.StripeConnectionError ||
-      error instanceof Stripe.errors.StripeAPIError ||
-      error instanceof Stripe.errors.StripeRateLimitError ||
-      error instanceof Stripe.errors.StripeAuthenticationError;
-    if (!outage) throw error;
-    log().warn({ err: error, call: name }, 'payment service call failed');
-    return unavailable();
-  }
-}
 
 export async function createCustomer(options: {
   teamId: string;
@@ -120,9 +67,6 @@ export async function openCheckout(options: OpenCheckout): Promise<Result<{ sess
   if (!url) throw new Error(`Checkout ${id} has no address.`);
   return accept({ sessionId: id, url });
 }
-
-const idOf = (value: string | { id: string } | null | undefined): string | null =>
-  typeof value === 'string' ? value : (value?.id ?? null);
 
 /** A state that the service may add later counts as not yet decided. */
 const checkoutStates: Record<string, FetchedCheckout['status']> = { complete: 'complete', expired: 'expired' };
@@ -186,6 +130,7 @@ export interface ReceivedEvent {
   objectId: string | null;
   sessionId: string | null;
   topUpId: string | null;
+  disputeId: string | null;
 }
 
 /**
@@ -196,7 +141,7 @@ export function readEvent(body: string, signature: string | null): Result<Receiv
   const bad = refuse('bad_signature', 'This is not an event that the payment service signed in the last five minutes.');
   const { STRIPE_SECRET_KEY, STRIPE_WEBHOOK_SECRET } = env();
   const secret = STRIPE_WEBHOOK_SECRET ?? (STRIPE_SECRET_KEY ? undefined : practiceWebhookSecret);
-  const stripe = client();
+  const stripe = paymentClient();
   if (!secret || !stripe || !signature) return bad;
   try {
     const event = stripe.webhooks.constructEvent(body, signature, secret);
@@ -209,6 +154,7 @@ export function readEvent(body: string, signature: string | null): Result<Receiv
       objectId: text(object.id),
       sessionId: object.object === 'checkout.session' ? text(object.id) : null,
       topUpId: text(object.metadata?.['topUpId']),
+      disputeId: object.object === 'dispute' ? text(object.id) : null,
     });
   } catch (error) {
     log().warn({ err: error }, 'refused a payment event');

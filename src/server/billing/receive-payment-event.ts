@@ -1,6 +1,7 @@
 /** Takes a webhook of the payment service: checks, records once, and looks up what it is about. */
 import { inWriteTransaction } from '@db/in-write-transaction.ts';
 import { PaymentEvent, TopUp } from '@db/models/billing.ts';
+import { CardSetup } from '@db/models/cards.ts';
 import { accept, type Result } from '@/domain/refusals.ts';
 import { nowText } from '../clock.ts';
 import { handlePaymentEvent } from './handle-payment-event.ts';
@@ -21,17 +22,19 @@ export async function receivePaymentEvent(options: {
     if (await PaymentEvent.findByPk(id, { attributes: ['id'] })) return false;
     const bySession = sessionId ? await TopUp.findOne({ where: { sessionId }, attributes: ['id'] }) : null;
     const named = !bySession && topUpId ? await TopUp.findByPk(topUpId, { attributes: ['id'] }) : null;
-    const known = bySession?.id ?? named?.id ?? null;
+    const setup = sessionId ? await CardSetup.findOne({ where: { sessionId }, attributes: ['id'] }) : null;
+    const known = bySession !== null || named !== null || setup !== null;
     await PaymentEvent.create({
       id,
       type,
       objectId,
-      topUpId: known,
+      topUpId: bySession?.id ?? named?.id ?? null,
+      cardSetupId: setup?.id ?? null,
       receivedAt: nowText(),
       state: known ? 'recorded' : 'ignored',
-      outcome: known ? null : 'concerns no top-up of ours',
+      outcome: known ? null : 'concerns nothing of ours',
     });
-    return known !== null;
+    return known;
   });
   if (isNew) await handlePaymentEvent(id);
   return accept({ received: true });

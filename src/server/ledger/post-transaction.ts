@@ -1,11 +1,12 @@
 /** Appends one transaction to the ledger: the only writer of it. Decisions and refusals happen before, in the verbs. */
 import { createHash } from 'node:crypto';
-import { inWriteTransaction } from '@db/in-write-transaction.ts';
+import { afterCommit, inWriteTransaction } from '@db/in-write-transaction.ts';
 import { LedgerTransaction } from '@db/models/ledger.ts';
 import type { Posting, TransactionKind } from '@/domain/ledger/accounts.ts';
 import { canonicalText, genesisHash, type CanonicalTransaction } from '@/domain/ledger/canonical-transaction.ts';
 import type { LotDraw, LotIssue } from '@/domain/ledger/lots.ts';
 import { nowText } from '../clock.ts';
+import { wakeAutomaticTopUps } from '../billing/wake-automatic-top-ups.ts';
 import { newId } from '../ids.ts';
 
 export interface Segment {
@@ -56,6 +57,7 @@ export async function postTransaction(transaction: NewTransaction): Promise<Ledg
       memo: JSON.stringify(transaction.memo ?? {}),
       previousHash: head?.hash ?? genesisHash,
     };
+    afterCommit(wakeAutomaticTopUps);
     return LedgerTransaction.create({ ...row, hash: hashTransaction(row) });
   });
 }

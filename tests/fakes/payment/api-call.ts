@@ -22,7 +22,19 @@ export interface ApiCall {
 export type ApiHandler = (context: ApiContext, call: ApiCall) => unknown;
 export type ApiRoute = [method: 'GET' | 'POST' | 'DELETE', path: RegExp, handler: ApiHandler];
 
-export const list = (url: string, data: unknown[]) => ({ object: 'list', url, has_more: false, data });
+/** One page of records, newest first, by the service's own parameters: `limit`, `starting_after`, `created[gte]`. */
+export function list<T extends { id: string; created: number }>(url: string, records: T[], query: URLSearchParams) {
+  const from = Number(query.get('created[gte]') ?? 0);
+  const newest = records.filter(({ created }) => created >= from).reverse();
+  const after = query.get('starting_after');
+  const rest = newest.slice(after ? newest.findIndex(({ id }) => id === after) + 1 : 0);
+  const limit = Math.min(100, Number(query.get('limit') ?? 10));
+  return { object: 'list', url, has_more: rest.length > limit, data: rest.slice(0, limit) };
+}
+
+/** `expand[]=payment_intent` puts the object where its id stands. */
+export const expanded = (query: URLSearchParams): string[] =>
+  [...query].filter(([name]) => name.startsWith('expand')).map(([, value]) => value);
 
 export const positiveAmount = (form: Form, name: string): number => {
   const text = textOf(form, name);

@@ -1,5 +1,5 @@
 /** Checkout sessions and setup intents of the fake. */
-import { list, makeIntent, type ApiContext, type ApiHandler, type ApiRoute } from './api-call.ts';
+import { expanded, list, makeIntent, type ApiContext, type ApiHandler, type ApiRoute } from './api-call.ts';
 import { ApiFailure, invalid, missing, noSuch } from './failures.ts';
 import { formOf, metadataOf, textOf, type Form } from './form-body.ts';
 import type { FakeSession, FakeSetup, Line } from './state.ts';
@@ -84,6 +84,7 @@ function makeSetup(store: ApiContext['store'], customer: string | null, metadata
     client_secret: `${id}_secret_local`,
     created: store.now(),
     customer,
+    last_setup_error: null,
     livemode: false,
     metadata,
     payment_method: null,
@@ -100,16 +101,15 @@ const sessionOf = ({ store }: ApiContext, id: string): FakeSession => {
   return session;
 };
 
-/** `expand[]=payment_intent` puts the object where its id stands. */
 const readSession: ApiHandler = (context, { ids: [id = ''], query }) => {
   const session = sessionOf(context, id);
-  const expanded = [...query].filter(([name]) => name.startsWith('expand')).map(([, value]) => value);
+  const wanted = expanded(query);
   const intent = context.store.state.intents[session.payment_intent ?? ''];
   const setup = context.store.state.setups[session.setup_intent ?? ''];
   return {
     ...session,
-    ...(intent && expanded.includes('payment_intent') ? { payment_intent: intent } : {}),
-    ...(setup && expanded.includes('setup_intent') ? { setup_intent: setup } : {}),
+    ...(intent && wanted.includes('payment_intent') ? { payment_intent: intent } : {}),
+    ...(setup && wanted.includes('setup_intent') ? { setup_intent: setup } : {}),
   };
 };
 
@@ -118,11 +118,10 @@ const listSessions: ApiHandler = ({ store }, { query }) => {
   const customer = query.get('customer');
   return list(
     '/v1/checkout/sessions',
-    Object.values(store.state.sessions)
-      .filter(
-        (session) => (!intent || session.payment_intent === intent) && (!customer || session.customer === customer),
-      )
-      .reverse(),
+    Object.values(store.state.sessions).filter(
+      (session) => (!intent || session.payment_intent === intent) && (!customer || session.customer === customer),
+    ),
+    query,
   );
 };
 

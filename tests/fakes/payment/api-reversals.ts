@@ -1,5 +1,5 @@
 /** Refunds and disputes of the fake. */
-import { list, positiveAmount, type ApiHandler, type ApiRoute } from './api-call.ts';
+import { expanded, list, positiveAmount, type ApiHandler, type ApiRoute } from './api-call.ts';
 import { ApiFailure, missing, noSuch } from './failures.ts';
 import { metadataOf, textOf } from './form-body.ts';
 import type { FakeDispute, FakeRefund, Store } from './state.ts';
@@ -16,6 +16,12 @@ const createRefund: ApiHandler = ({ store, webhooks }, { form, idempotencyKey })
   const intent = store.state.intents[intentId];
   if (!intent) throw noSuch('payment_intent', intentId);
   const left = intent.amount_received - refunded(store, intentId);
+  if (Object.values(store.state.disputes).some((each) => each.payment_intent === intentId && each.status !== 'won'))
+    throw new ApiFailure(400, {
+      type: 'invalid_request_error',
+      code: 'charge_disputed',
+      message: `Charge ${intent.latest_charge} has been charged back; cannot issue a refund.`,
+    });
   const amount = textOf(form, 'amount') === undefined ? left : positiveAmount(form, 'amount');
   if (intent.status !== 'succeeded' || amount > left || amount <= 0)
     throw new ApiFailure(400, {
@@ -41,14 +47,14 @@ const createRefund: ApiHandler = ({ store, webhooks }, { form, idempotencyKey })
   return refund;
 };
 
-/** Somebody's bank takes the payment back; started from the control page. */
-export function openDispute(store: Store, webhooks: Webhooks, intentId: string): FakeDispute {
+/** Somebody's bank takes the payment back, as far as it was not refunded; started from the control page. */
+export function openDispute(store: Store, webhooks: Webhooks, intentId: string, amount?: number): FakeDispute {
   const intent = store.state.intents[intentId];
   if (intent?.status !== 'succeeded' || !intent.latest_charge) throw noSuch('payment_intent', intentId);
   const dispute: FakeDispute = {
     id: store.id('dp'),
     object: 'dispute',
-    amount: intent.amount,
+    amount: amount ?? intent.amount_received - refunded(store, intentId),
     charge: intent.latest_charge,
     created: store.now(),
     currency: intent.currency,
@@ -97,15 +103,17 @@ export const reversalRoutes: ApiRoute[] = [
         Object.values(store.state.refunds).filter(
           ({ payment_intent }) => !query.get('payment_intent') || payment_intent === query.get('payment_intent'),
         ),
+        query,
       ),
   ],
   [
     'GET',
     /^\/v1\/disputes\/([^/]+)$/,
-    ({ store }, { ids: [id = ''] }) => {
+    ({ store }, { ids: [id = ''], query }) => {
       const dispute = store.state.disputes[id];
       if (!dispute) throw noSuch('dispute', id);
-      return dispute;
+      const intent = store.state.intents[dispute.payment_intent];
+      return { ...dispute, ...(expanded(query).includes('payment_intent') ? { payment_intent: intent } : {}) };
     },
   ],
   [
@@ -117,6 +125,7 @@ export const reversalRoutes: ApiRoute[] = [
         Object.values(store.state.disputes).filter(
           ({ payment_intent }) => !query.get('payment_intent') || payment_intent === query.get('payment_intent'),
         ),
+        query,
       ),
   ],
 ];

@@ -6,7 +6,8 @@ import { formOf, metadataOf, textOf } from './form-body.ts';
 import type { Payments } from './payments.ts';
 import { makeCard } from './cards.ts';
 import type { FakeIntent } from './state.ts';
-import { ApiFailure, missing, noSuch } from './failures.ts';
+import { ApiFailure, invalid, missing, noSuch } from './failures.ts';
+import { heldBy } from './balance.ts';
 
 const find = <T>(records: Record<string, T>, kind: string, id: string): T => {
   const found = records[id];
@@ -44,7 +45,10 @@ const createIntent: ApiHandler = ({ store, payments, webhooks }, { form, idempot
   webhooks.emit('payment_intent.created', intent, idempotencyKey);
   const method = textOf(form, 'payment_method');
   if (!method) return intent;
-  intent.payment_method = find(store.state.methods, 'PaymentMethod', method).id;
+  const found = find(store.state.methods, 'PaymentMethod', method);
+  if (intent.customer && found.customer !== intent.customer)
+    throw invalid('payment_method', 'The payment method does not belong to the customer that you supplied.');
+  intent.payment_method = found.id;
   intent.status = 'requires_confirmation';
   return textOf(form, 'confirm') === 'true' ? confirm(payments, intent) : intent;
 };
@@ -70,6 +74,7 @@ const methodsOf: ApiHandler = ({ store }, { ids: [customer = ''], query }) =>
     Object.values(store.state.methods).filter(
       (method) => method.customer === customer && (!query.get('type') || method.type === query.get('type')),
     ),
+    query,
   );
 
 const routes: ApiRoute[] = [
@@ -94,6 +99,18 @@ const routes: ApiRoute[] = [
   ['POST', /^\/v1\/payment_intents$/, createIntent],
   [
     'GET',
+    /^\/v1\/payment_intents$/,
+    ({ store }, { query }) =>
+      list(
+        '/v1/payment_intents',
+        Object.values(store.state.intents).filter(
+          ({ customer }) => !query.get('customer') || customer === query.get('customer'),
+        ),
+        query,
+      ),
+  ],
+  [
+    'GET',
     /^\/v1\/payment_intents\/([^/]+)$/,
     ({ store }, { ids: [id = ''] }) => find(store.state.intents, 'payment_intent', id),
   ],
@@ -101,6 +118,11 @@ const routes: ApiRoute[] = [
     'POST',
     /^\/v1\/payment_intents\/([^/]+)\/confirm$/,
     ({ store, payments }, { ids: [id = ''] }) => confirm(payments, find(store.state.intents, 'payment_intent', id)),
+  ],
+  [
+    'POST',
+    /^\/v1\/payment_intents\/([^/]+)\/cancel$/,
+    ({ store, payments }, { ids: [id = ''] }) => payments.cancel(find(store.state.intents, 'payment_intent', id)),
   ],
   [
     'GET',
@@ -131,6 +153,12 @@ const routes: ApiRoute[] = [
     /^\/v1\/payment_methods\/([^/]+)\/detach$/,
     ({ store, webhooks }, { ids: [id = ''] }) => {
       const method = find(store.state.methods, 'PaymentMethod', id);
+      if (!method.customer)
+        throw new ApiFailure(400, {
+          type: 'invalid_request_error',
+          code: 'payment_method_not_available',
+          message: 'The payment method you provided is not attached to a customer so detachment is impossible.',
+        });
       method.customer = null;
       webhooks.emit('payment_method.detached', method);
       return method;
@@ -145,24 +173,11 @@ const routes: ApiRoute[] = [
       return event;
     },
   ],
-  [
-    'GET',
-    /^\/v1\/events$/,
-    ({ store }, { query }) =>
-      list('/v1/events', [...store.state.events].reverse().slice(0, Number(query.get('limit') ?? 10))),
-  ],
+  ['GET', /^\/v1\/events$/, ({ store }, { query }) => list('/v1/events', store.state.events, query)],
   [
     'GET',
     /^\/v1\/balance$/,
-    ({ store }) => {
-      const held = new Map<string, number>();
-      for (const { status, currency, amount_received } of Object.values(store.state.intents))
-        if (status === 'succeeded') held.set(currency, (held.get(currency) ?? 0) + amount_received);
-      for (const { status, currency, amount } of Object.values(store.state.refunds))
-        if (status === 'succeeded') held.set(currency, (held.get(currency) ?? 0) - amount);
-      const available = [...held].map(([currency, amount]) => ({ currency, amount }));
-      return { object: 'balance', available, pending: [], livemode: false };
-    },
+    ({ store }) => ({ object: 'balance', available: heldBy(store.state), pending: [], livemode: false }),
   ],
   ...checkoutRoutes,
   ...reversalRoutes,

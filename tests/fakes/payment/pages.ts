@@ -1,4 +1,5 @@
 /** The hosted page where a buyer pays, and the control page. Plain, and they say that no money moves. */
+import { heldBy } from './balance.ts';
 import { sampleCards } from './cards.ts';
 import type { FakeSession, Line, State } from './state.ts';
 
@@ -59,15 +60,15 @@ export function payPage(session: FakeSession, lines: Line[], problem: string | n
 
 export const authenticatePage = (session: FakeSession): string =>
   page(
-    'Confirm the payment',
+    session.mode === 'setup' ? 'Confirm the card' : 'Confirm the payment',
     `<h1>Your bank asks whether this is you</h1>
-    <form method="post" action="/pay/${session.id}/authenticate"><button class="first" name="passed" value="1">Confirm the payment</button><button name="passed" value="0">Do not confirm</button></form>`,
+    <form method="post" action="/pay/${session.id}/authenticate"><button class="first" name="passed" value="1">Confirm the ${session.mode === 'setup' ? 'card' : 'payment'}</button><button name="passed" value="0">Do not confirm</button></form>`,
   );
 
 export const closedPage = (session: FakeSession): string =>
   page(
     'Nothing to pay',
-    `<h1>${session.status === 'complete' ? 'This has been paid' : 'This checkout has expired'}</h1>
+    `<h1>${session.status !== 'complete' ? 'This checkout has expired' : session.mode === 'setup' ? 'This card has been saved' : 'This has been paid'}</h1>
     <p>${session.status === 'complete' ? 'There is nothing left to do here.' : 'Go back and begin again; nothing was charged.'}</p>`,
   );
 
@@ -88,7 +89,13 @@ export function controlPage(state: State): string {
     <h2>Clock</h2><p>${state.clockOffsetSeconds} s ahead; ${Object.keys(state.debits).length} debits on their way.</p>
     ${button('clock', 'Let a day pass', { advanceSeconds: 86_400 })}${button('clock', 'Let four days pass', { advanceSeconds: 345_600 })}
     <h2>Webhooks</h2><p><code>${escape(JSON.stringify(state.switches))}</code>; ${state.deliveries.length} waiting.</p>
-    ${button('switches', 'Deliver the next ones twice', { duplicate: 1 })}${button('switches', 'Lose the next one', { lose: 1 })}${button('switches', 'Reverse their order', { reorder: 1 })}${button('switches', 'Behave well again')}
+    ${button('switches', 'Deliver the next ones twice', { duplicate: 1 })}${button('switches', 'Lose the next one', { lose: 1 })}${button('switches', 'Reverse their order', { reorder: 1 })}${button('switches', 'Deliver a minute late', { delayMs: 60_000 })}${button('switches', 'Behave well again')}
+    <h2>Calls</h2>${button('switches', 'Fail the next two', { failNext: 2 })}${button('switches', 'Lose the next two answers', { hangNext: 2 })}${button('switches', 'Keep the next one waiting', { stallNext: 1 })}
+    <h2>Balance</h2><p>${
+      heldBy(state)
+        .map(({ currency, amount }) => money(amount, currency))
+        .join(', ') || 'Nothing is held.'
+    }</p>
     <h2>Payments</h2>${paid.map(({ id, amount, currency }) => `<p>${money(amount, currency)} <code>${id}</code></p>${button('disputes', 'Dispute it', { paymentIntent: id })}`).join('') || '<p>None yet.</p>'}
     ${disputed.map(({ id }) => `<p>Dispute <code>${id}</code></p>${button('disputes/decide', 'Decide for the seller', { dispute: id, status: 'won' })}${button('disputes/decide', 'Decide for the buyer', { dispute: id, status: 'lost' })}`).join('')}
     <h2>Events</h2><table>${events.map(({ id, type }) => `<tr><td>${escape(type)}</td><td><code>${id}</code></td></tr>`).join('')}</table>`,

@@ -1,6 +1,6 @@
 /** Moves payment intents and checkout sessions through their published states, emitting the service's events in its order. */
-import { declines, makeCard, makeDebit, outcomeOf, type CardOutcome } from './cards.ts';
-import type { FakeIntent, FakeMethod, FakeSession, Store } from './state.ts';
+import { asksHolder, declines, makeCard, makeDebit, outcomeOf, type CardOutcome } from './cards.ts';
+import type { FakeIntent, FakeMethod, FakeSession, FakeSetup, Store } from './state.ts';
 import type { Webhooks } from './webhooks.ts';
 
 const debitSettlesAfterSeconds = 3 * 24 * 3600;
@@ -21,7 +21,7 @@ export class Payments {
     if (session.mode === 'setup') return this.#saveCard(session, method, outcome);
     const intent = this.intentOf(session);
     intent.payment_method = method.id;
-    if (outcome === 'authentication') {
+    if (asksHolder(outcome)) {
       intent.status = 'requires_action';
       this.webhooks.emit('payment_intent.requires_action', intent);
       return 'authenticate';
@@ -36,6 +36,7 @@ export class Payments {
   }
 
   authenticate(session: FakeSession, passed: boolean): Attempt {
+    if (session.mode === 'setup') return this.#authenticateSetup(session, passed);
     const intent = this.intentOf(session);
     const method = this.store.state.methods[intent.payment_method ?? ''] ?? null;
     if (intent.status !== 'requires_action') return intent.status === 'succeeded' ? 'paid' : 'declined';
@@ -93,15 +94,19 @@ export class Payments {
     this.webhooks.emit(`checkout.session.async_payment_${succeeds ? 'succeeded' : 'failed'}`, session);
   }
 
+  cancel(intent: FakeIntent): FakeIntent {
+    if (intent.status === 'succeeded' || intent.status === 'canceled') return intent;
+    intent.status = 'canceled';
+    intent.canceled_at = this.store.now();
+    this.webhooks.emit('payment_intent.canceled', intent);
+    return intent;
+  }
+
   expire(session: FakeSession): void {
     session.status = 'expired';
     session.url = null;
     const intent = this.store.state.intents[session.payment_intent ?? ''];
-    if (intent && intent.status !== 'succeeded') {
-      intent.status = 'canceled';
-      intent.canceled_at = this.store.now();
-      this.webhooks.emit('payment_intent.canceled', intent);
-    }
+    if (intent) this.cancel(intent);
     this.webhooks.emit('checkout.session.expired', session);
   }
 
@@ -110,8 +115,8 @@ export class Payments {
     const method = this.store.state.methods[intent.payment_method ?? ''];
     if (!method) throw new Error('An intent without a payment method cannot be confirmed.');
     const outcome = outcomeOf(this.store.state.cardNumbers[method.id] ?? '') ?? 'accepted';
-    if (outcome === 'accepted') this.succeed(intent);
-    else if (outcome === 'authentication') this.fail(intent, declines.authentication, method);
+    if (outcome === 'accepted' || (outcome === 'authentication' && method.customer)) this.succeed(intent);
+    else if (asksHolder(outcome)) this.fail(intent, declines.authentication, method);
     else this.fail(intent, outcome === 'insufficient' ? declines.insufficient : declines.declined, method);
   }
 
@@ -145,12 +150,44 @@ export class Payments {
   }
 
   #saveCard(session: FakeSession, method: FakeMethod, outcome: CardOutcome): Attempt {
+    const setup = this.#setupOf(session);
+    setup.payment_method = method.id;
+    if (asksHolder(outcome)) {
+      setup.status = 'requires_action';
+      this.webhooks.emit('setup_intent.requires_action', setup);
+      return 'authenticate';
+    }
+    if (outcome === 'declined' || outcome === 'insufficient') return this.#failSetup(setup, declines[outcome]);
+    return this.#succeedSetup(session, setup);
+  }
+
+  #authenticateSetup(session: FakeSession, passed: boolean): Attempt {
+    const setup = this.#setupOf(session);
+    if (setup.status !== 'requires_action') return setup.status === 'succeeded' ? 'paid' : 'declined';
+    return passed ? this.#succeedSetup(session, setup) : this.#failSetup(setup, declines.failedSetup);
+  }
+
+  #setupOf(session: FakeSession): FakeSetup {
     const setup = this.store.state.setups[session.setup_intent ?? ''];
     if (!setup) throw new Error(`Session ${session.id} has no setup intent.`);
-    if (outcome === 'declined' || outcome === 'insufficient') return 'declined';
+    return setup;
+  }
+
+  #failSetup(setup: FakeSetup, error: NonNullable<FakeSetup['last_setup_error']>): Attempt {
+    setup.status = 'requires_payment_method';
+    setup.payment_method = null;
+    setup.last_setup_error = { ...error };
+    this.webhooks.emit('setup_intent.setup_failed', setup);
+    return 'declined';
+  }
+
+  #succeedSetup(session: FakeSession, setup: FakeSetup): Attempt {
+    const method = this.store.state.methods[setup.payment_method ?? ''];
+    if (!method) throw new Error(`Setup ${setup.id} has no payment method.`);
     method.customer = session.customer;
-    setup.payment_method = method.id;
     setup.status = 'succeeded';
+    setup.last_setup_error = null;
+    this.webhooks.emit('payment_method.attached', method);
     this.webhooks.emit('setup_intent.succeeded', setup);
     this.#complete(session, 'no_payment_required');
     return 'paid';

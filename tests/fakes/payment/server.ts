@@ -107,6 +107,10 @@ function answerApi(
     );
   const result = earlier ?? perform();
   if (key && !earlier) state.answers[key] = { request: fingerprint, ...result };
+  if (state.switches.stallNext > 0) {
+    state.switches.stallNext -= 1;
+    return;
+  }
   if (state.switches.hangNext > 0) {
     state.switches.hangNext -= 1;
     return void request.socket.destroy();
@@ -158,8 +162,10 @@ function answerPage(
 
 function problemOf(context: ApiContext, session: FakeSession, attempt: Attempt): string {
   if (attempt === 'unknown_card') return 'That is not one of the sample cards listed below.';
-  const intent = context.store.state.intents[session.payment_intent ?? ''];
-  return `${intent?.last_payment_error?.message ?? 'The card was declined.'} Nothing was charged. Try another card.`;
+  const { intents, setups } = context.store.state;
+  const error =
+    intents[session.payment_intent ?? '']?.last_payment_error ?? setups[session.setup_intent ?? '']?.last_setup_error;
+  return `${error?.message ?? 'The card was declined.'} Nothing was charged. Try another card.`;
 }
 
 /** Controls answer JSON to programs and lead back to the control page in a browser. */
@@ -190,6 +196,7 @@ function answerControls(
         lose: number('lose'),
         failNext: number('failNext'),
         hangNext: number('hangNext'),
+        stallNext: number('stallNext'),
       });
       break;
     case '/_fake/clock':
@@ -200,7 +207,7 @@ function answerControls(
       webhooks.redeliver(textOf(form, 'event') ?? '');
       break;
     case '/_fake/disputes':
-      openDispute(store, webhooks, textOf(form, 'paymentIntent') ?? '');
+      openDispute(store, webhooks, textOf(form, 'paymentIntent') ?? '', number('amount') || undefined);
       break;
     case '/_fake/disputes/decide':
       decideDispute(store, webhooks, textOf(form, 'dispute') ?? '', textOf(form, 'status') === 'won' ? 'won' : 'lost');

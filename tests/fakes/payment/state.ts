@@ -70,6 +70,7 @@ export type FakeSetup = Pick<
   customer: string | null;
   payment_method: string | null;
   client_secret: string;
+  last_setup_error: { type: string; code: string; decline_code?: string; message: string } | null;
 };
 export type FakeRefund = Pick<
   Stripe.Refund,
@@ -121,6 +122,8 @@ export interface Switches {
   failNext: number;
   /** This many of the next API calls are done but their answer never arrives. */
   hangNext: number;
+  /** This many of the next API calls are done and then keep their caller waiting for ever. */
+  stallNext: number;
 }
 
 export interface State {
@@ -147,7 +150,15 @@ export interface State {
   switches: Switches;
 }
 
-export const calm: Switches = { duplicate: 0, delayMs: 0, reorder: false, lose: 0, failNext: 0, hangNext: 0 };
+export const calm: Switches = {
+  duplicate: 0,
+  delayMs: 0,
+  reorder: false,
+  lose: 0,
+  failNext: 0,
+  hangNext: 0,
+  stallNext: 0,
+};
 
 const empty = (): State => ({
   count: 0,
