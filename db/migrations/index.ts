@@ -9,6 +9,7 @@ import { jobs } from './0006-jobs.ts';
 import { finance } from './0007-finance.ts';
 import { creditReturns } from './0008-credit-returns.ts';
 import { cardsAndDisputes } from './0009-cards-and-disputes.ts';
+import { pilotMeans } from './0010-pilot-means.ts';
 
 export const migrations: Migration[] = [
   people,
@@ -20,4 +21,5 @@ export const migrations: Migration[] = [
   finance,
   creditReturns,
   cardsAndDisputes,
+  pilotMeans,
 ];

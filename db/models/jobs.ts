@@ -7,6 +7,7 @@ import {
   type Sequelize,
 } from 'sequelize';
 import type { BatchFailure, JobEnding, JobInputs } from '@/domain/jobs/job-inputs.ts';
+import type { HorizonMean } from '@/domain/jobs/method-comparison.ts';
 import type { JobState } from '@/domain/jobs/job-state.ts';
 import type { Lane } from '@/domain/pricing/price-book.ts';
 import { column } from './columns.ts';
@@ -26,6 +27,8 @@ export class Pilot extends Model<InferAttributes<Pilot>, InferCreationAttributes
   declare seconds: number;
   declare secondsPerReplicate: number;
   declare kernel: string;
+  /** Means and sds at the horizon; null of pilots that ran before they were kept. */
+  declare atHorizon: CreationOptional<HorizonMean[] | null>;
   declare engineVersion: string;
   declare createdAt: string;
 }
@@ -153,6 +156,7 @@ export function defineJobs(sequelize: Sequelize): void {
       seconds: column.real(),
       secondsPerReplicate: column.real(),
       kernel: column.text(),
+      atHorizon: column.optionalJson<HorizonMean[]>('atHorizon'),
       engineVersion: column.text(),
       createdAt: column.text(),
     },

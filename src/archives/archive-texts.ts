@@ -1,4 +1,5 @@
 /** The words of an archive: its README, and the facts that README and report have in common. */
+import type { JobInputs } from '@/domain/jobs/job-inputs.ts';
 import type { ArchiveSubject, Results } from './subject.ts';
 
 export const caution =
@@ -25,7 +26,7 @@ const about: [pattern: RegExp, words: string][] = [
   [/^results\/summary\.csv$/, 'mean and standard deviation at each grid time, each with its standard error'],
   [/^results\/quantiles\.csv$/, 'quantiles (type 1, the inverse of the sample distribution)'],
   [/^results\/histograms\.csv$/, 'how many replicates had each value; width 1 means exactly this value'],
-  [/^results\/events\.csv$/, 'reaction events of each replicate: what was metered'],
+  [/^results\/events\.csv$/, 'events of each replicate: what was metered'],
   [/^results\/blocks\.csv$/, 'digests of blocks of replicates, for whoever runs some of them again'],
   [/^results\/block-sums\.csv$/, 'exact sums of each block: together they give every number of summary.csv'],
   [/^results\/traces\.csv$/, 'the first replicates, whole, on the grid'],
@@ -42,7 +43,7 @@ export function describeJob({ job, model, version }: ArchiveSubject, { ensemble 
   ].map(([id, value]) => `${id} = ${value}`);
   return [
     ['Model', `${model.name}, version ${version.number} (${version.contentHash})`],
-    ['Method', methods[inputs.method]],
+    ['Method', methodText(inputs)],
     ['Kernel', `${ensemble.kernel}, ${ensemble.engineVersion}`],
     ['Horizon', `${inputs.horizon}${unit}, ${inputs.gridIntervals} grid intervals`],
     ['Seed', job.seed],
@@ -53,10 +54,19 @@ export function describeJob({ job, model, version }: ArchiveSubject, { ensemble 
   ];
 }
 
-const methods = {
-  exact: 'exact (each replicate is a sample path of the stochastic process itself)',
-  leap: 'approximate: tau-leaping',
-};
+const methodText = ({ method, epsilon }: JobInputs): string =>
+  method === 'exact'
+    ? 'exact (each replicate is a sample path of the stochastic process itself)'
+    : `approximate: tau-leaping, ε = ${epsilon}`;
+
+/** What every reader of a leaped job's numbers must know; empty for the exact method. */
+export const approximationText = ({ method, epsilon }: JobInputs): string =>
+  method === 'exact'
+    ? ''
+    : 'These results are approximate. Tau-leaping lets many firings happen in one step, chosen so that propensities change by ' +
+      `about ε = ${epsilon} of themselves at most. Its error comes on top of the sampling errors that are given, and no interval here ` +
+      'contains it. First passages are resolved to the end of a step. Events are the Poisson numbers drawn, rejected steps ' +
+      'included, and the exact firings.';
 
 export function readmeText(subject: ArchiveSubject, results: Results, paths: string[]): string {
   const { job } = subject;
@@ -71,6 +81,7 @@ export function readmeText(subject: ArchiveSubject, results: Results, paths: str
     '',
     (job.ending && endings[job.ending.state]) ?? job.ending?.detail ?? '',
     '',
+    ...(job.inputs.method === 'exact' ? [] : [wrap(approximationText(job.inputs)), '']),
     'Files',
     '-----',
     ...paths.flatMap((path) =>

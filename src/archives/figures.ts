@@ -32,7 +32,7 @@ export function figuresOf(subject: ArchiveSubject, results: Results): Figure[] {
   const times = gridTimes(inputs.horizon, inputs.gridIntervals);
   const { observables, replicates } = statisticsOf(summary, times);
   const named = new Map(namesOf(subject).map(({ id, name }) => [id, name]));
-  const from = `from ${replicates.toLocaleString('en')} replicates`;
+  const from = `from ${replicates.toLocaleString('en')} replicates${inputs.method === 'exact' ? '' : ' of tau-leaping (approximate)'}`;
   return observables.slice(0, observablesMost).flatMap((estimates, place): Figure[] => {
     const { id } = estimates;
     const title = named.get(id) || id;
@@ -80,7 +80,7 @@ export function figuresOf(subject: ArchiveSubject, results: Results): Figure[] {
               path: `figures/${id}-traces.svg`,
               observable: id,
               kind: 'traces' as const,
-              caption: `${title}: the first ${traces.length} replicates, one of them picked out.`,
+              caption: `${title}: the first ${traces.length} replicates${inputs.method === 'exact' ? '' : ' of tau-leaping (approximate)'}, one of them picked out.`,
               svg: drawn(
                 tracesOption({ title, times, timeUnit, traces, highlighted: traces[0]!.replicate }, lightTheme),
               ),

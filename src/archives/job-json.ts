@@ -8,6 +8,7 @@ export function jobJson({ job, model, version }: ArchiveSubject, { ensemble }: R
     format: 'burette-job-1',
     model: { name: model.name, version: version.number, contentHash: version.contentHash, file: 'model.json' },
     method: inputs.method,
+    ...(inputs.epsilon === undefined ? {} : { epsilon: inputs.epsilon }),
     kernel: ensemble.kernel,
     engineVersion: ensemble.engineVersion,
     seed: job.seed,

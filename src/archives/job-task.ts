@@ -4,7 +4,10 @@ import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 import type { BatchTask } from '@/engine/ensemble.ts';
 
 export function jobTask(options: {
-  inputs: Pick<JobInputs, 'horizon' | 'gridIntervals' | 'keptTraces' | 'passages' | 'eventBudgetPerReplicate'>;
+  inputs: Pick<
+    JobInputs,
+    'horizon' | 'gridIntervals' | 'epsilon' | 'keptTraces' | 'passages' | 'eventBudgetPerReplicate'
+  >;
   seed: string;
   network: ResolvedNetwork;
   point: number;
@@ -12,7 +15,7 @@ export function jobTask(options: {
   replicateCount: number;
 }): BatchTask {
   const { inputs, ...range } = options;
-  const { horizon, gridIntervals, keptTraces, eventBudgetPerReplicate } = inputs;
+  const { horizon, gridIntervals, epsilon, keptTraces, eventBudgetPerReplicate } = inputs;
   const indexOf = (id: string) => range.network.observables.findIndex((observable) => observable.id === id);
   const passages = (inputs.passages ?? []).map((passage) => ({ ...passage, observable: indexOf(passage.observable) }));
   return {
@@ -22,6 +25,7 @@ export function jobTask(options: {
     keptTraces,
     passages,
     eventBudgetPerReplicate,
+    ...(epsilon === undefined ? {} : { epsilon }),
     purpose: 'job',
     eventBudgetPerBatch: null,
     blocks: true,

@@ -4,7 +4,7 @@ import { gridTimes } from '@/domain/jobs/result-outputs.ts';
 import { momentsAt, asSummary } from '@/engine/statistics/statistics-of.ts';
 import { quantile } from '@/engine/statistics/quantile.ts';
 import type { Report } from '@/formats/report/report.ts';
-import { caution, describeJob } from './archive-texts.ts';
+import { approximationText, caution, describeJob } from './archive-texts.ts';
 import { namesOf, type Figure } from './figures.ts';
 import type { ArchiveSubject, Results } from './subject.ts';
 
@@ -42,10 +42,7 @@ export function reportOf(options: {
     title: subject.job.name,
     subtitle: `Report of an ensemble of ${results.ensemble.replicates.toLocaleString('en')} stochastic simulations`,
     date: subject.finishedAt,
-    notices:
-      inputs.method === 'exact'
-        ? []
-        : ['Approximate method: tau-leaping. Every number in this report carries its error beside the sampling error.'],
+    notices: inputs.method === 'exact' ? [] : [approximationText(inputs)],
     facts: [
       ...describeJob(subject, results).map(([label, value]) => ({ label, value })),
       { label: 'Finished', value: `${subject.finishedAt.slice(0, 16).replace('T', ' ')} UTC` },

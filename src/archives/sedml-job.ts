@@ -13,6 +13,7 @@ export function sedmlJob({ job, version }: ArchiveSubject, ensemble: Ensemble): 
         : ensemble.kernel === 'composition-rejection'
           ? 'composition-rejection'
           : 'direct',
+    epsilon: inputs.epsilon,
     seed: job.seed,
     horizon: inputs.horizon,
     gridIntervals: inputs.gridIntervals,

@@ -54,6 +54,7 @@ export const quoteRequest = z.strictObject({
   horizon: z.number().positive('A horizon is above 0.').max(1e250),
   gridIntervals: z.number().int().min(1).max(limits.gridIntervals),
   method: z.enum(['exact', 'leap']),
+  /** Of "leap" only: by how much of itself a propensity may change in a leap; 0.03 when left out. */
   epsilon: z.number().positive().max(0.5).optional(),
   seed: seed.optional(),
   lane: z.enum(lanes),
@@ -68,6 +69,39 @@ export const quoteRequest = z.strictObject({
     })
     .optional(),
 });
+
+const methodPilot = z.object({
+  pilotReplicates: count,
+  eventsPerReplicate: z.object({ mean: z.number(), sd: z.number() }),
+  /** A pilot replicate was cut at the pilot's event budget: events and price are lower bounds. */
+  oneSided: z.boolean(),
+  microcreditsPerMillionEvents: z.number().int(),
+  /** Expected price of the replicates asked for, by this method in this lane. */
+  microcredits,
+  /** Measured in the pilot, on a busy machine: good for "slower", not for more. */
+  secondsPerReplicate: z.number(),
+});
+
+/** Exact and leaped pilots of the same inputs, side by side. */
+export const methodComparison = z.object({
+  /** Null where no exact pilot could run; `exactRefused` says why. */
+  exact: methodPilot.nullable(),
+  exactRefused: z.string().nullable(),
+  leap: methodPilot,
+  leapDearer: z.boolean().nullable(),
+  leapSlower: z.boolean().nullable(),
+  /** Means at the horizon; the difference is leaped less exact, with its 95 % interval (Welch). */
+  observables: z.array(
+    z.object({
+      id: z.string(),
+      exactMean: z.number(),
+      leapMean: z.number(),
+      difference: z.number(),
+      interval: z.object({ low: z.number(), high: z.number() }).nullable(),
+    }),
+  ),
+});
+export type MethodComparison = z.infer<typeof methodComparison>;
 
 export const quoteDocument = z.object({
   id: z.string(),
@@ -87,6 +121,11 @@ export const quoteDocument = z.object({
   microcreditsPerMillionEvents: z.number().int(),
   priceBookVersion: z.number().int(),
   replicates: count,
+  method: z.enum(['exact', 'leap']),
+  /** Of tau-leaping; null for the exact method. */
+  epsilon: z.number().nullable(),
+  /** Null for the exact method. */
+  comparison: methodComparison.nullable(),
   seed: z.string(),
   kernel: z.string(),
   engineVersion: z.string(),
@@ -143,6 +182,8 @@ export const jobDocument = z.object({
   projectCode: z.object({ id: z.string(), code: z.string() }).nullable(),
   lane: z.enum(lanes),
   method: z.enum(['exact', 'leap']),
+  /** Of tau-leaping; null for the exact method. */
+  epsilon: z.number().nullable(),
   horizon: z.number(),
   timeUnit: z.string().nullable(),
   gridIntervals: z.number().int(),

@@ -313,7 +313,9 @@ describe('bad input to a quote', () => {
     ['a grid beyond the limit', { gridIntervals: limits.gridIntervals + 1 }, 'gridIntervals'],
     ['a lane that is none', { lane: 'fast' }, 'lane'],
     ['a method that is none', { method: 'guess' }, 'method'],
-    ['tau-leaping, which is not there yet', { method: 'leap' }, 'method'],
+    ['an ε of the exact method', { epsilon: 0.03 }, 'epsilon'],
+    ['an ε of 0', { method: 'leap', epsilon: 0 }, 'epsilon'],
+    ['an ε above a half', { method: 'leap', epsilon: 0.6 }, 'epsilon'],
     ['a sweep, which is not there yet', { sweep: { parameter: 'birth', values: [1, 2] } }, 'sweep'],
     ['a stopping rule without a target', { stopping: { kind: 'precision' } }, 'stopping'],
     [

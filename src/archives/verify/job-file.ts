@@ -7,29 +7,35 @@ import type { NetworkDocument } from '@/domain/network/document.ts';
 
 const whole = (most: number) => z.int().min(0).max(most);
 
-const jobFile = z.object({
-  format: z.literal('burette-job-1'),
-  model: z.object({ contentHash: z.string(), file: z.literal('model.json') }),
-  method: z.enum(['exact', 'leap']),
-  kernel: z.enum(['direct-scalar', 'direct-simd', 'composition-rejection', 'tau-leaping', 'reference']),
-  engineVersion: z.string(),
-  seed: z.string().regex(/^\d{1,20}$/),
-  horizon: z.number().positive(),
-  gridIntervals: whole(limits.gridIntervals).min(1),
-  overrides: z.object({
-    parameters: z.record(z.string(), z.number()).optional(),
-    initialCounts: z.record(z.string(), z.number()).optional(),
-  }),
-  keptTraces: whole(limits.keptTraces),
-  passages: z
-    .array(z.object({ observable: z.string(), direction: z.enum(['rises_to', 'falls_to']), threshold: z.number() }))
-    .max(limits.passagesPerJob),
-  eventBudgetPerReplicate: whole(Number.MAX_SAFE_INTEGER),
-  points: z.literal(1),
-  replicates: whole(limits.replicatesPerJob).min(1),
-  events: whole(Number.MAX_SAFE_INTEGER),
-  resultsDigest: z.string(),
-});
+const jobFile = z
+  .object({
+    format: z.literal('burette-job-1'),
+    model: z.object({ contentHash: z.string(), file: z.literal('model.json') }),
+    method: z.enum(['exact', 'leap']),
+    epsilon: z.number().positive().max(0.5).optional(),
+    kernel: z.enum(['direct-scalar', 'direct-simd', 'composition-rejection', 'tau-leaping', 'reference']),
+    engineVersion: z.string(),
+    seed: z.string().regex(/^\d{1,20}$/),
+    horizon: z.number().positive(),
+    gridIntervals: whole(limits.gridIntervals).min(1),
+    overrides: z.object({
+      parameters: z.record(z.string(), z.number()).optional(),
+      initialCounts: z.record(z.string(), z.number()).optional(),
+    }),
+    keptTraces: whole(limits.keptTraces),
+    passages: z
+      .array(z.object({ observable: z.string(), direction: z.enum(['rises_to', 'falls_to']), threshold: z.number() }))
+      .max(limits.passagesPerJob),
+    eventBudgetPerReplicate: whole(Number.MAX_SAFE_INTEGER),
+    points: z.literal(1),
+    replicates: whole(limits.replicatesPerJob).min(1),
+    events: whole(Number.MAX_SAFE_INTEGER),
+    resultsDigest: z.string(),
+  })
+  .refine(({ method, epsilon }) => (method === 'leap') === (epsilon !== undefined), {
+    path: ['epsilon'],
+    message: 'belongs to the method leap, and only to it',
+  });
 
 export type JobFile = Omit<z.output<typeof jobFile>, 'overrides'> & Pick<JobInputs, 'overrides'>;
 

@@ -18,6 +18,8 @@ export interface JobInputs {
   horizon: number;
   gridIntervals: number;
   method: MethodFamily;
+  /** Of tau-leaping, and only there: by how much of itself a propensity may change in a leap. */
+  epsilon?: number | undefined;
   /** u64 as a decimal string. */
   seed: string;
   lane: Lane;
@@ -82,6 +84,7 @@ export function continuesSample(a: JobInputs, b: JobInputs): boolean {
     horizon,
     gridIntervals,
     method,
+    epsilon,
     seed,
     overrides,
     keptTraces,
@@ -92,6 +95,7 @@ export function continuesSample(a: JobInputs, b: JobInputs): boolean {
       horizon,
       gridIntervals,
       method,
+      epsilon ?? null,
       seed,
       sortedEntries(overrides.parameters),
       sortedEntries(overrides.initialCounts),

@@ -3,6 +3,7 @@ import type { z } from 'zod';
 import type { quoteRequest } from '@/contracts/jobs.ts';
 import type { PassageInput } from '@/domain/jobs/job-inputs.ts';
 import type { PrecisionTarget } from '@/domain/jobs/precision.ts';
+import { largestLeapingNetwork } from '@/engine/leaping/tau-leaping.ts';
 import { limits } from '@/domain/limits.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
@@ -23,6 +24,7 @@ export function checkQuoteRequest(request: QuoteRequest, document: NetworkDocume
   const faults = [
     ...unknownPassages(request, resolved.network),
     ...unfitStopping(request, resolved.network),
+    ...unfitMethod(request, resolved.network),
     ...notBuilt(request),
     ...tooLarge(request, resolved.network),
   ];
@@ -33,14 +35,37 @@ export function checkQuoteRequest(request: QuoteRequest, document: NetworkDocume
 
 const fault = ({ path, code, message }: InputFault): InputFault => ({ path, code, message });
 
-function notBuilt({ method, sweep }: QuoteRequest): InputFault[] {
+/** What tau-leaping cannot run, and ε where nothing leaps. */
+function unfitMethod({ method, epsilon }: QuoteRequest, { changes, reactions }: ResolvedNetwork): InputFault[] {
+  if (method === 'exact')
+    return epsilon === undefined
+      ? []
+      : [
+          {
+            path: 'epsilon',
+            code: 'not_used',
+            message: 'ε belongs to tau-leaping; leave it out for the exact method.',
+          },
+        ];
+  const triggered = changes?.find(({ when }) => when.kind === 'condition');
   const faults: InputFault[] = [];
-  if (method === 'leap')
+  if (triggered)
     faults.push({
       path: 'method',
-      code: 'not_available',
-      message: 'Tau-leaping is not available yet; use the exact method.',
+      code: 'triggered_changes',
+      message: `Tau-leaping would leap past the moment at which the condition of “${triggered.id}” becomes true; use the exact method.`,
     });
+  if (reactions.length > largestLeapingNetwork)
+    faults.push({
+      path: 'method',
+      code: 'too_many_reactions',
+      message: `Tau-leaping takes up to ${largestLeapingNetwork.toLocaleString('en')} reactions; use the exact method.`,
+    });
+  return faults;
+}
+
+function notBuilt({ sweep }: QuoteRequest): InputFault[] {
+  const faults: InputFault[] = [];
   if (sweep !== undefined)
     faults.push({ path: 'sweep', code: 'not_available', message: 'Sweeps are not available yet; quote each point.' });
   return faults;

@@ -13,6 +13,7 @@ import {
   type PilotSummary,
 } from '@/domain/jobs/quote-estimate.ts';
 import { histogramTimes } from '@/domain/jobs/result-outputs.ts';
+import { defaultEpsilon } from '@/domain/jobs/method-comparison.ts';
 import { limits } from '@/domain/limits.ts';
 import { checkNetwork } from '@/domain/network/check-network.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
@@ -31,6 +32,7 @@ import {
   stoppingOf,
   type QuoteRequest,
 } from './check-quote-request.ts';
+import { compareMethods } from './compare-methods.ts';
 import { executor } from './executor.ts';
 import { presentQuote } from './present-quote.ts';
 import { queueLoad } from './queue-load.ts';
@@ -62,13 +64,15 @@ export async function createQuote(options: {
   if (!checked.ok) return checked;
   const network = checked.value;
   const inputs = inputsOf(request, network);
-  const ran = await runPilot({ teamId: team.id, userId, modelVersionId: version.id, network, inputs });
+  const forPilot = { teamId: team.id, userId, modelVersionId: version.id, network, inputs };
+  const ran = await runPilot(forPilot);
   if (!ran.ok) return ran;
 
   const priced = await price(inputs, ran.value.pilot);
   if (!priced.ok) return priced;
   const answer = {
     ...priced.value.answer,
+    comparison: await compareMethods(forPilot, ran.value.pilot, priced.value.book),
     archiveBytes: estimateArchiveBytes({
       replicates: inputs.replicates,
       gridPoints: inputs.gridIntervals + 1,
@@ -103,13 +107,14 @@ export async function createQuote(options: {
 
 /** The inputs as they are pinned: defaults filled in, a seed drawn where none was given. */
 function inputsOf(request: QuoteRequest, network: ResolvedNetwork): JobInputs {
-  const { replicates, horizon, gridIntervals, method, lane } = request;
+  const { replicates, horizon, gridIntervals, method, epsilon = defaultEpsilon, lane } = request;
   const stopping = stoppingOf(request);
   return {
     replicates,
     horizon,
     gridIntervals,
     method,
+    ...(method === 'leap' ? { epsilon } : {}),
     // "007" and 7 are one seed.
     seed: request.seed === undefined ? drawSeed() : BigInt(request.seed).toString(),
     lane,
@@ -167,6 +172,7 @@ async function pricedAnswer(options: {
       eventsPerReplicate: summary.mean,
       secondsPerReplicate: pilot.secondsPerReplicate,
     },
+    book,
     answer: {
       eventsPerReplicate: { mean: summary.mean, sd: summary.sd },
       microcredits: { ...microcredits, high: Math.max(microcredits.high, least) },
@@ -181,6 +187,8 @@ async function pricedAnswer(options: {
       microcreditsPerMillionEvents: rate,
       priceBookVersion: book.version,
       replicates: inputs.replicates,
+      method: inputs.method,
+      epsilon: inputs.epsilon ?? null,
       seed: inputs.seed,
       kernel: pilot.kernel,
       engineVersion: pilot.engineVersion,

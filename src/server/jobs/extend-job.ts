@@ -88,7 +88,7 @@ function checkContinues(job: Job, quote: Quote): Result<null> {
   if (quote.modelVersionId !== job.modelVersionId || !continuesSample(job.inputs, quote.inputs))
     return refuse(
       'invalid_input',
-      'This quote is for other inputs. Quote the same model version, overrides, horizon, grid, method, traces and seed; only replicates and lane may differ.',
+      'This quote is for other inputs. Quote the same model version, overrides, horizon, grid, method with its ε, traces and seed; only replicates and lane may differ.',
       { errors: [{ path: 'quoteId', code: 'other_inputs', message: 'The quote does not continue this job.' }] },
     );
   if (job.replicatesDone + quote.inputs.replicates > limits.replicatesPerJob)

@@ -56,6 +56,7 @@ function present(
     projectCode: named.code ? { id: named.code.id, code: named.code.code } : null,
     lane: job.lane,
     method: inputs.method,
+    epsilon: inputs.epsilon ?? null,
     horizon: inputs.horizon,
     timeUnit: document.timeUnit ?? null,
     gridIntervals: inputs.gridIntervals,

@@ -5,10 +5,13 @@ import { inWriteTransaction } from '@db/in-write-transaction.ts';
 import { Pilot, PilotRun } from '@db/models/jobs.ts';
 import { describeFailure, sortedEntries, type JobInputs } from '@/domain/jobs/job-inputs.ts';
 import { summarisePilot } from '@/domain/jobs/quote-estimate.ts';
+import type { HorizonMean } from '@/domain/jobs/method-comparison.ts';
 import { limits } from '@/domain/limits.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 import { accept, refuse, type Result } from '@/domain/refusals.ts';
 import type { ModelFailure } from '@/engine/ensemble.ts';
+import { momentsAt } from '@/engine/statistics/statistics-of.ts';
+import { decodeSummary, type Summary } from '@/engine/statistics/summary.ts';
 import { engineVersion } from '@/engine/engine-version.ts';
 import type { RunBatchAnswer } from '@workers/protocol.ts';
 import { nowText } from '../clock.ts';
@@ -55,14 +58,14 @@ export async function runPilot(options: PilotOptions): Promise<Result<{ pilot: P
 
 /** Replicates, seed, lane and kept traces shape no pilot replicate. */
 function keyOf({ modelVersionId, inputs }: PilotOptions): string {
-  const { horizon, gridIntervals, method, overrides, eventBudgetPerReplicate } = inputs;
+  const { horizon, gridIntervals, method, epsilon, overrides, eventBudgetPerReplicate } = inputs;
   return sha256Hex(
     JSON.stringify([
       engineVersion,
       modelVersionId,
       horizon,
       gridIntervals,
-      method,
+      epsilon === undefined ? method : [method, epsilon],
       sortedEntries(overrides.parameters),
       sortedEntries(overrides.initialCounts),
       eventBudgetPerReplicate,
@@ -94,6 +97,8 @@ interface Steps {
   /** From the last step, when code and caches are warm. */
   secondsPerReplicate: number;
   kernel: string;
+  /** Of the complete replicates; null before the first. */
+  summary: Summary | null;
 }
 
 async function runSteps(options: PilotOptions, cacheKey: string): Promise<Result<Steps>> {
@@ -103,6 +108,7 @@ async function runSteps(options: PilotOptions, cacheKey: string): Promise<Result
     seconds: 0,
     secondsPerReplicate: 0,
     kernel: '',
+    summary: null,
   };
   let events = 0;
   const outOfTime = AbortSignal.timeout(limits.pilotSeconds * 1000);
@@ -111,6 +117,9 @@ async function runSteps(options: PilotOptions, cacheKey: string): Promise<Result
     const answer = await runStep(options, cacheKey, done.eventsPerReplicate.length, replicateCount, budget, outOfTime);
     if (answer === null) break;
     done.kernel = answer.kernel;
+    const summary = decodeSummary(answer.summary);
+    if (done.summary === null) done.summary = summary;
+    else done.summary.merge(summary);
     done.seconds += answer.seconds;
     const ofStep = Array.from(answer.eventsPerReplicate);
     done.eventsPerReplicate.push(...ofStep);
@@ -141,7 +150,7 @@ async function runStep(
   eventBudgetPerBatch: number,
   signal: AbortSignal,
 ): Promise<RunBatchAnswer | null> {
-  const { horizon, gridIntervals, eventBudgetPerReplicate } = options.inputs;
+  const { horizon, gridIntervals, epsilon, eventBudgetPerReplicate } = options.inputs;
   try {
     return await executor().run(
       {
@@ -157,6 +166,7 @@ async function runStep(
         keptTraces: 0,
         eventBudgetPerReplicate,
         eventBudgetPerBatch,
+        ...(epsilon === undefined ? {} : { epsilon }),
       },
       { signal },
     );
@@ -185,6 +195,14 @@ const failed = (failure: ModelFailure, complete: number): Result<never> =>
     },
   );
 
+/** Means and sds at the last grid time, for comparisons; numbers that so few replicates cannot give are 0. */
+function atHorizon(summary: Summary): HorizonMean[] {
+  return summary.observables.map((id, observable) => {
+    const { mean, sd } = momentsAt(summary, observable, summary.gridPoints - 1);
+    return { id, mean, sd: Number.isFinite(sd) ? sd : 0 };
+  });
+}
+
 async function remember(options: PilotOptions, cacheKey: string, run: Steps): Promise<Pilot> {
   const summary = summarisePilot(run);
   return inWriteTransaction(() =>
@@ -201,6 +219,7 @@ async function remember(options: PilotOptions, cacheKey: string, run: Steps): Pr
       seconds: run.seconds,
       secondsPerReplicate: run.secondsPerReplicate,
       kernel: run.kernel,
+      atHorizon: atHorizon(run.summary!),
       engineVersion,
       createdAt: nowText(),
     }),
