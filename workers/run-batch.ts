@@ -1,17 +1,17 @@
 /** The simulation worker: a thin shell round the engine. It has no database and no clock but its own stopwatch. */
 import { move, transferableSymbol, valueSymbol } from 'piscina';
 import { engineVersion } from '@/engine/engine-version.ts';
-import { runBatch } from '@/engine/run-batch.ts';
+import { runPoints } from '@/engine/run-points.ts';
 import { protocolVersion, type RunBatchAnswer, type RunBatchMessage } from './protocol.ts';
 
 /** Hands the answer's arrays over instead of copying them. */
 const handedOver = (answer: RunBatchAnswer): RunBatchAnswer =>
   move({
     get [transferableSymbol]() {
-      const { blocks } = answer;
-      const ofBlocks = blocks ? [...blocks.partLeaves, ...blocks.pieces].map(({ bytes }) => bytes) : [];
-      const ofTraces = answer.traces.map(({ values }) => values);
-      const arrays = [answer.eventsPerReplicate, answer.passageTimes, answer.summary, ...ofTraces, ...ofBlocks];
+      const arrays = answer.points.flatMap(({ eventsPerReplicate, passageTimes, summary, traces, blocks }) => {
+        const ofBlocks = blocks ? [...blocks.partLeaves, ...blocks.pieces].map(({ bytes }) => bytes) : [];
+        return [eventsPerReplicate, passageTimes, summary, ...traces.map(({ values }) => values), ...ofBlocks];
+      });
       return arrays.map((array) => array.buffer) as unknown as object;
     },
     get [valueSymbol]() {
@@ -24,13 +24,18 @@ export default async function run(message: RunBatchMessage): Promise<RunBatchAns
   if (message.version !== protocolVersion)
     throw new Error(`this worker speaks protocol ${protocolVersion}, not ${message.version}`);
   const start = performance.now();
-  const { summary, ...result } = await runBatch(message.task);
-  const encoded = summary.encode();
+  const { points, ...result } = await runPoints(message.task);
   return handedOver({
     version: protocolVersion,
     engineVersion,
     ...result,
-    summary: encoded,
+    points: points.map(({ eventsPerReplicate, passageTimes, summary, traces, blocks }) => ({
+      eventsPerReplicate,
+      passageTimes,
+      summary: summary.encode(),
+      traces,
+      blocks,
+    })),
     seconds: (performance.now() - start) / 1000,
   });
 }

@@ -1,5 +1,6 @@
 /** The words of an archive: its README, and the facts that README and report have in common. */
 import type { JobInputs } from '@/domain/jobs/job-inputs.ts';
+import { targetName } from '@/domain/jobs/sweep.ts';
 import type { ArchiveSubject, Results } from './subject.ts';
 
 export const caution =
@@ -23,6 +24,7 @@ const about: [pattern: RegExp, words: string][] = [
   [/^model\.xml$/, 'the model as SBML Level 3 Version 2'],
   [/^model\.json$/, 'the model as it was stored, byte for byte what the content hash is of'],
   [/^simulation\.sedml$/, 'the job as SED-ML Level 1 Version 4, for other programs'],
+  [/^results\/points\.csv$/, 'what each point of the sweep sets'],
   [/^results\/summary\.csv$/, 'mean and standard deviation at each grid time, each with its standard error'],
   [/^results\/quantiles\.csv$/, 'quantiles (type 1, the inverse of the sample distribution)'],
   [/^results\/histograms\.csv$/, 'how many replicates had each value; width 1 means exactly this value'],
@@ -40,7 +42,9 @@ export function describeJob({ job, model, version }: ArchiveSubject, { ensemble 
   const overridden = [
     ...Object.entries(inputs.overrides.parameters ?? {}),
     ...Object.entries(inputs.overrides.initialCounts ?? {}),
+    ...Object.entries(inputs.overrides.changeTimes ?? {}).map(([id, value]) => [`time of ${id}`, value] as const),
   ].map(([id, value]) => `${id} = ${value}`);
+  const { sweep } = inputs;
   return [
     ['Model', `${model.name}, version ${version.number} (${version.contentHash})`],
     ['Method', methodText(inputs)],
@@ -48,7 +52,10 @@ export function describeJob({ job, model, version }: ArchiveSubject, { ensemble 
     ['Horizon', `${inputs.horizon}${unit}, ${inputs.gridIntervals} grid intervals`],
     ['Seed', job.seed],
     ['Overrides', overridden.length > 0 ? overridden.join(', ') : 'none'],
-    ['Replicates', `${ensemble.replicates} of ${job.replicatesPlanned}`],
+    ...(sweep
+      ? [['Sweep', `${sweep.values.length} points of ${sweep.targets.map(targetName).join(', ')}`] as [string, string]]
+      : []),
+    ['Replicates', `${ensemble.replicates} of ${job.replicatesPlanned}${sweep ? ' at each point' : ''}`],
     ['Events', String(job.events)],
     ['Ended', (ending && endings[ending.state]) ?? ending?.detail ?? ''],
   ];
@@ -95,6 +102,9 @@ export function readmeText(subject: ArchiveSubject, results: Results, paths: str
     'The archive is also a COMBINE archive (OMEX); manifest.xml lists its parts.',
     'In CSV files the time is in the model’s unit, "point" is the sweep point (0 without a sweep), and an empty field is a',
     'number that so few replicates cannot give.',
+    ...(job.inputs.sweep
+      ? ['Figures, report and simulation.sedml are of point 0; results/points.csv and job.json list all points.']
+      : []),
     '',
     'What can be checked',
     '-------------------',

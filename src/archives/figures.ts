@@ -5,6 +5,7 @@ import { renderSvg } from '@/charts/render-svg.ts';
 import { timeCourseOption } from '@/charts/time-course-option.ts';
 import { tracesOption } from '@/charts/traces-option.ts';
 import { gridTimes } from '@/domain/jobs/result-outputs.ts';
+import { pointWords } from '@/domain/jobs/sweep.ts';
 import { distributionOf } from '@/engine/statistics/distribution-of.ts';
 import { asSummary, statisticsOf } from '@/engine/statistics/statistics-of.ts';
 import type { ArchiveSubject, Results } from './subject.ts';
@@ -28,16 +29,22 @@ export const figureSize = { widthPx: 720, heightPx: 380 };
 export function figuresOf(subject: ArchiveSubject, results: Results): Figure[] {
   const { inputs } = subject.job;
   const { timeUnit } = subject.version.document;
-  const summary = asSummary(results.ensemble.summary!);
+  const [point] = results.ensemble.points;
+  const summary = asSummary(point!.summary);
   const times = gridTimes(inputs.horizon, inputs.gridIntervals);
   const { observables, replicates } = statisticsOf(summary, times);
   const named = new Map(namesOf(subject).map(({ id, name }) => [id, name]));
-  const from = `from ${replicates.toLocaleString('en')} replicates${inputs.method === 'exact' ? '' : ' of tau-leaping (approximate)'}`;
+  const { sweep, method } = inputs;
+  const from = [
+    `from ${replicates.toLocaleString('en')} replicates`,
+    method === 'exact' ? '' : ' of tau-leaping (approximate)',
+    sweep ? ` at point 0 (${pointWords(sweep, 0)})` : '',
+  ].join('');
   return observables.slice(0, observablesMost).flatMap((estimates, place): Figure[] => {
     const { id } = estimates;
     const title = named.get(id) || id;
     const observable = { ...estimates, name: title };
-    const traces = results.ensemble.traces.slice(0, tracesMost).map(({ replicate, values }) => ({
+    const traces = point!.traces.slice(0, tracesMost).map(({ replicate, values }) => ({
       replicate,
       values: Array.from(values.subarray(place * times.length, (place + 1) * times.length)),
     }));

@@ -1,4 +1,5 @@
 /** job.json: all that is needed to repeat the job, and the digest that a repetition must reach. */
+import { pointsOf } from '@/domain/jobs/sweep.ts';
 import type { ArchiveSubject, Results } from './subject.ts';
 
 /** No times, no ids of ours, no money. `verify` reads it by verify/job-file.ts. */
@@ -18,7 +19,8 @@ export function jobJson({ job, model, version }: ArchiveSubject, { ensemble }: R
     keptTraces: inputs.keptTraces,
     passages: inputs.passages ?? [],
     eventBudgetPerReplicate: inputs.eventBudgetPerReplicate,
-    points: 1,
+    points: pointsOf(inputs),
+    ...(inputs.sweep ? { sweep: inputs.sweep } : {}),
     replicates: ensemble.replicates,
     replicatesAskedFor: job.replicatesPlanned,
     events: job.events,

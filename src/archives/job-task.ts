@@ -1,7 +1,7 @@
-/** The engine's task for a range of a job's replicates: the one place that says what of a job's inputs shapes a replicate. */
+/** The engine's task for a range of a job's replicates at all points: the one place that says what of a job's inputs shapes a replicate. */
 import type { JobInputs } from '@/domain/jobs/job-inputs.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
-import type { BatchTask } from '@/engine/ensemble.ts';
+import type { PointsTask } from '@/engine/run-points.ts';
 
 export function jobTask(options: {
   inputs: Pick<
@@ -9,14 +9,14 @@ export function jobTask(options: {
     'horizon' | 'gridIntervals' | 'epsilon' | 'keptTraces' | 'passages' | 'eventBudgetPerReplicate'
   >;
   seed: string;
-  network: ResolvedNetwork;
-  point: number;
+  /** At each of the job's points. */
+  networks: ResolvedNetwork[];
   firstReplicate: number;
   replicateCount: number;
-}): BatchTask {
+}): PointsTask {
   const { inputs, ...range } = options;
   const { horizon, gridIntervals, epsilon, keptTraces, eventBudgetPerReplicate } = inputs;
-  const indexOf = (id: string) => range.network.observables.findIndex((observable) => observable.id === id);
+  const indexOf = (id: string) => range.networks[0]!.observables.findIndex((observable) => observable.id === id);
   const passages = (inputs.passages ?? []).map((passage) => ({ ...passage, observable: indexOf(passage.observable) }));
   return {
     ...range,

@@ -22,7 +22,7 @@ export function reportOf(options: {
   const { timeUnit } = subject.version.document;
   const times = gridTimes(inputs.horizon, inputs.gridIntervals);
   const last = times.length - 1;
-  const summary = asSummary(results.ensemble.summary!);
+  const summary = asSummary(results.ensemble.points[0]!.summary);
   const named = new Map(namesOf(subject).map(({ id, name }) => [id, name]));
   const rows = summary.observables.slice(0, rowsMost).map((id, observable) => {
     const { mean, sd, meanStandardError, sdStandardError } = momentsAt(summary, observable, last);

@@ -7,6 +7,7 @@
 import { stringify } from 'csv-stringify/sync';
 import { gridTimes, histogramTimes } from '@/domain/jobs/result-outputs.ts';
 import type { JobInputs, PassageInput } from '@/domain/jobs/job-inputs.ts';
+import { targetName, type Sweep } from '@/domain/jobs/sweep.ts';
 import type { EnsembleStatistics, EnsembleSummary } from '@/engine/ensemble.ts';
 import { distributionOf } from '@/engine/statistics/distribution-of.ts';
 import { passageEstimates } from '@/engine/statistics/first-passage.ts';
@@ -14,8 +15,9 @@ import { standardProbabilities } from '@/engine/statistics/quantile.ts';
 import { asSummary, statisticsOf } from '@/engine/statistics/statistics-of.ts';
 import { joined } from '@/engine/statistics/block-collector.ts';
 import { scaleOf, sumText } from '@/engine/statistics/block-sums.ts';
+import type { BlockShare } from '@/engine/statistics/blocks.ts';
 import { blocksOf } from '@/engine/statistics/merge-blocks.ts';
-import { recordsOfEnsemble, type Ensemble } from './ensemble.ts';
+import { recordsOfPoint, type PointEnsemble } from './ensemble.ts';
 import type { Results } from './subject.ts';
 
 type Cell = string | number;
@@ -80,63 +82,79 @@ export function resultTables({
   inputs,
   results,
 }: {
-  inputs: Pick<JobInputs, 'horizon' | 'gridIntervals' | 'passages'>;
+  inputs: Pick<JobInputs, 'horizon' | 'gridIntervals' | 'passages' | 'sweep'>;
   results: Results;
 }): ResultTable[] {
-  const { ensemble } = results;
-  if (!ensemble.summary) throw new Error('An empty prefix has no results.');
-  const summary = ensemble.summary;
+  const { points, replicates } = results.ensemble;
+  if (points.length === 0) throw new Error('An empty prefix has no results.');
   const times = gridTimes(inputs.horizon, inputs.gridIntervals);
-  const statistics = statisticsOf(summary, times);
+  const passages = inputs.passages ?? [];
+  const statistics = points.map(({ summary }) => once(() => statisticsOf(summary, times)));
+  /** The rows of each point, with its number in front. */
+  const table = (name: keyof typeof tableHeads, rowsOf: (point: PointEnsemble, place: number) => Iterable<Row>) => ({
+    path: `results/${name}.csv`,
+    *rows(): Iterable<Row> {
+      yield tableHeads[name];
+      for (const [place, point] of points.entries()) for (const row of rowsOf(point, place)) yield [place, ...row];
+    },
+  });
+  const timed = ({ passages: found }: PointEnsemble): TimedPassage[] =>
+    passages.map((passage, index) => ({ ...passage, times: joined(found[index] ?? []) }));
   const tables: ResultTable[] = [
-    { path: 'results/summary.csv', rows: () => summaryRows(statistics) },
-    { path: 'results/quantiles.csv', rows: () => quantileRows(statistics) },
-    { path: 'results/histograms.csv', rows: () => histogramRows(summary, times, histogramTimes(inputs.gridIntervals)) },
-    { path: 'results/events.csv', rows: () => eventRows(ensemble.events) },
-    { path: 'results/blocks.csv', rows: () => blockRows(results) },
-    { path: 'results/block-sums.csv', rows: () => blockSumRows(results, times) },
+    table('summary', (_, place) => summaryRows(statistics[place]!())),
+    table('quantiles', (_, place) => quantileRows(statistics[place]!())),
+    table('histograms', ({ summary }) => histogramRows(summary, times, histogramTimes(inputs.gridIntervals))),
+    table('events', ({ events }) => eventRows(events)),
+    table('blocks', (point, place) => blockRows(point, results.blocks[place]!)),
+    table('block-sums', (point, place) => blockSumRows(point, results.blocks[place]!, times)),
   ];
-  const passages = (inputs.passages ?? []).map((passage, index) => ({
-    ...passage,
-    times: joined(ensemble.passages[index] ?? []),
-  }));
+  if (inputs.sweep) tables.unshift({ path: 'results/points.csv', rows: () => pointRows(inputs.sweep!) });
   if (passages.length > 0)
     tables.push(
-      { path: 'results/first-passage.csv', rows: () => passageRows(passages, inputs.horizon) },
-      { path: 'results/passage-times.csv', rows: () => passageTimeRows(passages) },
+      table('first-passage', (point) => passageRows(timed(point), inputs.horizon)),
+      table('passage-times', (point) => passageTimeRows(timed(point))),
     );
-  if (ensemble.traces.length > 0)
-    tables.push({ path: 'results/traces.csv', rows: () => traceRows(ensemble, summary.observables, times) });
+  if (replicates > 0 && points[0]!.traces.length > 0) {
+    const { observables } = points[0]!.summary;
+    tables.push({ path: 'results/traces.csv', rows: () => traceRows(points, observables, times) });
+  }
   return tables;
 }
 
+/** What every point sets, by its number: the columns of what the sweep varies. */
+function* pointRows({ targets, values }: Sweep): Iterable<Row> {
+  yield ['point', ...targets.map(targetName)];
+  for (const [point, row] of values.entries()) yield [point, ...row];
+}
+
+const once = <T>(make: () => T): (() => T) => {
+  let made: { value: T } | undefined;
+  return () => (made ??= { value: make() }).value;
+};
+
 function* summaryRows({ replicates, times, observables }: EnsembleStatistics): Iterable<Row> {
-  yield tableHeads.summary;
   for (const { id, mean, meanStandardError, sd, sdStandardError } of observables)
     for (const [i, time] of times.entries())
-      yield [0, id, time, replicates, mean[i]!, meanStandardError[i]!, sd[i]!, sdStandardError[i]!];
+      yield [id, time, replicates, mean[i]!, meanStandardError[i]!, sd[i]!, sdStandardError[i]!];
 }
 
 function* quantileRows({ times, observables }: EnsembleStatistics): Iterable<Row> {
-  yield tableHeads.quantiles;
   for (const { id, quantiles } of observables)
     for (const [i, time] of times.entries())
-      yield [0, id, time, ...standardProbabilities.map((probability) => quantiles[probability]![i]!)];
+      yield [id, time, ...standardProbabilities.map((probability) => quantiles[probability]![i]!)];
 }
 
 function* histogramRows(summary: EnsembleSummary, times: number[], at: number[]): Iterable<Row> {
-  yield tableHeads.histograms;
   for (const id of summary.observables)
     for (const gridPoint of at) {
       const { values, widths, counts } = distributionOf(summary, id, gridPoint);
-      for (const [i, value] of values.entries()) yield [0, id, times[gridPoint]!, value, widths[i]!, counts[i]!];
+      for (const [i, value] of values.entries()) yield [id, times[gridPoint]!, value, widths[i]!, counts[i]!];
     }
 }
 
 function* eventRows(pieces: Float64Array[]): Iterable<Row> {
-  yield tableHeads.events;
   let replicate = 0;
-  for (const piece of pieces) for (const events of piece) yield [0, replicate++, events];
+  for (const piece of pieces) for (const events of piece) yield [replicate++, events];
 }
 
 interface TimedPassage extends PassageInput {
@@ -145,11 +163,9 @@ interface TimedPassage extends PassageInput {
 
 /** An empty mean: not every replicate passed; an empty quantile: not reached by the horizon, or not bounded by so few. */
 function* passageRows(passages: TimedPassage[], horizon: number): Iterable<Row> {
-  yield tableHeads['first-passage'];
   for (const { observable, direction, threshold, times } of passages) {
     const { replicates, passed, probability, restrictedMean, mean, quantiles } = passageEstimates(times, horizon);
     yield [
-      0,
       observable,
       direction,
       threshold,
@@ -169,39 +185,35 @@ function* passageRows(passages: TimedPassage[], horizon: number): Iterable<Row> 
 
 /** An empty time: not passed by the horizon. */
 function* passageTimeRows(passages: TimedPassage[]): Iterable<Row> {
-  yield tableHeads['passage-times'];
   for (const { observable, direction, threshold, times } of passages)
-    for (const [replicate, time] of times.entries()) yield [0, observable, direction, threshold, replicate, time];
+    for (const [replicate, time] of times.entries()) yield [observable, direction, threshold, replicate, time];
 }
 
-function* traceRows({ traces }: Ensemble, observables: string[], times: number[]): Iterable<Row> {
+function* traceRows(points: PointEnsemble[], observables: string[], times: number[]): Iterable<Row> {
   yield ['point', 'replicate', 'time', ...observables];
-  for (const { replicate, values } of traces)
-    for (const [i, time] of times.entries())
-      yield [0, replicate, time, ...observables.map((_, observable) => values[observable * times.length + i]!)];
+  for (const [point, { traces }] of points.entries())
+    for (const { replicate, values } of traces)
+      for (const [i, time] of times.entries())
+        yield [point, replicate, time, ...observables.map((_, observable) => values[observable * times.length + i]!)];
 }
 
-const blocksIn = ({ ensemble, blocks }: Results) => {
-  const { shape } = asSummary(ensemble.summary!);
-  return blocksOf({ shape, share: blocks, records: recordsOfEnsemble(ensemble) });
-};
+const blocksIn = (point: PointEnsemble, share: BlockShare) =>
+  blocksOf({ shape: asSummary(point.summary).shape, share, records: recordsOfPoint(point) });
 
-function* blockRows(results: Results): Iterable<Row> {
-  yield tableHeads.blocks;
-  const events = joined(results.ensemble.events);
-  for (const { firstReplicate, replicates, digest } of blocksIn(results)) {
+function* blockRows(point: PointEnsemble, share: BlockShare): Iterable<Row> {
+  const events = joined(point.events);
+  for (const { firstReplicate, replicates, digest } of blocksIn(point, share)) {
     const sum = events.subarray(firstReplicate, firstReplicate + replicates).reduce((total, value) => total + value, 0);
-    yield [0, firstReplicate, replicates, sum, digest];
+    yield [firstReplicate, replicates, sum, digest];
   }
 }
 
-function* blockSumRows(results: Results, times: number[]): Iterable<Row> {
-  yield tableHeads['block-sums'];
-  const { observables } = asSummary(results.ensemble.summary!).shape;
-  for (const { firstReplicate, sums } of blocksIn(results))
+function* blockSumRows(point: PointEnsemble, share: BlockShare, times: number[]): Iterable<Row> {
+  const { observables } = asSummary(point.summary).shape;
+  for (const { firstReplicate, sums } of blocksIn(point, share))
     for (const [observable, { id, kind }] of observables.entries())
       for (const [gridPoint, time] of times.entries())
-        yield [0, firstReplicate, id, time, ...powerSumTexts(sums.sums(observable, gridPoint), scaleOf(kind))];
+        yield [firstReplicate, id, time, ...powerSumTexts(sums.sums(observable, gridPoint), scaleOf(kind))];
 }
 
 const powerSumTexts = (sums: bigint[], scale: bigint): string[] => sums.map((sum) => sumText(sum, scale));

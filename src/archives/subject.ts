@@ -23,5 +23,6 @@ export interface ArchiveSubject {
 /** What was computed. */
 export interface Results {
   ensemble: Ensemble;
-  blocks: BlockShare;
+  /** By point. */
+  blocks: BlockShare[];
 }

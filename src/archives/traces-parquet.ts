@@ -8,15 +8,16 @@ import type { Ensemble } from './ensemble.ts';
 /** Rows of a row group, about: what readers take into memory at a time. */
 const rowsPerGroup = 50_000;
 
-export function tracesParquet(inputs: Pick<JobInputs, 'horizon' | 'gridIntervals'>, ensemble: Ensemble) {
-  const { observables } = asSummary(ensemble.summary!).shape;
+export function tracesParquet(inputs: Pick<JobInputs, 'horizon' | 'gridIntervals'>, { points }: Ensemble) {
+  const { observables } = asSummary(points[0]!.summary).shape;
   const times = gridTimes(inputs.horizon, inputs.gridIntervals);
   const perGroup = Math.max(1, Math.floor(rowsPerGroup / times.length));
   function* groups(): Iterable<number[][]> {
-    for (let from = 0; from < ensemble.traces.length; from += perGroup) {
-      const traces = ensemble.traces.slice(from, from + perGroup);
+    const all = points.flatMap(({ traces }, point) => traces.map((trace) => ({ point, ...trace })));
+    for (let from = 0; from < all.length; from += perGroup) {
+      const traces = all.slice(from, from + perGroup);
       yield [
-        traces.flatMap(() => times.map(() => 0)),
+        traces.flatMap(({ point }) => times.map(() => point)),
         traces.flatMap(({ replicate }) => times.map(() => replicate)),
         traces.flatMap(() => times),
         ...observables.map((_, observable) =>

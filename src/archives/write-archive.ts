@@ -46,7 +46,7 @@ async function writeEntries(
   const { model, version, job } = subject;
   const sbmlText = writeSbml(version.document, { modelId: 'model', name: model.name });
   const tables = resultTables({ inputs: job.inputs, results });
-  const traces = results.ensemble.traces.length > 0 ? [tracesParquet(job.inputs, results.ensemble)] : [];
+  const traces = results.ensemble.points[0]!.traces.length > 0 ? [tracesParquet(job.inputs, results.ensemble)] : [];
   const figures = figuresOf(subject, results);
   const described = ['job.json', 'provenance.json', 'report.pdf', 'model.xml', 'model.json', 'simulation.sedml'];
   const paths = [...described, ...[...tables, ...traces, ...figures].map(({ path }) => path)];

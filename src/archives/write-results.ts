@@ -4,7 +4,7 @@ import { asSummary } from '@/engine/statistics/statistics-of.ts';
 import { recordsOf, replicatesPerBlock } from '@/engine/statistics/blocks.ts';
 import { BlockMerger } from '@/engine/statistics/merge-blocks.ts';
 import { encodeBatch, readBatchFile, sha256Hex } from './batch-file.ts';
-import { addBatch, asBatch, emptyEnsemble, recordsOfEnsemble } from './ensemble.ts';
+import { addBatch, asBatch, emptyEnsemble, recordsOfPoint, type Ensemble } from './ensemble.ts';
 import type { ArchiveSubject, Results } from './subject.ts';
 import { writeArchive } from './write-archive.ts';
 
@@ -57,28 +57,33 @@ async function readResults(
 ): Promise<Results | Extract<WriteResultsAnswer, { kind: 'damaged' }>> {
   const ensemble = emptyEnsemble();
   const places: number[] = [];
-  let merger: BlockMerger | null = null;
+  let mergers: BlockMerger[] | null = null;
   for (const [place, { file, sha256 }] of task.batches.entries()) {
     const content = await readBatchFile(file, sha256);
     if (!content) places.push(place);
     // Those still to come are looked at, so that all damage is known at once.
     if (!content || places.length > 0) continue;
-    if (!content.blocks) throw new Error(`${file} tells nothing of the blocks.`);
     addBatch(ensemble, content);
-    merger ??= mergerOf(asSummary(ensemble.summary!).shape, task.replicates);
-    merger.add({ ...content, records: recordsOf(content), share: content.blocks });
+    mergers ??= mergersOf(ensemble, task.replicates);
+    for (const [point, { blocks, ...records }] of content.points.entries()) {
+      if (!blocks) throw new Error(`${file} tells nothing of the blocks.`);
+      const { firstReplicate } = content;
+      mergers[point]!.add({ firstReplicate, records: recordsOf(records), share: blocks });
+    }
   }
   if (places.length > 0) return { kind: 'damaged', places };
-  if (!merger || ensemble.replicates !== task.replicates)
+  if (!mergers || ensemble.replicates !== task.replicates)
     throw new Error(`The batches hold ${ensemble.replicates} replicates, not ${task.replicates}.`);
-  const [events, ...passages] = recordsOfEnsemble(ensemble);
-  return {
-    ensemble: { ...ensemble, events: [events!], passages: passages.map((times) => [times]) },
-    blocks: merger.share(),
-  };
+  const points = ensemble.points.map((point) => {
+    const [events, ...passages] = recordsOfPoint(point);
+    return { ...point, events: [events!], passages: passages.map((times) => [times]) };
+  });
+  return { ensemble: { ...ensemble, points }, blocks: mergers.map((merger) => merger.share()) };
 }
 
-function mergerOf(shape: ReturnType<typeof asSummary>['shape'], replicates: number): BlockMerger {
+function mergersOf({ points }: Ensemble, replicates: number): BlockMerger[] {
+  const { shape } = asSummary(points[0]!.summary);
   const cells = shape.observables.length * shape.gridPoints;
-  return new BlockMerger(shape, replicatesPerBlock({ replicates, cells }));
+  const size = replicatesPerBlock({ replicates, cells, points: points.length });
+  return points.map(() => new BlockMerger(shape, size));
 }

@@ -22,6 +22,59 @@ const seed = z.union([
 const overrides = z.strictObject({
   parameters: z.record(z.string().max(limits.identifierCharacters * 2 + 1), z.number()).optional(),
   initialCounts: z.record(z.string().max(limits.identifierCharacters), z.number()).optional(),
+  /** When timed changes first happen. */
+  changeTimes: z.record(z.string().max(limits.identifierCharacters), z.number()).optional(),
+});
+
+const sweepTarget = z.strictObject({
+  kind: z.enum(['parameter', 'initial_count', 'change_time']),
+  id: z
+    .string()
+    .min(1)
+    .max(limits.identifierCharacters * 2 + 1),
+});
+const scale = z.enum(['linear', 'log']);
+const pointCount = z.number().int().min(1).max(limits.sweepPoints);
+const axesMost = 10;
+
+/** Every combination of axes; points one by one; or a Latin hypercube, whose points follow from its seed (0 when left out). */
+const sweepRequest = z.union([
+  z.strictObject({
+    kind: z.literal('grid'),
+    axes: z
+      .array(
+        z.union([
+          z.strictObject({ target: sweepTarget, values: z.array(z.number()).min(1).max(limits.sweepPoints) }),
+          z.strictObject({
+            target: sweepTarget,
+            spacing: z.strictObject({ from: z.number(), to: z.number(), count: pointCount.min(2), scale }),
+          }),
+        ]),
+      )
+      .min(1)
+      .max(axesMost),
+  }),
+  z.strictObject({
+    kind: z.literal('list'),
+    targets: z.array(sweepTarget).min(1).max(axesMost),
+    values: z.array(z.array(z.number()).max(axesMost)).min(1).max(limits.sweepPoints),
+  }),
+  z.strictObject({
+    kind: z.literal('latin_hypercube'),
+    axes: z
+      .array(z.strictObject({ target: sweepTarget, from: z.number(), to: z.number(), scale }))
+      .min(1)
+      .max(axesMost),
+    count: pointCount,
+    seed: seed.optional(),
+  }),
+]);
+
+/** The points as a job pins them: values[point][target]. */
+export const sweepDocument = z.object({
+  kind: z.enum(['grid', 'list', 'latin_hypercube']),
+  targets: z.array(sweepTarget),
+  values: z.array(z.array(z.number())),
 });
 
 /** When an observable first rises to (is at least) or falls to (is at most) a threshold; extinction is `fallsTo: 0`. */
@@ -59,8 +112,8 @@ export const quoteRequest = z.strictObject({
   seed: seed.optional(),
   lane: z.enum(lanes),
   overrides: overrides.optional(),
-  /** Refused for now, with a sentence. */
-  sweep: z.unknown().optional(),
+  /** `replicates` are then those of each point. */
+  sweep: sweepRequest.optional(),
   stopping: stoppingRequest.optional(),
   outputs: z
     .strictObject({
@@ -120,12 +173,16 @@ export const quoteDocument = z.object({
   lane: z.enum(lanes),
   microcreditsPerMillionEvents: z.number().int(),
   priceBookVersion: z.number().int(),
+  /** At each point. */
   replicates: count,
   method: z.enum(['exact', 'leap']),
   /** Of tau-leaping; null for the exact method. */
   epsilon: z.number().nullable(),
   /** Null for the exact method. */
   comparison: methodComparison.nullable(),
+  points: count,
+  /** Null without one. */
+  sweep: sweepDocument.nullable(),
   seed: z.string(),
   kernel: z.string(),
   engineVersion: z.string(),
@@ -144,6 +201,8 @@ export const modelFailure = z.object({
     'change_cascade',
   ]),
   replicate: count,
+  /** Of a sweep. */
+  point: count.optional(),
   reaction: z.string().nullable(),
   /** The timed or triggered change that could not be made. */
   change: z.string().optional(),
@@ -194,6 +253,8 @@ export const jobDocument = z.object({
   /** Null: stops at the planned replicates. */
   stopping: z.object({ ...precision, relative: relative.optional(), absolute: absolute.optional() }).nullable(),
   points: z.number().int(),
+  /** Null without one. */
+  sweep: sweepDocument.nullable(),
   replicatesPlanned: count,
   /** Always the complete prefix of replicates by index. */
   replicatesDone: count,

@@ -45,6 +45,8 @@ export const limits = {
   /** First passages noted by a job; a kernel has a bit for each. */
   passagesPerJob: 20,
   sweepPoints: 1_000,
+  /** Points of a sweep × reactions of its network. */
+  sweepReactions: 200_000,
   capReplicatesMinimum: 30,
   eventsPerReplicate: 2 ** 40,
   batchesPerJob: 20_000,

@@ -2,7 +2,7 @@
 import { performance } from 'node:perf_hooks';
 import Piscina from 'piscina';
 import { protocolVersion, type RunBatchMessage } from '@workers/protocol.ts';
-import { batchTask } from '@tests/factories/batch-tasks.ts';
+import { pointsTask } from '@tests/factories/batch-tasks.ts';
 import { benchWorkerFile } from './bench-worker.ts';
 import { smallNetworks } from './networks.ts';
 import { median, type BenchRow } from './rows.ts';
@@ -14,7 +14,7 @@ export async function measureColdStart(options: { rounds: number }): Promise<Ben
   for (let round = 0; round < options.rounds; round += 1) {
     // The thread stands before the network comes, as in the pool; its first task is what is timed.
     const pool = new Piscina({ filename, minThreads: 1, maxThreads: 1, idleTimeout: 60_000 });
-    const task = batchTask(network, { horizon: horizon / 1000, gridIntervals, replicateCount: 1 });
+    const task = pointsTask([network], { horizon: horizon / 1000, gridIntervals, replicateCount: 1 });
     const message: RunBatchMessage = { version: protocolVersion, task };
     await new Promise((resolve) => setTimeout(resolve, 500));
     const started = performance.now();

@@ -2,7 +2,8 @@
 import { performance } from 'node:perf_hooks';
 import Piscina from 'piscina';
 import { protocolVersion, type RunBatchAnswer, type RunBatchMessage } from '@workers/protocol.ts';
-import { batchTask } from '@tests/factories/batch-tasks.ts';
+import { pointsTask } from '@tests/factories/batch-tasks.ts';
+import { eventsPerCycle } from '@/engine/run-points.ts';
 import { benchWorkerFile } from './bench-worker.ts';
 import { smallNetworks } from './networks.ts';
 import { median, type BenchRow } from './rows.ts';
@@ -13,7 +14,7 @@ async function speed(threads: number, replicatesPerBatch: number): Promise<numbe
   const { network, horizon, gridIntervals } = smallNetworks.find(({ name }) => name === 'schloegl')!;
   const pool = new Piscina({ filename: await benchWorkerFile(), minThreads: threads, maxThreads: threads });
   const run = (batch: number): Promise<RunBatchAnswer> => {
-    const task = batchTask(network, {
+    const task = pointsTask([network], {
       horizon,
       gridIntervals,
       firstReplicate: batch * replicatesPerBatch,
@@ -27,9 +28,7 @@ async function speed(threads: number, replicatesPerBatch: number): Promise<numbe
   const answers = await Promise.all([...Array(batches).keys()].map(run));
   const seconds = (performance.now() - started) / 1000;
   await pool.destroy();
-  const events = answers
-    .flatMap(({ eventsPerReplicate }) => [...eventsPerReplicate])
-    .reduce((sum, count) => sum + count, 0);
+  const events = answers.flatMap(({ points }) => [...eventsPerCycle(points)]).reduce((sum, count) => sum + count, 0);
   return events / seconds;
 }
 

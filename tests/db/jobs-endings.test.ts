@@ -6,8 +6,8 @@ import { Batch, Job, Quote, Segment } from '@db/models/jobs.ts';
 import { LedgerTransaction } from '@db/models/ledger.ts';
 import { Mail } from '@db/models/teams.ts';
 import { longestPrefix } from '@/domain/jobs/longest-prefix.ts';
-import { runBatch } from '@/engine/run-batch.ts';
-import { batchTask, networkOf } from '@/server/jobs/batch-task.ts';
+import { eventsPerCycle, runPoints } from '@/engine/run-points.ts';
+import { batchTask, networksOfJob } from '@/server/jobs/batch-task.ts';
 import { cancelJob } from '@/server/jobs/cancel-job.ts';
 import { setExecutor } from '@/server/jobs/executor.ts';
 import { extendJob } from '@/server/jobs/extend-job.ts';
@@ -57,11 +57,9 @@ async function letRun(id: string, executor = inProcessExecutor()): Promise<Job> 
 
 /** Events of each replicate of a job, straight from the engine. */
 async function eventsOf(job: Job, replicateCount: number): Promise<Float64Array> {
-  const network = await networkOf(job);
-  const { eventsPerReplicate } = await runBatch(
-    batchTask({ job, network, point: 0, firstReplicate: 0, replicateCount }),
-  );
-  return eventsPerReplicate;
+  const networks = await networksOfJob(job);
+  const { points } = await runPoints(batchTask({ job, networks, firstReplicate: 0, replicateCount }));
+  return eventsPerCycle(points);
 }
 
 /** What must hold of the money of any job that is over. */

@@ -8,9 +8,10 @@ import type { ArchiveSubject } from '@/archives/subject.ts';
 import { digestOf } from '@/archives/write-archive.ts';
 import { writeResults, type WriteResultsAnswer, type WriteResultsTask } from '@/archives/write-results.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
-import { resolveNetwork } from '@/domain/network/resolve-network.ts';
+import { networksOf } from '@/domain/jobs/networks-of.ts';
+import type { Sweep } from '@/domain/jobs/sweep.ts';
 import { engineVersion } from '@/engine/engine-version.ts';
-import { runBatch } from '@/engine/run-batch.ts';
+import { eventsPerCycle, runPoints } from '@/engine/run-points.ts';
 
 /** Births and deaths, a second species that only grows, and a named quantity that is no whole number. */
 export const archivedNetwork: NetworkDocument = {
@@ -42,6 +43,7 @@ export async function makeArchive(options: {
   batchSizes?: number[];
   keptTraces?: number;
   gridIntervals?: number;
+  sweep?: Sweep;
 }): Promise<MadeArchive> {
   const { folder, replicates, document = archivedNetwork, batchSizes = [replicates] } = options;
   const seed = '20261201';
@@ -56,20 +58,22 @@ export async function makeArchive(options: {
     keptTraces: options.keptTraces ?? 4,
     passages: [{ observable: 'Y', direction: 'rises_to', threshold: 12 }],
     eventBudgetPerReplicate: 1_000_000,
+    ...(options.sweep ? { sweep: options.sweep } : {}),
   };
-  const resolved = resolveNetwork(document);
+  const resolved = networksOf(document, inputs);
   if (!resolved.ok) throw new Error(resolved.problems[0]?.message);
   const batches: WriteResultsTask['batches'] = [];
   let events = 0;
   for (let firstReplicate = 0; firstReplicate < replicates;) {
     const replicateCount = Math.min(batchSizes[batches.length % batchSizes.length]!, replicates - firstReplicate);
-    const range = { firstReplicate, replicateCount, point: 0 };
-    const { summary, ...result } = await runBatch(jobTask({ inputs, seed, network: resolved.network, ...range }));
-    const bytes = encodeBatch({ ...result, engineVersion, summary: summary.encode() });
+    const range = { firstReplicate, replicateCount };
+    const result = await runPoints(jobTask({ inputs, seed, networks: resolved.networks, ...range }));
+    const points = result.points.map((point) => ({ ...point, summary: point.summary.encode() }));
+    const bytes = encodeBatch({ ...result, engineVersion, points });
     const file = path.join(folder, `${firstReplicate}-${replicateCount}.batch`);
     await writeFile(file, bytes);
     batches.push({ file, sha256: sha256Hex(bytes) });
-    events += result.eventsPerReplicate.reduce((sum, value) => sum + value, 0);
+    events += eventsPerCycle(result.points).reduce((sum, value) => sum + value, 0);
     firstReplicate += replicateCount;
   }
   const task: WriteResultsTask = {

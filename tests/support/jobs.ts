@@ -5,9 +5,8 @@ import { isFinal } from '@/domain/jobs/job-state.ts';
 import { writeResults } from '@/archives/write-results.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
 import type { Result } from '@/domain/refusals.ts';
-import type { BatchTask } from '@/engine/ensemble.ts';
 import { engineVersion } from '@/engine/engine-version.ts';
-import { runBatch } from '@/engine/run-batch.ts';
+import { runPoints, type PointsTask } from '@/engine/run-points.ts';
 import { newId } from '@/server/ids.ts';
 import { createQuote } from '@/server/jobs/create-quote.ts';
 import type { QuoteRequest } from '@/server/jobs/check-quote-request.ts';
@@ -115,14 +114,15 @@ export async function replan(jobId: string, replicatesPerBatch: number): Promise
 export function inProcessExecutor(
   options: {
     capacity?: number;
-    around?: (task: BatchTask, run: () => Promise<RunBatchAnswer>) => Promise<RunBatchAnswer>;
+    around?: (task: PointsTask, run: () => Promise<RunBatchAnswer>) => Promise<RunBatchAnswer>;
   } = {},
 ): Executor {
-  const compute = async (task: BatchTask): Promise<RunBatchAnswer> => {
+  const compute = async (task: PointsTask): Promise<RunBatchAnswer> => {
     const started = performance.now();
-    const { summary, ...result } = await runBatch(task);
+    const { points, ...result } = await runPoints(task);
     const seconds = (performance.now() - started) / 1000;
-    return { version: protocolVersion, engineVersion, ...result, summary: summary.encode(), seconds };
+    const encoded = points.map((point) => ({ ...point, summary: point.summary.encode() }));
+    return { version: protocolVersion, engineVersion, ...result, points: encoded, seconds };
   };
   const { around = (_, run) => run() } = options;
   return {

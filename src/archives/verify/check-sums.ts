@@ -12,6 +12,7 @@ import type { JobFile } from './job-file.ts';
 import { readTable, TableError } from './read-table.ts';
 
 export interface ListedBlock {
+  point: number;
   firstReplicate: number;
   replicates: number;
   events: number;
@@ -40,43 +41,53 @@ const wholeOf = (text: string): number => (/^\d{1,16}$/.test(text) ? Number(text
 export async function listedBlocks(checking: Checking): Promise<ListedBlock[]> {
   const { job, shape, problem } = checking;
   const cells = shape.observables.length * shape.gridPoints;
-  const size = replicatesPerBlock({ replicates: job.replicates, cells });
+  const size = replicatesPerBlock({ replicates: job.replicates, cells, points: job.points });
+  const perPoint = Math.ceil(job.replicates / size);
   const blocks: ListedBlock[] = [];
-  for await (const [, first, replicates, events, digest] of table(checking, 'blocks')) {
+  for await (const [point, first, replicates, events, digest] of table(checking, 'blocks')) {
     const block = {
+      point: wholeOf(point!),
       firstReplicate: wholeOf(first!),
       replicates: wholeOf(replicates!),
       events: wholeOf(events!),
       digest: digest!,
     };
-    const expected = blocks.length * size;
-    if (block.firstReplicate !== expected || block.replicates !== Math.min(size, job.replicates - expected))
+    const expected = (blocks.length % perPoint) * size;
+    if (
+      block.point !== Math.floor(blocks.length / perPoint) ||
+      block.firstReplicate !== expected ||
+      block.replicates !== Math.min(size, job.replicates - expected)
+    )
       throw new TableError(
         `results/blocks.csv: block ${blocks.length} is not the one of replicates from ${expected} on.`,
       );
     blocks.push(block);
   }
-  if (blocks.length !== Math.ceil(job.replicates / size))
-    throw new TableError(`results/blocks.csv has ${blocks.length} blocks, not ${Math.ceil(job.replicates / size)}.`);
+  if (blocks.length !== perPoint * job.points)
+    throw new TableError(`results/blocks.csv has ${blocks.length} blocks, not ${perPoint * job.points}.`);
   const events = blocks.reduce((sum, block) => sum + block.events, 0);
   if (events !== job.events) problem(`The blocks have ${events} events, job.json says ${job.events}.`);
   return blocks;
 }
 
-/** events.csv: one row a replicate, which add up to each block's events. */
+/** events.csv: one row a replicate of each point, which add up to each block's events. Answered point by point. */
 export async function checkEvents(checking: Checking, blocks: ListedBlock[]): Promise<Float64Array> {
   const { job, problem } = checking;
-  const events = new Float64Array(job.replicates);
-  let replicate = 0;
-  for await (const [, number, count] of table(checking, 'events')) {
-    if (replicate >= job.replicates || wholeOf(number!) !== replicate)
-      throw new TableError(`results/events.csv: replicate ${replicate} was expected, not ${number}.`);
-    events[replicate++] = wholeOf(count!);
+  const events = new Float64Array(job.replicates * job.points);
+  let row = 0;
+  for await (const [point, number, count] of table(checking, 'events')) {
+    const due = [Math.floor(row / job.replicates), row % job.replicates];
+    if (row >= events.length || wholeOf(point!) !== due[0] || wholeOf(number!) !== due[1])
+      throw new TableError(
+        `results/events.csv: replicate ${due[1]} of point ${due[0]} was expected, not ${number} of ${point}.`,
+      );
+    events[row++] = wholeOf(count!);
   }
-  if (replicate !== job.replicates) throw new TableError(`results/events.csv ends at replicate ${replicate}.`);
+  if (row !== events.length) throw new TableError(`results/events.csv has ${row} rows, not ${events.length}.`);
   for (const block of blocks) {
-    const { firstReplicate, replicates } = block;
-    const sum = events.subarray(firstReplicate, firstReplicate + replicates).reduce((total, value) => total + value, 0);
+    const { point, firstReplicate, replicates } = block;
+    const from = point * job.replicates + firstReplicate;
+    const sum = events.subarray(from, from + replicates).reduce((total, value) => total + value, 0);
     if (sum !== block.events)
       problem(`results/events.csv: the block from replicate ${firstReplicate} has ${sum} events, not ${block.events}.`);
   }
@@ -84,7 +95,7 @@ export async function checkEvents(checking: Checking, blocks: ListedBlock[]): Pr
 }
 
 export interface ReAdded {
-  /** Over all blocks, observable by observable, then by grid time. */
+  /** Over all blocks of a point: point by point, then observable by observable, then by grid time. */
   totals: PowerSums[];
   /** Of the blocks asked for, by their place. */
   chosen: Map<number, PowerSums[]>;
@@ -95,21 +106,23 @@ export async function addBlockSums(checking: Checking, blocks: ListedBlock[], ch
   const { job, shape } = checking;
   const times = gridTimes(job.horizon, job.gridIntervals);
   const cells = shape.observables.length * times.length;
-  const totals = Array.from({ length: cells }, noSums);
+  const totals = Array.from({ length: cells * job.points }, noSums);
   const kept = new Map<number, PowerSums[]>();
   let row = 0;
-  for await (const [, first, id, time, ...texts] of table(checking, 'block-sums')) {
+  for await (const [point, first, id, time, ...texts] of table(checking, 'block-sums')) {
     const place = Math.floor(row / cells);
     const cell = row % cells;
     const observable = shape.observables[Math.floor(cell / times.length)]!;
-    const due = [String(blocks[place]?.firstReplicate), observable.id, cellText(times[cell % times.length]!)];
-    if (place >= blocks.length || first !== due[0] || id !== due[1] || time !== due[2])
+    const block = blocks[place];
+    const moment = cellText(times[cell % times.length]!);
+    const due = [block?.point, block?.firstReplicate, observable.id, moment].join(', ');
+    if (!block || [point, first, id, time].join(', ') !== due)
       throw new TableError(
-        `results/block-sums.csv: the row of ${due.join(', ')} was expected, not ${first}, ${id}, ${time}.`,
+        `results/block-sums.csv: the row of ${due} was expected, not ${point}, ${first}, ${id}, ${time}.`,
       );
     const sums = texts.map((text) => parseSum(text, scaleOf(observable.kind)));
-    if (sums.includes(null)) throw new TableError(`results/block-sums.csv: a sum of ${due.join(', ')} is no number.`);
-    addSums(totals[cell]!, sums as PowerSums);
+    if (sums.includes(null)) throw new TableError(`results/block-sums.csv: a sum of ${due} is no number.`);
+    addSums(totals[block.point * cells + cell]!, sums as PowerSums);
     if (chosen.has(place)) kept.set(place, [...(kept.get(place) ?? []), sums as PowerSums]);
     row++;
   }
@@ -118,19 +131,23 @@ export async function addBlockSums(checking: Checking, blocks: ListedBlock[], ch
   return { totals, chosen: kept };
 }
 
-/** Rows of a table that has one row an observable and grid time, in the order of `gridPoints`. */
+/** Rows of a table that has one row a point, observable and grid time, in this order; `cell` counts them. */
 async function* cellRows(checking: Checking, name: 'summary' | 'quantiles') {
   const { job, shape } = checking;
   const times = gridTimes(job.horizon, job.gridIntervals);
+  const perPoint = shape.observables.length * times.length;
   let cell = 0;
-  for await (const [, id, time, ...values] of table(checking, name)) {
-    const observable = shape.observables[Math.floor(cell / times.length)];
+  for await (const [point, id, time, ...values] of table(checking, name)) {
+    const observable = shape.observables[Math.floor((cell % perPoint) / times.length)]!;
     const gridPoint = cell % times.length;
-    if (!observable || id !== observable.id || time !== cellText(times[gridPoint]!))
-      throw new TableError(`results/${name}.csv: row ${cell + 1} is of ${id} at ${time}, which is not its turn.`);
+    const due = [Math.floor(cell / perPoint), observable.id, cellText(times[gridPoint]!)].join(', ');
+    if (cell >= perPoint * job.points || [point, id, time].join(', ') !== due)
+      throw new TableError(
+        `results/${name}.csv: row ${cell + 1} is of ${id} at ${time} and point ${point}, which is not its turn.`,
+      );
     yield { observable, gridPoint, time, cell: cell++, values };
   }
-  if (cell !== shape.observables.length * times.length) throw new TableError(`results/${name}.csv has ${cell} rows.`);
+  if (cell !== perPoint * job.points) throw new TableError(`results/${name}.csv has ${cell} rows.`);
 }
 
 /** summary.csv: every number, from the sums. Answers how many were compared. */
@@ -168,29 +185,32 @@ export async function checkHistograms(checking: Checking, totals: PowerSums[]): 
   const { job, shape, problem } = checking;
   const times = gridTimes(job.horizon, job.gridIntervals);
   const histograms = new Map<number, Histogram>();
-  const cellOf = new Map(
-    shape.observables.flatMap(({ id }, observable) =>
-      histogramTimes(job.gridIntervals).map((gridPoint) => [
-        `${id},${cellText(times[gridPoint]!)}`,
-        observable * times.length + gridPoint,
-      ]),
-    ),
-  );
-  for await (const [, id, time, value, width, count] of table(checking, 'histograms')) {
-    const cell = cellOf.get(`${id},${time}`);
-    if (cell === undefined) throw new TableError(`results/histograms.csv: ${id} at ${time} is not in this job.`);
+  const perPoint = shape.observables.length * times.length;
+  const cellOf = new Map<string, number>();
+  for (let point = 0; point < job.points; point++)
+    for (const [observable, { id }] of shape.observables.entries())
+      for (const gridPoint of histogramTimes(job.gridIntervals))
+        cellOf.set(
+          `${point},${id},${cellText(times[gridPoint]!)}`,
+          point * perPoint + observable * times.length + gridPoint,
+        );
+  for await (const [point, id, time, value, width, count] of table(checking, 'histograms')) {
+    const cell = cellOf.get(`${point},${id},${time}`);
+    if (cell === undefined)
+      throw new TableError(`results/histograms.csv: ${id} at ${time} and point ${point} is not in this job.`);
     const histogram = histograms.get(cell) ?? { values: [], widths: [], counts: [] };
     histogram.values.push(Number(value));
     histogram.widths.push(Number(width));
     histogram.counts.push(wholeOf(count!));
     histograms.set(cell, histogram);
   }
-  for (const [name, cell] of cellOf) {
+  for (const [key, cell] of cellOf) {
+    const name = job.points > 1 ? `point ${key}` : key.slice('0,'.length);
     const { values, widths, counts } = histograms.get(cell) ?? { values: [], widths: [], counts: [] };
     const total = counts.reduce((sum, count) => sum + count, 0);
     if (total !== job.replicates) problem(`results/histograms.csv: ${name} holds ${total} replicates.`);
     const exact = values.every((value, i) => widths[i] === 1 && Number.isSafeInteger(value));
-    if (!exact || shape.observables[Math.floor(cell / times.length)]!.kind !== 'count') continue;
+    if (!exact || shape.observables[Math.floor((cell % perPoint) / times.length)]!.kind !== 'count') continue;
     const sums = [1n, 2n, 3n, 4n].map((power) =>
       values.reduce((sum, value, i) => sum + BigInt(value) ** power * BigInt(counts[i] || 0), 0n),
     );

@@ -2,6 +2,7 @@
 import { z } from 'zod';
 import { networkDocument } from '@/contracts/network.ts';
 import type { JobInputs } from '@/domain/jobs/job-inputs.ts';
+import { pointsOf } from '@/domain/jobs/sweep.ts';
 import { limits } from '@/domain/limits.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
 
@@ -21,13 +22,24 @@ const jobFile = z
     overrides: z.object({
       parameters: z.record(z.string(), z.number()).optional(),
       initialCounts: z.record(z.string(), z.number()).optional(),
+      changeTimes: z.record(z.string(), z.number()).optional(),
     }),
+    sweep: z
+      .object({
+        kind: z.enum(['grid', 'list', 'latin_hypercube']),
+        targets: z
+          .array(z.object({ kind: z.enum(['parameter', 'initial_count', 'change_time']), id: z.string() }))
+          .min(1),
+        values: z.array(z.array(z.number())).min(1).max(limits.sweepPoints),
+      })
+      .refine(({ targets, values }) => values.every(({ length }) => length === targets.length), 'a point is ragged')
+      .optional(),
     keptTraces: whole(limits.keptTraces),
     passages: z
       .array(z.object({ observable: z.string(), direction: z.enum(['rises_to', 'falls_to']), threshold: z.number() }))
       .max(limits.passagesPerJob),
     eventBudgetPerReplicate: whole(Number.MAX_SAFE_INTEGER),
-    points: z.literal(1),
+    points: whole(limits.sweepPoints).min(1),
     replicates: whole(limits.replicatesPerJob).min(1),
     events: whole(Number.MAX_SAFE_INTEGER),
     resultsDigest: z.string(),
@@ -35,9 +47,10 @@ const jobFile = z
   .refine(({ method, epsilon }) => (method === 'leap') === (epsilon !== undefined), {
     path: ['epsilon'],
     message: 'belongs to the method leap, and only to it',
-  });
+  })
+  .refine((job) => job.points === pointsOf(job), 'points are not those of the sweep');
 
-export type JobFile = Omit<z.output<typeof jobFile>, 'overrides'> & Pick<JobInputs, 'overrides'>;
+export type JobFile = Omit<z.output<typeof jobFile>, 'overrides' | 'sweep'> & Pick<JobInputs, 'overrides' | 'sweep'>;
 
 type Read<T> = { ok: true; value: T } | { ok: false; problem: string };
 

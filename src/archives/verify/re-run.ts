@@ -9,7 +9,7 @@ import { recordsOf } from '@/engine/statistics/blocks.ts';
 import { BlockMerger, blocksOf } from '@/engine/statistics/merge-blocks.ts';
 import type { SummaryShape } from '@/engine/statistics/summary.ts';
 import type { ZipReader } from '@/formats/zip/zip-reader.ts';
-import { addBatch, emptyEnsemble } from '../ensemble.ts';
+import { addBatch, emptyEnsemble, type Ensemble } from '../ensemble.ts';
 import { jobTask } from '../job-task.ts';
 import { csvPieces, resultTables } from '../result-tables.ts';
 import { tracesParquet } from '../traces-parquet.ts';
@@ -20,10 +20,11 @@ import { readTable } from './read-table.ts';
 interface ReRun {
   zip: ZipReader;
   job: JobFile;
-  network: ResolvedNetwork;
+  /** By point. */
+  networks: ResolvedNetwork[];
   shape: SummaryShape;
   blocks: ListedBlock[];
-  /** As listed, by replicate. */
+  /** As listed, by point and then by replicate. */
   events: Float64Array;
   reAdded: ReAdded;
   places: number[];
@@ -39,7 +40,7 @@ export async function reRun(options: ReRun): Promise<number> {
     problem(`Blocks cannot be run again: ${job.engineVersion} made them, and this is ${engineVersion}.`);
     return 0;
   }
-  const traces: Trace[] = [];
+  const traces: { point: number; trace: Trace }[] = [];
   const again = places.length === options.blocks.length ? new WholeAgain(options) : null;
   for (const place of places) {
     options.onBlock(place);
@@ -52,8 +53,9 @@ export async function reRun(options: ReRun): Promise<number> {
       problem(`Blocks cannot be run again: ${result.message}.`);
       return 0;
     }
-    traces.push(...result.traces);
-    again?.add(result);
+    const { point } = options.blocks[place]!;
+    traces.push(...result.traces.map((trace) => ({ point, trace })));
+    again?.add(point, result);
   }
   await compareTraces(options, traces);
   await again?.compareTables();
@@ -63,31 +65,37 @@ export async function reRun(options: ReRun): Promise<number> {
 /** When all blocks are run again, so are all tables. */
 class WholeAgain {
   readonly #options: ReRun;
-  readonly #ensemble = emptyEnsemble();
-  readonly #merger: BlockMerger;
+  readonly #points: { ensemble: Ensemble; merger: BlockMerger }[];
   #complete = true;
 
   constructor(options: ReRun) {
     this.#options = options;
-    this.#merger = new BlockMerger(options.shape, options.blocks[0]!.replicates);
+    this.#points = options.networks.map(() => ({
+      ensemble: emptyEnsemble(),
+      merger: new BlockMerger(options.shape, options.blocks[0]!.replicates),
+    }));
   }
 
-  add(result: BatchResult): void {
-    this.#complete &&= result.firstReplicate === this.#ensemble.replicates;
+  add(point: number, result: BatchResult): void {
+    const { ensemble, merger } = this.#points[point]!;
+    this.#complete &&= result.firstReplicate === ensemble.replicates;
     if (!this.#complete) return;
-    addBatch(this.#ensemble, { ...result, engineVersion, summary: result.summary.encode() });
-    this.#merger.add({ ...result, records: recordsOf(result), share: result.blocks! });
+    const { firstReplicate, replicateCount, kernel, failure, ...content } = result;
+    const points = [{ ...content, summary: result.summary.encode() }];
+    addBatch(ensemble, { firstReplicate, replicateCount, kernel, failure, engineVersion, points });
+    merger.add({ firstReplicate, records: recordsOf(result), share: result.blocks! });
   }
 
   async compareTables(): Promise<void> {
     const { job, zip, problem } = this.#options;
-    if (!this.#complete || this.#ensemble.replicates !== job.replicates) return;
-    const results = { ensemble: this.#ensemble, blocks: this.#merger.share() };
+    if (!this.#complete || this.#points.some(({ ensemble }) => ensemble.replicates !== job.replicates)) return;
+    const ensemble = { ...this.#points[0]!.ensemble, points: this.#points.map((each) => each.ensemble.points[0]!) };
+    const results = { ensemble, blocks: this.#points.map(({ merger }) => merger.share()) };
     const tables = resultTables({ inputs: job, results }).map(({ path, rows }) => ({
       path,
       pieces: () => csvPieces(rows()),
     }));
-    const traces = this.#ensemble.traces.length > 0 ? [tracesParquet(job, this.#ensemble)] : [];
+    const traces = ensemble.points[0]!.traces.length > 0 ? [tracesParquet(job, ensemble)] : [];
     for (const { path, pieces } of [...tables, ...traces]) {
       const hashes = [createHash('sha256'), createHash('sha256')] as const;
       for (const piece of pieces()) hashes[0].update(piece);
@@ -98,12 +106,21 @@ class WholeAgain {
   }
 }
 
-async function reRunBlock({ job, network, shape, ...options }: ReRun, place: number): Promise<BatchResult> {
-  const { firstReplicate, replicates, events, digest } = options.blocks[place]!;
-  const task = jobTask({ inputs: job, seed: job.seed, network, point: 0, firstReplicate, replicateCount: replicates });
+async function reRunBlock({ job, networks, shape, ...options }: ReRun, place: number): Promise<BatchResult> {
+  const { point, firstReplicate, replicates, events, digest } = options.blocks[place]!;
+  const network = networks[point]!;
+  const { networks: _, ...task } = jobTask({
+    inputs: job,
+    seed: job.seed,
+    networks: [network],
+    firstReplicate,
+    replicateCount: replicates,
+  });
   const { problem } = options;
-  const name = `the block of replicates ${firstReplicate} to ${firstReplicate + replicates - 1}`;
-  const result = await runBatch({ ...task, kernel: job.kernel });
+  const name =
+    `the block of replicates ${firstReplicate} to ${firstReplicate + replicates - 1}` +
+    (job.points > 1 ? ` of point ${point}` : '');
+  const result = await runBatch({ ...task, network, point, kernel: job.kernel });
   if (result.replicateCount !== replicates) {
     problem(`Run again, ${name} ends after ${result.replicateCount} replicates.`);
     return result;
@@ -122,7 +139,9 @@ async function reRunBlock({ job, network, shape, ...options }: ReRun, place: num
     const { id } = shape.observables[Math.floor(differs / shape.gridPoints)]!;
     problem(`Run again, ${name} has other sums, first of ${id} at ${time}.`);
   }
-  const replicate = result.eventsPerReplicate.findIndex((count, i) => count !== options.events[firstReplicate + i]);
+  const replicate = result.eventsPerReplicate.findIndex(
+    (count, i) => count !== options.events[point * job.replicates + firstReplicate + i],
+  );
   if (replicate >= 0)
     problem(`Run again, replicate ${firstReplicate + replicate} has ${result.eventsPerReplicate[replicate]} events.`);
   else if (result.eventsPerReplicate.reduce((sum, count) => sum + count, 0) !== events)
@@ -131,24 +150,30 @@ async function reRunBlock({ job, network, shape, ...options }: ReRun, place: num
 }
 
 /** The listed traces of the replicates that were run again. */
-async function compareTraces({ zip, job, shape, problem }: ReRun, traces: Trace[]): Promise<void> {
+async function compareTraces(
+  { zip, job, shape, problem }: ReRun,
+  traces: { point: number; trace: Trace }[],
+): Promise<void> {
   const path = 'results/traces.csv';
   if (traces.length === 0) return;
   const times = gridTimes(job.horizon, job.gridIntervals);
-  const expected = new Map(traces.map(({ replicate, values }) => [String(replicate), values]));
+  const expected = new Map(
+    traces.map(({ point, trace: { replicate, values } }) => [`${point} ${replicate}`, { replicate, values }]),
+  );
   const seen = new Map<string, number>();
   const head = ['point', 'replicate', 'time', ...shape.observables.map(({ id }) => id)];
-  for await (const [, replicate, time, ...cells] of readTable(path, zip.read(path), head)) {
-    const values = expected.get(replicate!);
+  for await (const [point, replicate, time, ...cells] of readTable(path, zip.read(path), head)) {
+    const key = `${point} ${replicate}`;
+    const { values } = expected.get(key) ?? {};
     if (!values) continue;
-    const i = seen.get(replicate!) ?? 0;
-    seen.set(replicate!, i + 1);
+    const i = seen.get(key) ?? 0;
+    seen.set(key, i + 1);
     const again = shape.observables.map((_, observable) => String(values[observable * times.length + i]));
     if (time !== String(times[i]) || cells.some((cell, observable) => cell !== again[observable])) {
       problem(`Run again, replicate ${replicate} has another trace than ${path}, first at ${time}.`);
-      expected.delete(replicate!);
+      expected.delete(key);
     }
   }
-  for (const replicate of expected.keys())
-    if (seen.get(replicate) !== times.length) problem(`${path} does not hold replicate ${replicate} whole.`);
+  for (const [key, { replicate }] of expected)
+    if (seen.get(key) !== times.length) problem(`${path} does not hold replicate ${replicate} whole.`);
 }

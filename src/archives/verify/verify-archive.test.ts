@@ -6,6 +6,7 @@ import { unzipSync, zipSync } from 'fflate';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { bytesOf, forged, makeArchive, textOf, type Files } from '@tests/factories/archives.ts';
 import { chanceOfFinding } from './chance-of-finding.ts';
+import type { Sweep } from '@/domain/jobs/sweep.ts';
 import { verifyArchive, type VerifyReport } from './verify-archive.ts';
 
 let folder = '';
@@ -256,5 +257,60 @@ describe('the chance of finding an altered block', () => {
     expect(chanceOfFinding({ blocks: 10, chosen: 3, altered: 2 })).toBeCloseTo(1 - 56 / 120, 15);
     expect(chanceOfFinding({ blocks: 10, chosen: 10, altered: 1 })).toBe(1);
     expect(chanceOfFinding({ blocks: 10, chosen: 0, altered: 1 })).toBe(0);
+  });
+});
+
+describe('an archive of a sweep', () => {
+  const sweep: Sweep = {
+    kind: 'list',
+    targets: [{ kind: 'parameter', id: 'birth' }],
+    values: [[5], [20], [40]],
+  };
+  let ofSweep: Uint8Array;
+  beforeAll(async () => {
+    const { task } = await makeArchive({ folder, replicates: 300, batchSizes: [110, 70], keptTraces: 2, sweep });
+    ofSweep = await readFile(task.archiveFile);
+  });
+
+  it('has every table by point and holds, run again in part or whole; other batches give the same results', async () => {
+    const files = unzipSync(ofSweep);
+    expect(textOf(files['results/points.csv'])).toBe('point,birth\n0,5\n1,20\n2,40\n');
+    // Blocks of 256 and 44 replicates at each of three points.
+    for (const places of [[], [3], [0, 1, 2, 3, 4, 5]])
+      expect(await verify(ofSweep, places)).toMatchObject({ problems: [], blocks: 6, reRun: places.length });
+    expect((await verify(ofSweep, [0, 1, 2, 3, 4, 5])).checked.join()).toMatch(/every byte agrees/);
+    const other = await makeArchive({ folder, replicates: 300, batchSizes: [300], keptTraces: 2, sweep });
+    const again = unzipSync(await readFile(other.task.archiveFile));
+    for (const name of Object.keys(files).filter((each) => each.startsWith('results/')))
+      expect(textOf(again[name]), name).toBe(textOf(files[name]));
+  });
+
+  it('is found out when a number, a point or a block of a later point is another', async () => {
+    const summary = forged(ofSweep, (files) =>
+      change(
+        files,
+        'summary',
+        ([point, id, time]) => point === '2' && id === 'X' && time === '4',
+        (cells) => (cells[4] = '39'),
+      ),
+    );
+    expect((await verify(summary, [])).problems.join()).toMatch(/mean of X at 4 is 39/);
+    const swapped = forged(ofSweep, (files) => {
+      const job = JSON.parse(textOf(files['job.json'])) as { sweep: Sweep };
+      job.sweep.values[1] = [21];
+      files['job.json'] = bytesOf(JSON.stringify(job));
+    });
+    expect((await verify(swapped, [2])).problems.join()).toMatch(
+      /block of replicates 0 to 255 of point 1 has the digest/,
+    );
+    const events = forged(ofSweep, (files) =>
+      change(
+        files,
+        'events',
+        ([point, replicate]) => point === '1' && replicate === '299',
+        (cells) => (cells[2] = String(Number(cells[2]) + 1)),
+      ),
+    );
+    expect((await verify(events, [])).problems.join()).toMatch(/block from replicate 256 has/);
   });
 });

@@ -4,7 +4,7 @@
  */
 import { createHash } from 'node:crypto';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
-import { resolveNetwork } from '@/domain/network/resolve-network.ts';
+import { networksOf } from '@/domain/jobs/networks-of.ts';
 import { prepareNetwork } from '@/engine/kernel/prepare-network.ts';
 import type { SummaryShape } from '@/engine/statistics/summary.ts';
 import { ZipError, ZipReader } from '@/formats/zip/zip-reader.ts';
@@ -62,7 +62,8 @@ async function verify(
     if (report.problems.length < problemsMost) report.problems.push(text);
   };
   const resultsDigest = await checkSums(zip, problem, report);
-  const { job, network } = await readJob(zip, problem);
+  const { job, networks } = await readJob(zip, problem);
+  const network = networks[0]!;
   if (job.resultsDigest !== resultsDigest) problem('job.json names another digest of the results than they have.');
   const prepared = prepareNetwork(network);
   const shape: SummaryShape = {
@@ -81,11 +82,11 @@ async function verify(
   if (report.problems.length === 0)
     report.checked.push(
       `${blocks.length} blocks re-added: ${numbers} numbers of summary.csv, ${quantiles} of quantiles.csv, ` +
-        `${histograms.size} histograms and ${job.replicates} event counts follow from them.`,
+        `${histograms.size} histograms and ${events.length} event counts follow from them.`,
     );
   const { onBlock = () => undefined } = options;
   const before = report.problems.length;
-  report.reRun = await reRun({ zip, job, network, shape, blocks, events, reAdded, places, problem, onBlock });
+  report.reRun = await reRun({ zip, job, networks, shape, blocks, events, reAdded, places, problem, onBlock });
   if (report.reRun === 0 || report.problems.length > before) return;
   report.checked.push(`${report.reRun} of ${blocks.length} blocks run again: digests, sums, events and traces agree.`);
   if (report.reRun === blocks.length) report.checked.push('All tables made again from them: every byte agrees.');
@@ -119,14 +120,14 @@ async function checkSums(zip: ZipReader, problem: (text: string) => void, report
 async function readJob(
   zip: ZipReader,
   problem: (text: string) => void,
-): Promise<{ job: JobFile; network: ResolvedNetwork }> {
+): Promise<{ job: JobFile; networks: ResolvedNetwork[] }> {
   const job = readJobFile(await zip.text('job.json'));
   if (!job.ok) throw new Stop(job.problem);
   const text = await zip.text('model.json');
   if (sha256Hex(text) !== job.value.model.contentHash) problem('model.json is not the model that job.json names.');
   const document = readModelFile(text);
   if (!document.ok) throw new Stop(document.problem);
-  const resolved = resolveNetwork(document.value, job.value.overrides);
+  const resolved = networksOf(document.value, job.value);
   if (!resolved.ok) throw new Stop(`The model cannot run: ${resolved.problems[0]?.message}`);
-  return { job: job.value, network: resolved.network };
+  return { job: job.value, networks: resolved.networks };
 }

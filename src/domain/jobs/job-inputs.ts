@@ -3,6 +3,7 @@ import type { Overrides } from '../network/document.ts';
 import type { Lane, MethodFamily } from '../pricing/price-book.ts';
 import type { FinalState } from './job-state.ts';
 import type { PrecisionTarget } from './precision.ts';
+import type { Sweep } from './sweep.ts';
 
 /** A first passage to note: when the observable is first at least, or at most, the threshold. */
 export interface PassageInput {
@@ -13,6 +14,7 @@ export interface PassageInput {
 }
 
 export interface JobInputs {
+  /** At each point. */
   replicates: number;
   /** Simulated time, in the model's unit of time. */
   horizon: number;
@@ -23,7 +25,9 @@ export interface JobInputs {
   /** u64 as a decimal string. */
   seed: string;
   lane: Lane;
+  /** The scenario: at every point. */
   overrides: Overrides;
+  sweep?: Sweep | undefined;
   keptTraces: number;
   /** None when left out. */
   passages?: PassageInput[] | undefined;
@@ -38,6 +42,8 @@ export interface BatchFailure {
   kind:
     'negative_propensity' | 'not_a_number' | 'count_overflow' | 'event_budget' | 'bad_assignment' | 'change_cascade';
   replicate: number;
+  /** Of a sweep; absent or 0 without one. */
+  point?: number | undefined;
   reaction: string | null;
   /** The timed or triggered change that could not be made; absent where none is the cause. */
   change?: string | undefined;
@@ -73,7 +79,7 @@ export function describeFailure(failure: BatchFailure): string {
     change_cascade: `triggered changes set each other off without an end, ${failure.change} among them`,
   }[failure.kind];
   return (
-    `Replicate ${failure.replicate}: ${what}, at time ${failure.time}. ` +
+    `Replicate ${failure.replicate}${failure.point === undefined ? '' : ` at point ${failure.point}`}: ${what}, at time ${failure.time}. ` +
     'The replicates before it were kept and charged; results are conditional on no failure.'
   );
 }
@@ -87,6 +93,7 @@ export function continuesSample(a: JobInputs, b: JobInputs): boolean {
     epsilon,
     seed,
     overrides,
+    sweep,
     keptTraces,
     passages,
     eventBudgetPerReplicate,
@@ -99,6 +106,8 @@ export function continuesSample(a: JobInputs, b: JobInputs): boolean {
       seed,
       sortedEntries(overrides.parameters),
       sortedEntries(overrides.initialCounts),
+      sortedEntries(overrides.changeTimes),
+      sweep && [sweep.targets.map(({ kind, id }) => [kind, id]), sweep.values],
       keptTraces,
       (passages ?? []).map(({ observable, direction, threshold }) => [observable, direction, threshold]),
       eventBudgetPerReplicate,

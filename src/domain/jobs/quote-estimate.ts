@@ -34,6 +34,18 @@ export function summarisePilot(pilot: PilotOutcome): PilotSummary {
   };
 }
 
+/**
+ * Standard error of the events of a cycle over `points` points that comes of looking at some of them only: the total of a simple
+ * random sample without replacement (Cochran, Sampling Techniques, from memory). 0 when all were looked at.
+ */
+export function samplingError(meansAtSampledPoints: number[], points: number): number {
+  const sampled = meansAtSampledPoints.length;
+  if (sampled >= points || sampled < 2) return 0;
+  const mean = meansAtSampledPoints.reduce((sum, value) => sum + value, 0) / sampled;
+  const variance = meansAtSampledPoints.reduce((sum, value) => sum + (value - mean) ** 2, 0) / (sampled - 1);
+  return points * Math.sqrt(((1 - sampled / points) * variance) / sampled);
+}
+
 export interface EventsRange {
   expected: number;
   low: number;
@@ -109,18 +121,21 @@ export function estimateArchiveBytes(options: {
   gridPoints: number;
   histogramTimes: number;
   observables: number;
+  /** Default 1. */
+  points?: number;
   keptTraces: number;
   documentBytes: number;
 }): number {
-  const { replicates, gridPoints, observables, keptTraces } = options;
+  const { replicates, gridPoints, observables, points = 1, keptTraces } = options;
   const spread = Math.min(replicates, 60);
   return Math.round(
     6_000 +
       options.documentBytes * 0.5 +
-      gridPoints * observables * 45 +
-      gridPoints * observables * 14 +
-      options.histogramTimes * observables * spread * 5 +
-      replicates * 5 +
-      Math.min(keptTraces, replicates) * gridPoints * (2 + observables * 1.5),
+      points *
+        (gridPoints * observables * 45 +
+          gridPoints * observables * 14 +
+          options.histogramTimes * observables * spread * 5 +
+          replicates * 5 +
+          Math.min(keptTraces, replicates) * gridPoints * (2 + observables * 1.5)),
   );
 }

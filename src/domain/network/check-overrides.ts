@@ -7,7 +7,7 @@ import { error } from './problems.ts';
 
 /**
  * Parameters are named by id, compartment sizes too, local parameters as `reaction.parameter`; initial counts by
- * species. A path is `overrides.parameters.k1` or `overrides.initialCounts.A`.
+ * species; times by their change. A path is `overrides.parameters.k1` or `overrides.initialCounts.A`.
  */
 export function checkOverrides(network: ParsedNetwork, overrides: Overrides): Problem[] {
   const parameters = Object.entries(overrides.parameters ?? {}).flatMap(([id, value]) => {
@@ -20,7 +20,12 @@ export function checkOverrides(network: ParsedNetwork, overrides: Overrides): Pr
     const fault = speciesFault(network, id) ?? countFault(value);
     return fault === null ? [] : [error(path, fault.code, fault.message)];
   });
-  return [...parameters, ...counts];
+  const times = Object.entries(overrides.changeTimes ?? {}).flatMap(([id, value]) => {
+    const path = `overrides.changeTimes.${id}`;
+    const fault = changeFault(network, id) ?? timeFault(value);
+    return fault === null ? [] : [error(path, fault.code, fault.message)];
+  });
+  return [...parameters, ...counts, ...times];
 }
 
 type Fault = { code: string; message: string } | null;
@@ -66,3 +71,21 @@ function speciesFault({ names, ruleOf, document }: ParsedNetwork, id: string): F
     message: `There is no species “${id}”.${near === null ? '' : ` Did you mean ${near}?`}`,
   };
 }
+
+function changeFault({ document }: ParsedNetwork, id: string): Fault {
+  const changes = document.changes ?? [];
+  const change = changes.find((each) => each.id === id);
+  if (change?.when.kind === 'time') return null;
+  if (change) return { code: 'triggered_change', message: `${id} happens on a condition and has no time.` };
+  const near = nearestName(
+    id,
+    changes.map((each) => each.id),
+  );
+  return {
+    code: 'unknown_change',
+    message: `There is no timed change “${id}”.${near === null ? '' : ` Did you mean ${near}?`}`,
+  };
+}
+
+const timeFault = (value: number): Fault =>
+  value >= 0 && value < Infinity ? null : { code: 'invalid_time', message: 'A time is a number from 0 up.' };

@@ -106,6 +106,8 @@ export interface NetworkDocument {
 export interface Overrides {
   parameters?: Record<Identifier, number> | undefined;
   initialCounts?: Record<Identifier, number> | undefined;
+  /** When timed changes first happen, by their ids. */
+  changeTimes?: Record<Identifier, number> | undefined;
 }
 
 /** One thing found by a check. `path` is a JSON path such as `reactions[2].rateLaw.expression`. */

@@ -1,6 +1,6 @@
 /** Puts indices in place of names in changes that have passed their checks, and works out when timed ones happen. */
 import { limits } from '../limits.ts';
-import type { ChangeDocument, Problem } from './document.ts';
+import type { ChangeDocument, Overrides, Problem } from './document.ts';
 import { evaluateExpression } from './evaluate-expression.ts';
 import type { Expression } from './expression.ts';
 import { expressionResolver } from './index-network.ts';
@@ -13,6 +13,7 @@ import type { ResolvedChange, ResolvedNetwork } from './resolved.ts';
 export function indexChanges(
   parsed: ParsedNetwork,
   network: ResolvedNetwork,
+  changeTimes: Overrides['changeTimes'] = {},
 ): { changes: ResolvedChange[]; problems: Problem[] } {
   const problems: Problem[] = [];
   const resolve = expressionResolver(parsed, network);
@@ -31,7 +32,8 @@ export function indexChanges(
       const before = !(document.when.happensAtStart ?? false);
       return { id: document.id, when: { kind: 'condition', condition: resolve(change.condition!), before }, sets };
     }
-    const outcome = timesOf(change, document, valueOf, room, `changes[${index}].when`);
+    const first = changeTimes[document.id] ?? valueOf(change.time!);
+    const outcome = timesOf(change, first, document, valueOf, room, `changes[${index}].when`);
     if (Array.isArray(outcome)) room -= outcome.length;
     else problems.push(outcome);
     return { id: document.id, when: { kind: 'times', times: Array.isArray(outcome) ? outcome : [] }, sets };
@@ -40,13 +42,13 @@ export function indexChanges(
 }
 
 function timesOf(
-  { time, every }: ParsedChange,
+  { every }: ParsedChange,
+  first: number,
   { when }: ChangeDocument,
   valueOf: (expression: Expression) => number,
   room: number,
   path: string,
 ): number[] | Problem {
-  const first = valueOf(time!);
   if (!(first >= 0 && first < Infinity)) {
     return error(`${path}.time`, 'invalid_time', `The time comes to ${first}; it must be a number from 0 up.`);
   }

@@ -36,7 +36,7 @@ export function resolveNetwork(document: NetworkDocument, overrides: Overrides =
   if (problems.length > 0 || !ordered.ok) return { ok: false, problems: orderedProblems(problems) };
 
   const network = indexNetwork(parsed, overrides, ordered.order);
-  const { changes, problems: timeFaults } = indexChanges(parsed, network);
+  const { changes, problems: timeFaults } = indexChanges(parsed, network, overrides.changeTimes);
   const lawPaths = parsed.reactions.map(({ lawPath }) => lawPath);
   const faults = [...checkConstantValues(network, lawPaths), ...timeFaults];
   return faults.length > 0

@@ -29,7 +29,9 @@ describe('the number of reactions of a job', () => {
   it('is not limited further than that of a stored network', async () => {
     const checked = checkQuoteRequest(request, leaving(limits.reactionsPerNetwork));
     if (!checked.ok) throw new Error(checked.detail);
-    const { replicateCount, kernel } = await runBatch(batchTask(checked.value, { replicateCount: 4, horizon: 1e-4 }));
+    const { replicateCount, kernel } = await runBatch(
+      batchTask(checked.value.networks[0]!, { replicateCount: 4, horizon: 1e-4 }),
+    );
     expect({ replicateCount, kernel }).toEqual({ replicateCount: 4, kernel: 'composition-rejection' });
   });
 });

@@ -1,36 +1,79 @@
 /** Checks what a contract cannot: a quote request against the model version, the limits and what is built so far. */
 import type { z } from 'zod';
 import type { quoteRequest } from '@/contracts/jobs.ts';
+import { networksOf, type PointNetworks } from '@/domain/jobs/networks-of.ts';
+import { planSweep } from '@/domain/jobs/plan-sweep.ts';
+import { overridePath, pointWords, type Sweep } from '@/domain/jobs/sweep.ts';
+import { splitMix64 } from '@/engine/random/splitmix64.ts';
+import { uniform53, Xoshiro256 } from '@/engine/random/xoshiro256.ts';
 import type { PassageInput } from '@/domain/jobs/job-inputs.ts';
 import type { PrecisionTarget } from '@/domain/jobs/precision.ts';
 import { largestLeapingNetwork } from '@/engine/leaping/tau-leaping.ts';
 import { limits } from '@/domain/limits.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
-import { resolveNetwork } from '@/domain/network/resolve-network.ts';
 import { accept, refuse, type InputFault, type Result } from '@/domain/refusals.ts';
 
 export type QuoteRequest = z.output<typeof quoteRequest>;
 
-/** The network with the request's overrides, or every fault found. */
-export function checkQuoteRequest(request: QuoteRequest, document: NetworkDocument): Result<ResolvedNetwork> {
-  const resolved = resolveNetwork(document, request.overrides ?? {});
-  if (!resolved.ok) {
-    const ofOverrides = resolved.problems.filter(({ path }) => path.startsWith('overrides.'));
-    return ofOverrides.length > 0
-      ? refuse('invalid_input', 'Some overrides do not fit the model.', { errors: ofOverrides.map(fault) })
-      : refuse('invalid_network', 'This version of the model cannot run.', { errors: resolved.problems.map(fault) });
-  }
+export interface CheckedRequest {
+  /** By point. */
+  networks: ResolvedNetwork[];
+  /** Undefined without one. */
+  sweep: Sweep | undefined;
+}
+
+/** The networks of the request's points, or every fault found. */
+export function checkQuoteRequest(request: QuoteRequest, document: NetworkDocument): Result<CheckedRequest> {
+  const planned = sweepOf(request, document);
+  if (!planned.ok) return planned;
+  const sweep = planned.value;
+  const resolved = networksOf(document, { overrides: request.overrides ?? {}, sweep });
+  if (!resolved.ok) return unrunnable(resolved, sweep);
+  const network = resolved.networks[0]!;
   const faults = [
-    ...unknownPassages(request, resolved.network),
-    ...unfitStopping(request, resolved.network),
-    ...unfitMethod(request, resolved.network),
-    ...notBuilt(request),
-    ...tooLarge(request, resolved.network),
+    ...unknownPassages(request, network),
+    ...unfitStopping(request, network),
+    ...unfitMethod(request, network),
+    ...tooLarge(request, network, resolved.networks.length),
   ];
   return faults.length > 0
     ? refuse('invalid_input', faults.map(({ message }) => message).join(' '), { errors: faults })
-    : accept(resolved.network);
+    : accept({ networks: resolved.networks, sweep });
+}
+
+function sweepOf({ sweep: asked }: QuoteRequest, document: NetworkDocument): Result<Sweep | undefined> {
+  if (!asked) return accept(undefined);
+  const seed = asked.kind === 'latin_hypercube' ? (asked.seed ?? 0) : 0;
+  const stream = new Xoshiro256(splitMix64(BigInt(seed), 4));
+  const planned = planSweep(asked, () => uniform53(stream.next()));
+  if (!planned.ok)
+    return refuse('invalid_input', planned.faults.map(({ message }) => message).join(' '), { errors: planned.faults });
+  const work = planned.sweep.values.length * document.reactions.length;
+  if (work <= limits.sweepReactions) return accept(planned.sweep);
+  const message =
+    `${planned.sweep.values.length} points of ${document.reactions.length.toLocaleString('en')} reactions are too much for one ` +
+    `sweep: points times reactions may be ${limits.sweepReactions.toLocaleString('en')}.`;
+  return refuse('invalid_input', message, { errors: [{ path: 'sweep', code: 'too_many_points', message }] });
+}
+
+/** A value of a point that does not fit is told under the sweep, with the point's number. */
+function unrunnable(
+  { point, problems }: Extract<PointNetworks, { ok: false }>,
+  sweep: Sweep | undefined,
+): Result<never> {
+  const ofOverrides = problems.filter(({ path }) => path.startsWith('overrides.'));
+  const ofPoint = (sweep?.targets ?? []).flatMap((target) =>
+    ofOverrides.filter(({ path }) => path === overridePath(target)),
+  );
+  if (ofPoint.length > 0)
+    return refuse('invalid_input', `Point ${point} does not fit the model: ${ofPoint[0]!.message}`, {
+      errors: ofPoint.map(({ code, message }) => ({ path: `sweep.points[${point}]`, code, message })),
+    });
+  if (ofOverrides.length > 0)
+    return refuse('invalid_input', 'Some overrides do not fit the model.', { errors: ofOverrides.map(fault) });
+  const where = sweep ? `At point ${point} (${pointWords(sweep, point)}) the model` : 'This version of the model';
+  return refuse('invalid_network', `${where} cannot run.`, { errors: problems.map(fault) });
 }
 
 const fault = ({ path, code, message }: InputFault): InputFault => ({ path, code, message });
@@ -64,23 +107,25 @@ function unfitMethod({ method, epsilon }: QuoteRequest, { changes, reactions }: 
   return faults;
 }
 
-function notBuilt({ sweep }: QuoteRequest): InputFault[] {
-  const faults: InputFault[] = [];
-  if (sweep !== undefined)
-    faults.push({ path: 'sweep', code: 'not_available', message: 'Sweeps are not available yet; quote each point.' });
-  return faults;
-}
-
-function tooLarge(request: QuoteRequest, network: ResolvedNetwork): InputFault[] {
-  const cells = (request.gridIntervals + 1) * network.observables.length;
+function tooLarge(request: QuoteRequest, network: ResolvedNetwork, points: number): InputFault[] {
+  const cells = (request.gridIntervals + 1) * network.observables.length * points;
+  const ofPoints = points > 1 ? ` at ${points.toLocaleString('en')} points` : '';
   if (cells > limits.resultCells)
     return [
       {
         path: 'gridIntervals',
         code: 'too_many_cells',
         message:
-          `${request.gridIntervals + 1} grid times of ${network.observables.length} observables are ` +
+          `${request.gridIntervals + 1} grid times of ${network.observables.length} observables${ofPoints} are ` +
           `${cells.toLocaleString('en')} cells; at most ${limits.resultCells.toLocaleString('en')} are kept. Use fewer grid intervals.`,
+      },
+    ];
+  if (points * request.replicates > limits.replicatesPerJob)
+    return [
+      {
+        path: 'replicates',
+        code: 'too_many_replicates',
+        message: `A job has at most ${limits.replicatesPerJob.toLocaleString('en')} replicates over all points.`,
       },
     ];
   const traceCells = cells * Math.min(request.outputs?.keptTraces ?? 0, request.replicates);
@@ -150,8 +195,8 @@ function unknownPassages(request: QuoteRequest, network: ResolvedNetwork): Input
   );
 }
 
-/** Traces kept when the request does not say: 20, or fewer where the grid is large. */
-export function defaultKeptTraces(request: QuoteRequest, network: ResolvedNetwork): number {
-  const cells = (request.gridIntervals + 1) * network.observables.length;
+/** Traces kept at each point when the request does not say: 20, or fewer where the grid is large. */
+export function defaultKeptTraces(request: QuoteRequest, network: ResolvedNetwork, points: number): number {
+  const cells = (request.gridIntervals + 1) * network.observables.length * points;
   return Math.max(0, Math.min(20, Math.floor(limits.resultCells / cells)));
 }

@@ -12,6 +12,7 @@ import {
   secondsByLane,
   type PilotSummary,
 } from '@/domain/jobs/quote-estimate.ts';
+import { pointsOf, type Sweep } from '@/domain/jobs/sweep.ts';
 import { histogramTimes } from '@/domain/jobs/result-outputs.ts';
 import { defaultEpsilon } from '@/domain/jobs/method-comparison.ts';
 import { limits } from '@/domain/limits.ts';
@@ -62,9 +63,10 @@ export async function createQuote(options: {
     });
   const checked = checkQuoteRequest(request, version.document);
   if (!checked.ok) return checked;
-  const network = checked.value;
-  const inputs = inputsOf(request, network);
-  const forPilot = { teamId: team.id, userId, modelVersionId: version.id, network, inputs };
+  const { networks, sweep } = checked.value;
+  const network = networks[0]!;
+  const inputs = inputsOf(request, network, sweep);
+  const forPilot = { teamId: team.id, userId, modelVersionId: version.id, networks, inputs };
   const ran = await runPilot(forPilot);
   if (!ran.ok) return ran;
 
@@ -78,6 +80,7 @@ export async function createQuote(options: {
       gridPoints: inputs.gridIntervals + 1,
       histogramTimes: histogramTimes(inputs.gridIntervals).length,
       observables: network.observables.length,
+      points: networks.length,
       keptTraces: inputs.keptTraces,
       documentBytes: JSON.stringify(version.document).length,
     }),
@@ -106,7 +109,7 @@ export async function createQuote(options: {
 }
 
 /** The inputs as they are pinned: defaults filled in, a seed drawn where none was given. */
-function inputsOf(request: QuoteRequest, network: ResolvedNetwork): JobInputs {
+function inputsOf(request: QuoteRequest, network: ResolvedNetwork, sweep: Sweep | undefined): JobInputs {
   const { replicates, horizon, gridIntervals, method, epsilon = defaultEpsilon, lane } = request;
   const stopping = stoppingOf(request);
   return {
@@ -119,7 +122,8 @@ function inputsOf(request: QuoteRequest, network: ResolvedNetwork): JobInputs {
     seed: request.seed === undefined ? drawSeed() : BigInt(request.seed).toString(),
     lane,
     overrides: request.overrides ?? {},
-    keptTraces: request.outputs?.keptTraces ?? defaultKeptTraces(request, network),
+    ...(sweep ? { sweep } : {}),
+    keptTraces: request.outputs?.keptTraces ?? defaultKeptTraces(request, network, pointsOf({ sweep })),
     passages: passagesOf(request),
     ...(stopping ? { stopping } : {}),
     eventBudgetPerReplicate: limits.eventsPerReplicate,
@@ -174,7 +178,7 @@ async function pricedAnswer(options: {
     },
     book,
     answer: {
-      eventsPerReplicate: { mean: summary.mean, sd: summary.sd },
+      eventsPerReplicate: { mean: summary.mean / pointsOf(inputs), sd: summary.sd / pointsOf(inputs) },
       microcredits: { ...microcredits, high: Math.max(microcredits.high, least) },
       oneSided: summary.oneSided,
       leastCapMicrocredits: least,
@@ -189,6 +193,8 @@ async function pricedAnswer(options: {
       replicates: inputs.replicates,
       method: inputs.method,
       epsilon: inputs.epsilon ?? null,
+      points: pointsOf(inputs),
+      sweep: inputs.sweep ?? null,
       seed: inputs.seed,
       kernel: pilot.kernel,
       engineVersion: pilot.engineVersion,

@@ -7,6 +7,7 @@
 import { afterCommit, inWriteTransaction } from '@db/in-write-transaction.ts';
 import { Batch, Job, Segment } from '@db/models/jobs.ts';
 import { longestPrefix } from '@/domain/jobs/longest-prefix.ts';
+import { eventsPerCycle } from '@/engine/run-points.ts';
 import { joinBatch } from './advance-prefix.ts';
 import { storeBatch, type BatchContent } from './batch-file.ts';
 import { endJob } from './end-job.ts';
@@ -23,7 +24,7 @@ export async function cutAtCap(options: {
 }): Promise<void> {
   const { batch, segment, content } = options;
   const fit = longestPrefix({
-    eventsPerReplicate: content.eventsPerReplicate,
+    eventsPerReplicate: eventsPerCycle(content.points),
     segmentEvents: segment.events,
     capMicrocredits: segment.capMicrocredits,
     microcreditsPerMillionEvents: segment.microcreditsPerMillionEvents,

@@ -173,8 +173,7 @@ export class Dispatcher {
         executor().run(
           batchTask({
             job,
-            network: open.network,
-            point: batch.point,
+            networks: open.networks,
             firstReplicate: batch.firstReplicate,
             replicateCount: replicates,
           }),

@@ -1,5 +1,5 @@
 /** Where batches are computed. The dispatcher, the meter and the archive do not know which executor runs. */
-import type { BatchTask } from '@/engine/ensemble.ts';
+import type { PointsTask } from '@/engine/run-points.ts';
 import type { RunBatchAnswer } from '@workers/protocol.ts';
 
 export interface Executor {
@@ -9,7 +9,7 @@ export interface Executor {
    * Computes a batch. The answer depends on the task alone, so a lost batch is simply run again. Rejects when the
    * worker was lost or the queue is full; aborting the signal stops the work within milliseconds and rejects too.
    */
-  run(task: BatchTask, options?: { signal?: AbortSignal }): Promise<RunBatchAnswer>;
+  run(task: PointsTask, options?: { signal?: AbortSignal }): Promise<RunBatchAnswer>;
   /** Ends all work. */
   close(): Promise<void>;
 }

@@ -13,8 +13,8 @@ import { prefixEnsemble } from './prefix-ensemble.ts';
 export async function lookAtPrecision(jobId: string, replicates: number): Promise<Advance> {
   const job = (await Job.findByPk(jobId))!;
   const target = job.inputs.stopping!;
-  const { summary } = await prefixEnsemble(job);
-  const precise = summary !== null && summary.replicates === replicates && isPrecise(target, seenBy(summary, target));
+  const { points, replicates: present } = await prefixEnsemble(job);
+  const precise = present === replicates && points.every(({ summary }) => isPrecise(target, seenBy(summary, target)));
   return inWriteTransaction(async () => {
     await job.reload();
     if (precise && !job.ending && job.replicatesDone === replicates)
@@ -22,7 +22,8 @@ export async function lookAtPrecision(jobId: string, replicates: number): Promis
         state: 'done',
         reason: 'precision_reached',
         detail:
-          `The mean of ${target.observable} is known as well as was asked for after ${replicates.toLocaleString('en')} replicates. ` +
+          `The mean of ${target.observable} is known as well as was asked for after ${replicates.toLocaleString('en')} replicates` +
+          `${points.length > 1 ? ' at every point' : ''}. ` +
           'The interval is nominal, since it was looked at more than once.',
         failure: null,
       });

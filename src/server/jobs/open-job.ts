@@ -3,13 +3,12 @@ import PQueue from 'p-queue';
 import { Batch, Job } from '@db/models/jobs.ts';
 import type { TurnCandidate } from '@/domain/jobs/fair-turns.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
-import { networkOf } from './batch-task.ts';
+import { networksOfJob } from './batch-task.ts';
 
 export interface WaitingBatch {
   id: string;
   segmentId: string;
   ordinal: number;
-  point: number;
   firstReplicate: number;
   replicateCount: number;
   attempts: number;
@@ -34,7 +33,8 @@ export class OpenJob implements TurnCandidate {
     readonly teamId: string,
     readonly userId: string,
     readonly lane: Job['lane'],
-    readonly network: ResolvedNetwork,
+    /** By point. */
+    readonly networks: ResolvedNetwork[],
     readonly secondsPerReplicate: number,
     waiting: WaitingBatch[],
     firstUnjoined: number,
@@ -52,7 +52,7 @@ export class OpenJob implements TurnCandidate {
   static async load(job: Job): Promise<OpenJob> {
     const rows = await Batch.findAll({
       where: { jobId: job.id, state: ['planned', 'done'] },
-      attributes: ['id', 'segmentId', 'ordinal', 'point', 'firstReplicate', 'replicateCount', 'attempts', 'state'],
+      attributes: ['id', 'segmentId', 'ordinal', 'firstReplicate', 'replicateCount', 'attempts', 'state'],
       order: [['ordinal', 'ASC']],
       raw: true,
     });
@@ -62,7 +62,7 @@ export class OpenJob implements TurnCandidate {
       job.teamId,
       job.userId,
       job.lane,
-      await networkOf(job),
+      await networksOfJob(job),
       job.secondsPerReplicate,
       waiting,
       rows[0]?.ordinal ?? 0,

@@ -6,10 +6,15 @@ import type { EnsembleSummary } from '@/engine/ensemble.ts';
 import { authorise } from '../teams/authorise.ts';
 import { findJob } from './find-job.ts';
 import { prefixEnsemble, type PrefixEnsemble } from './prefix-ensemble.ts';
+import { pointsOf } from '@/domain/jobs/sweep.ts';
+import type { PointEnsemble } from '@/archives/ensemble.ts';
 
 export interface OpenResults {
   job: Job;
-  ensemble: PrefixEnsemble;
+  /** Complete at every point. */
+  replicates: number;
+  /** Of the point asked for. */
+  ensemble: PointEnsemble;
   summary: EnsembleSummary;
 }
 
@@ -24,18 +29,20 @@ export async function openResults(options: {
   const found = await findJob({ teamId: authorised.value.team.id, job: options.job });
   if (!found.ok) return found;
   const job = found.value;
-  if (options.point !== 0)
-    return refuse('invalid_input', 'This job has one point: 0.', {
-      errors: [{ path: 'query.point', code: 'unknown_point', message: 'The job has one point: 0.' }],
-    });
+  const points = pointsOf(job.inputs);
+  if (options.point >= points) {
+    const message = points === 1 ? 'This job has one point: 0.' : `This job has points 0 to ${points - 1}.`;
+    return refuse('invalid_input', message, { errors: [{ path: 'query.point', code: 'unknown_point', message }] });
+  }
   if (job.replicatesDone === 0)
     return refuse(
       'results_not_ready',
       job.finishedAt ? 'This job ended before a replicate was complete.' : 'No replicate is complete yet.',
     );
-  const ensemble = await ensembleOf(job);
-  return ensemble.summary
-    ? accept({ job, ensemble, summary: ensemble.summary })
+  const { points: ensembles, replicates } = await ensembleOf(job);
+  const ensemble = ensembles[options.point];
+  return ensemble
+    ? accept({ job, replicates, ensemble, summary: ensemble.summary })
     : refuse('results_not_ready', 'No replicate is complete yet.');
 }
 

@@ -2,6 +2,7 @@
 import { Batch, Job, Quote, Segment } from '@db/models/jobs.ts';
 import { planBatches } from '@/domain/jobs/plan-batches.ts';
 import { looksBetween } from '@/domain/jobs/precision.ts';
+import { pointsOf } from '@/domain/jobs/sweep.ts';
 import { limits } from '@/domain/limits.ts';
 import { creditsText } from '@/domain/pricing/credits-text.ts';
 import { accept, refuse, type Result } from '@/domain/refusals.ts';
@@ -106,11 +107,13 @@ async function writePlan(options: {
     eventsPerReplicate: quote.eventsPerReplicate,
     gridPoints,
     observables,
+    points: pointsOf(job.inputs),
     firstOrdinal,
     endsAt: quote.inputs.stopping ? looksBetween(segment.firstReplicate, segment.replicateCount) : [],
   });
   const rows = planned.map((batch) => ({
     ...batch,
+    point: 0,
     id: newId('batch'),
     jobId: job.id,
     segmentId: segment.id,

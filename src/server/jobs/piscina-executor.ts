@@ -1,6 +1,6 @@
 /** Runs batches on threads of this process (Piscina): a bounded queue, niced so that pages stay quick. */
 import { Piscina } from 'piscina';
-import type { BatchTask } from '@/engine/ensemble.ts';
+import type { PointsTask } from '@/engine/run-points.ts';
 import { protocolVersion, type RunBatchAnswer, type RunBatchMessage } from '@workers/protocol.ts';
 import type { Executor } from './executor.ts';
 
@@ -17,7 +17,7 @@ export function startPiscinaExecutor(options: { workerFile: string; threads: num
   });
   return {
     capacity: options.threads,
-    async run(task: BatchTask, { signal } = {}): Promise<RunBatchAnswer> {
+    async run(task: PointsTask, { signal } = {}): Promise<RunBatchAnswer> {
       const message: RunBatchMessage = { version: protocolVersion, task };
       const answer = (await pool.run(message, signal ? { signal } : {})) as RunBatchAnswer;
       if (answer.version !== protocolVersion)

@@ -5,6 +5,7 @@ import { User } from '@db/models/people.ts';
 import { ProjectCode } from '@db/models/teams.ts';
 import type { JobDocument } from '@/contracts/jobs.ts';
 import type { JobInputs } from '@/domain/jobs/job-inputs.ts';
+import { pointsOf } from '@/domain/jobs/sweep.ts';
 import type { PrecisionTarget } from '@/domain/jobs/precision.ts';
 import { isFinal } from '@/domain/jobs/job-state.ts';
 import { env } from '../env.ts';
@@ -65,7 +66,8 @@ function present(
     keptTraces: inputs.keptTraces,
     passages: inputs.passages ?? [],
     stopping: inputs.stopping ? presentTarget(inputs.stopping, inputs) : null,
-    points: 1,
+    points: pointsOf(inputs),
+    sweep: inputs.sweep ?? null,
     replicatesPlanned: job.replicatesPlanned,
     replicatesDone: job.replicatesDone,
     events: job.events,

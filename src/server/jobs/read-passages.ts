@@ -15,11 +15,11 @@ export async function readPassages(options: {
 }): Promise<Result<PassagesDocument>> {
   const opened = await openResults(options);
   if (!opened.ok) return opened;
-  const { job, ensemble } = opened.value;
+  const { job, ensemble, replicates } = opened.value;
   const { horizon, gridIntervals, passages = [] } = job.inputs;
   const times = gridTimes(horizon, gridIntervals);
   return accept({
-    replicates: ensemble.replicates,
+    replicates,
     horizon,
     times,
     passages: passages.map((passage, index) => {

@@ -22,11 +22,12 @@ export async function runBatch(options: {
   const left = most === null ? null : Number(most - BigInt(segment.events));
   const task = batchTask({
     job,
-    network: open.network,
-    point: batch.point,
+    networks: open.networks,
     firstReplicate: batch.firstReplicate,
     replicateCount: batch.replicateCount,
-    eventBudgetPerBatch: left === null || left > Number.MAX_SAFE_INTEGER ? null : Math.max(0, left),
+    // With several points the budget would run out at one of them first, and cut the cycle elsewhere than the cap does.
+    eventBudgetPerBatch:
+      left === null || left > Number.MAX_SAFE_INTEGER || open.networks.length > 1 ? null : Math.max(0, left),
   });
   return executor().run(task, { signal });
 }

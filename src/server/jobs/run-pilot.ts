@@ -4,7 +4,7 @@ import { Op } from 'sequelize';
 import { inWriteTransaction } from '@db/in-write-transaction.ts';
 import { Pilot, PilotRun } from '@db/models/jobs.ts';
 import { describeFailure, sortedEntries, type JobInputs } from '@/domain/jobs/job-inputs.ts';
-import { summarisePilot } from '@/domain/jobs/quote-estimate.ts';
+import { samplingError, summarisePilot, type PilotSummary } from '@/domain/jobs/quote-estimate.ts';
 import type { HorizonMean } from '@/domain/jobs/method-comparison.ts';
 import { limits } from '@/domain/limits.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
@@ -13,6 +13,7 @@ import type { ModelFailure } from '@/engine/ensemble.ts';
 import { momentsAt } from '@/engine/statistics/statistics-of.ts';
 import { decodeSummary, type Summary } from '@/engine/statistics/summary.ts';
 import { engineVersion } from '@/engine/engine-version.ts';
+import { eventsPerCycle } from '@/engine/run-points.ts';
 import type { RunBatchAnswer } from '@workers/protocol.ts';
 import { nowText } from '../clock.ts';
 import { newId } from '../ids.ts';
@@ -25,12 +26,15 @@ const waitingPilotsMost = 50;
 
 /** Replicates of each step: small steps first, so that the clock can stop a slow pilot with something in hand. */
 const steps = [4, 16, 60, limits.pilotReplicatesMinimum - 80];
+/** Points of a sweep that a pilot looks at; fewer when not one cycle of so many fits its budget. */
+const sampleSizes = [40, 10, 3];
 
 export interface PilotOptions {
   teamId: string;
   userId: string;
   modelVersionId: string;
-  network: ResolvedNetwork;
+  /** By point. */
+  networks: ResolvedNetwork[];
   inputs: JobInputs;
 }
 
@@ -49,7 +53,7 @@ export async function runPilot(options: PilotOptions): Promise<Result<{ pilot: P
     // The same pilot may have run while this one waited.
     const meanwhile = await Pilot.findByPk(cacheKey);
     if (meanwhile) return accept({ pilot: meanwhile, cached: true });
-    const run = await runSteps(options, cacheKey);
+    const run = await runSamples(options, cacheKey);
     if (!run.ok) return run;
     const pilot = await remember(options, cacheKey, run.value);
     return accept({ pilot, cached: false });
@@ -58,7 +62,7 @@ export async function runPilot(options: PilotOptions): Promise<Result<{ pilot: P
 
 /** Replicates, seed, lane and kept traces shape no pilot replicate. */
 function keyOf({ modelVersionId, inputs }: PilotOptions): string {
-  const { horizon, gridIntervals, method, epsilon, overrides, eventBudgetPerReplicate } = inputs;
+  const { horizon, gridIntervals, method, epsilon, overrides, sweep, eventBudgetPerReplicate } = inputs;
   return sha256Hex(
     JSON.stringify([
       engineVersion,
@@ -68,6 +72,8 @@ function keyOf({ modelVersionId, inputs }: PilotOptions): string {
       epsilon === undefined ? method : [method, epsilon],
       sortedEntries(overrides.parameters),
       sortedEntries(overrides.initialCounts),
+      sortedEntries(overrides.changeTimes),
+      sweep && [sweep.targets.map(({ kind, id }) => [kind, id]), sweep.values],
       eventBudgetPerReplicate,
     ]),
   );
@@ -90,54 +96,121 @@ async function countPilot(userId: string): Promise<Result<null>> {
 }
 
 interface Steps {
-  eventsPerReplicate: number[];
-  /** Events of the replicate that the event budget cut, as far as it got; null when none was. */
+  /** Events of each replicate at every point of the sample together. */
+  eventsPerCycle: number[];
+  /** By point of the sample. */
+  eventsAtPoints: number[];
+  /** Events of the replicate that the event budget cut, as far as it got; null when none was, or with several points. */
   cutReplicateEvents: number | null;
+  isCut: boolean;
+  events: number;
   seconds: number;
-  /** From the last step, when code and caches are warm. */
+  /** Of a cycle; from the last step, when code and caches are warm. */
+  secondsPerCycle: number;
+  kernel: string;
+  /** Of the complete replicates at the first point; null before one is. */
+  firstPoint: Summary | null;
+}
+
+/** What a cycle over all points is expected to cost. */
+interface PilotRunOutcome {
+  summary: PilotSummary;
+  isCut: boolean;
+  events: number;
+  seconds: number;
   secondsPerReplicate: number;
   kernel: string;
-  /** Of the complete replicates; null before the first. */
-  summary: Summary | null;
+  /** At the first point. */
+  atHorizon: HorizonMean[];
+}
+
+async function runSamples(options: PilotOptions, cacheKey: string): Promise<Result<PilotRunOutcome>> {
+  const { networks } = options;
+  const sizes = sampleSizes.map((size) => Math.min(size, networks.length));
+  for (const size of new Set(sizes)) {
+    const sample = samplePoints(networks.length, size);
+    const run = await runSteps({ ...options, networks: sample.map((point) => networks[point]!) }, cacheKey);
+    if (!run.ok) return run;
+    if (run.value.eventsPerCycle.length > 0) return accept(outcomeOf(run.value, networks.length));
+  }
+  return refuse(
+    'pilot_failed',
+    `Not one replicate ended within a pilot's ${limits.pilotEvents.toLocaleString('en')} events and ` +
+      `${limits.pilotSeconds} seconds, so no price can be given. Shorten the horizon, or check the model for growth without bound.`,
+  );
+}
+
+/** `size` points, evenly spread over the sweep's order, its first and last among them. */
+const samplePoints = (points: number, size: number): number[] =>
+  Array.from({ length: size }, (_, i) => (size === 1 ? 0 : Math.round((i * (points - 1)) / (size - 1))));
+
+function outcomeOf(run: Steps, points: number): PilotRunOutcome {
+  const sampled = run.eventsAtPoints.length;
+  const scale = points / sampled;
+  const { replicates, mean, sd, oneSided } = summarisePilot({
+    eventsPerReplicate: run.eventsPerCycle,
+    cutReplicateEvents: run.cutReplicateEvents,
+  });
+  const leftOut = samplingError(
+    run.eventsAtPoints.map((events) => events / run.eventsPerCycle.length),
+    points,
+  );
+  return {
+    // The error of the points left out is one for all replicates; spread over the pilot's it widens the interval as it should.
+    summary: {
+      replicates,
+      mean: mean * scale,
+      sd: Math.hypot(sd * scale, leftOut * Math.sqrt(replicates)),
+      oneSided: oneSided || run.isCut,
+    },
+    isCut: run.isCut,
+    events: run.events,
+    seconds: run.seconds,
+    secondsPerReplicate: run.secondsPerCycle * scale,
+    kernel: run.kernel,
+    atHorizon: run.firstPoint ? atHorizon(run.firstPoint) : [],
+  };
 }
 
 async function runSteps(options: PilotOptions, cacheKey: string): Promise<Result<Steps>> {
+  const { networks } = options;
   const done: Steps = {
-    eventsPerReplicate: [],
+    eventsPerCycle: [],
+    eventsAtPoints: networks.map(() => 0),
     cutReplicateEvents: null,
+    isCut: false,
+    events: 0,
     seconds: 0,
-    secondsPerReplicate: 0,
+    secondsPerCycle: 0,
     kernel: '',
-    summary: null,
+    firstPoint: null,
   };
-  let events = 0;
   const outOfTime = AbortSignal.timeout(limits.pilotSeconds * 1000);
-  for (const replicateCount of steps) {
-    const budget = limits.pilotEvents - events;
-    const answer = await runStep(options, cacheKey, done.eventsPerReplicate.length, replicateCount, budget, outOfTime);
+  for (const step of steps) {
+    if (done.eventsPerCycle.length * networks.length >= limits.pilotReplicatesMinimum) break;
+    const replicateCount = Math.max(steps[0]!, Math.ceil(step / networks.length));
+    const budget = limits.pilotEvents - done.events;
+    const answer = await runStep(options, cacheKey, done.eventsPerCycle.length, replicateCount, budget, outOfTime);
     if (answer === null) break;
     done.kernel = answer.kernel;
-    const summary = decodeSummary(answer.summary);
-    if (done.summary === null) done.summary = summary;
-    else done.summary.merge(summary);
+    const [point] = answer.points;
+    if (point && done.firstPoint) done.firstPoint.merge(decodeSummary(point.summary));
+    else if (point) done.firstPoint = decodeSummary(point.summary);
     done.seconds += answer.seconds;
-    const ofStep = Array.from(answer.eventsPerReplicate);
-    done.eventsPerReplicate.push(...ofStep);
+    const ofStep = Array.from(eventsPerCycle(answer.points));
+    done.eventsPerCycle.push(...ofStep);
+    for (const [point, { eventsPerReplicate }] of answer.points.entries())
+      done.eventsAtPoints[point]! += eventsPerReplicate.reduce((sum, value) => sum + value, 0);
     const stepEvents = ofStep.reduce((sum, value) => sum + value, 0);
-    events += stepEvents;
-    if (ofStep.length > 0) done.secondsPerReplicate = answer.seconds / ofStep.length;
-    if (answer.failure) return failed(answer.failure, done.eventsPerReplicate.length);
+    done.events += stepEvents;
+    if (ofStep.length > 0) done.secondsPerCycle = answer.seconds / ofStep.length;
+    if (answer.failure) return failed(answer.failure, done.eventsPerCycle.length);
     if (answer.replicateCount < replicateCount) {
-      done.cutReplicateEvents = Math.max(0, budget - stepEvents);
+      done.isCut = true;
+      if (networks.length === 1) done.cutReplicateEvents = Math.max(0, budget - stepEvents);
       break;
     }
   }
-  if (done.eventsPerReplicate.length === 0)
-    return refuse(
-      'pilot_failed',
-      `Not one replicate ended within a pilot's ${limits.pilotEvents.toLocaleString('en')} events and ` +
-        `${limits.pilotSeconds} seconds, so no price can be given. Shorten the horizon, or check the model for growth without bound.`,
-    );
   return accept(done);
 }
 
@@ -154,13 +227,12 @@ async function runStep(
   try {
     return await executor().run(
       {
-        network: options.network,
+        networks: options.networks,
         horizon,
         gridIntervals,
         // Any fixed number will do: pilots have a stream of their own. This one makes equal requests equal.
         seed: BigInt(`0x${cacheKey.slice(0, 16)}`).toString(),
         purpose: 'pilot',
-        point: 0,
         firstReplicate,
         replicateCount,
         keptTraces: 0,
@@ -203,8 +275,8 @@ function atHorizon(summary: Summary): HorizonMean[] {
   });
 }
 
-async function remember(options: PilotOptions, cacheKey: string, run: Steps): Promise<Pilot> {
-  const summary = summarisePilot(run);
+async function remember(options: PilotOptions, cacheKey: string, run: PilotRunOutcome): Promise<Pilot> {
+  const { summary } = run;
   return inWriteTransaction(() =>
     Pilot.create({
       cacheKey,
@@ -212,14 +284,14 @@ async function remember(options: PilotOptions, cacheKey: string, run: Steps): Pr
       userId: options.userId,
       modelVersionId: options.modelVersionId,
       replicates: summary.replicates,
-      cutReplicates: run.cutReplicateEvents === null ? 0 : 1,
-      events: Math.round(summary.mean * summary.replicates),
+      cutReplicates: run.isCut ? 1 : 0,
+      events: run.events,
       mean: summary.mean,
       sd: summary.sd,
       seconds: run.seconds,
       secondsPerReplicate: run.secondsPerReplicate,
       kernel: run.kernel,
-      atHorizon: atHorizon(run.summary!),
+      atHorizon: run.atHorizon,
       engineVersion,
       createdAt: nowText(),
     }),

@@ -1,6 +1,7 @@
 /** Settles a computed batch: its file first, durably, then one transaction that marks it done and moves its charge. */
 import { afterCommit, inWriteTransaction } from '@db/in-write-transaction.ts';
 import { Batch, Job } from '@db/models/jobs.ts';
+import { eventsPerCycle } from '@/engine/run-points.ts';
 import type { RunBatchAnswer } from '@workers/protocol.ts';
 import { nowText } from '../clock.ts';
 import { advancePrefix, type Advance } from './advance-prefix.ts';
@@ -23,7 +24,7 @@ export async function settleBatch(options: {
   return inWriteTransaction(async () => {
     const job = (await Job.findByPk(jobId))!;
     const batch = (await Batch.findByPk(batchId))!;
-    const events = sum(answer.eventsPerReplicate);
+    const events = sum(eventsPerCycle(answer.points));
     if (batch.state === 'discarded') await batch.update({ absorbedEvents: events, seconds: answer.seconds });
     if (batch.state === 'planned')
       await batch.update({

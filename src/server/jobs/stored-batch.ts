@@ -1,7 +1,8 @@
 /** Gives the content of a batch that is in: from its file, or computed again when the file was lost or damaged. */
 import { Job, type Batch } from '@db/models/jobs.ts';
+import { eventsPerCycle } from '@/engine/run-points.ts';
 import { log } from '../log.ts';
-import { batchTask, networkOf } from './batch-task.ts';
+import { batchTask, networksOfJob } from './batch-task.ts';
 import { loadBatch, storeBatch, type BatchContent } from './batch-file.ts';
 import { executor } from './executor.ts';
 
@@ -18,13 +19,12 @@ export async function storedBatch(job: Job, batch: Batch): Promise<BatchContent>
   const content = await executor().run(
     batchTask({
       job,
-      network: await networkOf(job),
-      point: batch.point,
+      networks: await networksOfJob(job),
       firstReplicate: batch.firstReplicate,
       replicateCount: batch.completeReplicates,
     }),
   );
-  const events = content.eventsPerReplicate.reduce((sum, value) => sum + value, 0);
+  const events = eventsPerCycle(content.points).reduce((sum, value) => sum + value, 0);
   if (content.replicateCount !== batch.completeReplicates || events !== batch.events)
     throw new Error(`Batch ${batch.id} came out differently when computed again.`);
   await storeBatch({ jobId: job.id, name, content: { ...content, failure: batch.failure ?? null } });
