@@ -16,7 +16,7 @@ import { limits } from '@/domain/limits.ts';
 import { replicatesForMean } from '@/engine/statistics/replicates-needed.ts';
 import { normal95 } from '@/engine/statistics/wilson.ts';
 import { laneWords, timeWithUnit } from './job-words.ts';
-import { numberIn, type QuoteRequestBody } from './launch-settings.ts';
+import { numberIn, passageRequestOf, type QuoteRequestBody } from './launch-settings.ts';
 import type { NamedObservable, Results } from './results-data.ts';
 import { useQuote } from './use-quote.ts';
 
@@ -156,10 +156,14 @@ const requestFor = (job: JobDocument, replicates: number): QuoteRequestBody => (
   horizon: job.horizon,
   gridIntervals: job.gridIntervals,
   method: job.method,
+  ...(job.epsilon === null ? {} : { epsilon: job.epsilon }),
   lane: job.lane,
   seed: job.seed,
   overrides: job.overrides,
-  outputs: { keptTraces: job.keptTraces },
+  outputs: {
+    keptTraces: job.keptTraces,
+    ...(job.passages.length > 0 ? { passages: job.passages.map(passageRequestOf) } : {}),
+  },
 });
 
 interface Precision {

@@ -80,6 +80,11 @@ export function JobResults({ team, job, names, network }: Props) {
           So far, from the first {countText(results.replicates)} replicates. The figures follow the job.
         </p>
       )}
+      {job.method === 'leap' && (
+        <Notice still tone="caution" className="mb-4" title={`Approximate: tau-leaping, ε ${job.epsilon}`}>
+          The errors and intervals below are of sampling alone; what leaping shifts comes on top of them.
+        </Notice>
+      )}
       <Tabs
         label="Results"
         tabs={tabIds.map((id) => ({ id, ...contents[id] }))}

@@ -13,10 +13,11 @@ import type { ProblemDocument } from '@/contracts/errors.ts';
 import { launchJob } from '@/contracts/jobs.ts';
 import { readModel, readVersion } from '@/contracts/network.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
-import { lanes, type Lane } from '@/domain/pricing/price-book.ts';
+import { lanes, type Lane, type MethodFamily } from '@/domain/pricing/price-book.ts';
 import { paths } from '@/paths.ts';
 import { laneWords, rateText, timeWithUnit } from './job-words.ts';
 import { capOf, faultsOfProblem, numberIn, quoteRequestOf, type LaunchSettings } from './launch-settings.ts';
+import { MethodFields } from './MethodFields.tsx';
 import { OverridesTable } from './OverridesTable.tsx';
 import { PassageFields } from './PassageFields.tsx';
 import { QuotePanel } from './QuotePanel.tsx';
@@ -42,7 +43,7 @@ export interface LaunchFormProps {
   origin: string | null;
   projectCodes: { id: string; code: string; client: string }[];
   availableMicrocredits: number | null;
-  lanePrices: Record<Lane, number>;
+  lanePrices: Record<Lane, Record<MethodFamily, number>>;
 }
 
 export function LaunchForm(props: LaunchFormProps) {
@@ -170,6 +171,7 @@ function Form(props: LaunchFormProps) {
           horizon={settings.horizon}
           {...{ unit, faults, change }}
         />
+        <MethodFields {...{ settings, faults, change }} />
         <OverridesTable key={version.id} network={version.network} {...{ settings, faults, change }} />
         <section aria-labelledby="more-title" className="border-t border-rule pt-4">
           <h2 id="more-title" className="mb-3 text-lg font-semibold">
@@ -228,7 +230,7 @@ function Form(props: LaunchFormProps) {
           choices={lanes.map((lane) => ({
             value: lane,
             label: laneWords[lane].label,
-            hint: `${laneWords[lane].hint} · ${rateText(lanePrices[lane])}`,
+            hint: `${laneWords[lane].hint} · ${rateText(lanePrices[lane][settings.method])}`,
           }))}
           onChange={(lane) => change({ lane: lane as Lane })}
         />
@@ -242,6 +244,7 @@ function Form(props: LaunchFormProps) {
           launching={launch.pending}
           launchProblem={launch.problem}
           onCap={(text) => change({ cap: text })}
+          onExact={() => change({ method: 'exact' })}
           onLaunch={() => void launch.go().then((code) => code === 'quote_expired' && quoteState.askAgain())}
         />
       </div>

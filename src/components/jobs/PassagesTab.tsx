@@ -114,6 +114,7 @@ function Estimates({ passage, replicates, job }: { passage: Passage; replicates:
       </dl>
       <p className="mt-3 text-sm text-soft">
         A replicate that came to rest before passing counts as not passed by the horizon.
+        {job.method === 'leap' && ' Passages are resolved to the end of the leap in which they happened.'}
       </p>
     </>
   );

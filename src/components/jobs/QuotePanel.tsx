@@ -10,6 +10,7 @@ import type { QuoteDocument } from '@/contracts/jobs.ts';
 import { lanes } from '@/domain/pricing/price-book.ts';
 import { paths } from '@/paths.ts';
 import { laneWords, rateText } from './job-words.ts';
+import { MethodComparison } from './MethodComparison.tsx';
 import type { QuoteState } from './use-quote.ts';
 
 interface Props {
@@ -26,6 +27,8 @@ interface Props {
   launching: boolean;
   launchProblem: ProblemDocument | null;
   onCap: (cap: string) => void;
+  /** Wants the exact method instead. */
+  onExact: () => void;
   onLaunch: () => void;
 }
 
@@ -54,7 +57,9 @@ export function QuotePanel(props: Props) {
             : 'A pilot of real replicates is run to find the price. It costs nothing.'}
         </p>
       )}
-      {quote !== null && <QuoteFigures quote={quote} outdated={stale || asking} timeZone={timeZone} />}
+      {quote !== null && (
+        <QuoteFigures quote={quote} outdated={stale || asking} timeZone={timeZone} onExact={props.onExact} />
+      )}
       {problem !== null && (
         <ProblemNotice
           problem={problem}
@@ -120,12 +125,15 @@ export function QuotePanel(props: Props) {
       <p className="mt-3 text-xs text-soft">
         The pink line on the column shows where the credits would stand. Only events of complete replicates are charged;
         what is held and not used comes back.
+        {quote?.method === 'leap' &&
+          ' Of tau-leaping, each Poisson number drawn and each exact firing is an event, those of rejected leaps included.'}
       </p>
     </section>
   );
 }
 
-function QuoteFigures({ quote, outdated, timeZone }: { quote: QuoteDocument; outdated: boolean; timeZone: string }) {
+function QuoteFigures(props: { quote: QuoteDocument; outdated: boolean; timeZone: string; onExact: () => void }) {
+  const { quote, outdated, timeZone } = props;
   const { microcredits, eventsPerReplicate, pilot, secondsByLane } = quote;
   const events = valueWithError(
     eventsPerReplicate.mean,
@@ -172,6 +180,7 @@ function QuoteFigures({ quote, outdated, timeZone }: { quote: QuoteDocument; out
           <dd>{momentText(quote.expiresAt, timeZone)}</dd>
         </div>
       </dl>
+      {quote.comparison && <MethodComparison comparison={quote.comparison} quote={quote} onExact={props.onExact} />}
       {warnings.length > 0 && (
         <ul className="mt-3 list-disc pl-5 text-sm text-methyl">
           {warnings.slice(0, 5).map(({ path, message }) => (

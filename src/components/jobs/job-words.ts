@@ -21,8 +21,9 @@ export const timeWithUnit = (time: number, unit: string | null | undefined): str
   unit ? `${numberText(time, 6)} ${unit}` : numberText(time, 6);
 
 /** "exact method, direct kernel". */
-export function methodWords({ method, kernel }: Pick<JobDocument, 'method' | 'kernel'>): string {
-  const words = method === 'exact' ? 'exact method' : 'tau-leaping (approximate)';
+export function methodWords({ method, epsilon, kernel }: Pick<JobDocument, 'method' | 'epsilon' | 'kernel'>): string {
+  if (method === 'leap') return `tau-leaping, ε ${epsilon} (approximate)`;
+  const words = 'exact method';
   return kernel === null ? words : `${words}, ${kernel} kernel`;
 }
 

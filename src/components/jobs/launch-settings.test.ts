@@ -36,6 +36,17 @@ describe('the settings of a launch', () => {
     expect(Object.keys(faults).sort()).toEqual(['initialCounts.A', 'parameters.k', 'parameters.q']);
   });
 
+  it('ask for tau-leaping with its ε, and for no ε otherwise', () => {
+    const leap = quoteRequestOf({ ...settings, method: 'leap', epsilon: '0.05' }, version);
+    expect(leap).toMatchObject({ ok: true, request: { method: 'leap', epsilon: 0.05 } });
+    const exact = quoteRequestOf({ ...settings, epsilon: 'none' }, version);
+    expect(exact.ok && exact.request).not.toHaveProperty('epsilon');
+  });
+
+  it.each(['0', '-0.1', '0.6', '', 'small'])('refuse the ε %j', (epsilon) => {
+    expect(faultsOf({ method: 'leap', epsilon })).toHaveProperty('epsilon');
+  });
+
   it('leave out overrides that say nothing', () => {
     const read = quoteRequestOf({ ...settings, parameters: { k: ' ' } }, version);
     expect(read.ok && read.request).not.toHaveProperty('overrides');

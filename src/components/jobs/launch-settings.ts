@@ -4,7 +4,9 @@ import type { JobDocument, quoteRequest } from '@/contracts/jobs.ts';
 import { limits } from '@/domain/limits.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
 import { resolveNetwork } from '@/domain/network/resolve-network.ts';
-import type { Lane } from '@/domain/pricing/price-book.ts';
+import type { PassageInput } from '@/domain/jobs/job-inputs.ts';
+import { defaultEpsilon } from '@/domain/jobs/method-comparison.ts';
+import type { Lane, MethodFamily } from '@/domain/pricing/price-book.ts';
 
 export interface PassageSettings {
   observable: string;
@@ -29,6 +31,9 @@ export interface LaunchSettings {
   replicates: string;
   horizon: string;
   gridIntervals: string;
+  method: MethodFamily;
+  /** Of tau-leaping; kept while the exact method is chosen. */
+  epsilon: string;
   /** Empty: drawn by the server. */
   seed: string;
   keptTraces: string;
@@ -64,6 +69,8 @@ export const firstSettings = (network: NetworkDocument): LaunchSettings => ({
   replicates: '1000',
   horizon: firstHorizons[network.timeUnit ?? ''] ?? '100',
   gridIntervals: '100',
+  method: 'exact',
+  epsilon: String(defaultEpsilon),
   seed: '',
   keptTraces: '20',
   passages: [],
@@ -84,6 +91,8 @@ export const settingsOfJob = (job: JobDocument, keepSeed: boolean): LaunchSettin
   replicates: String(job.replicatesPlanned),
   horizon: String(job.horizon),
   gridIntervals: String(job.gridIntervals),
+  method: job.method,
+  epsilon: String(job.epsilon ?? defaultEpsilon),
   seed: keepSeed ? job.seed : '',
   keptTraces: String(job.keptTraces),
   stopping: stoppingSettingsOf(job),
@@ -139,6 +148,7 @@ export function quoteRequestOf(
   const horizon = numberIn(settings.horizon);
   const gridIntervals = numberIn(settings.gridIntervals);
   const keptTraces = numberIn(settings.keptTraces);
+  const epsilon = numberIn(settings.epsilon);
   const seed = settings.seed.replaceAll(/\s/g, '');
   const faults: FieldFaults = {};
   const check = (field: string, fault: string | null): void => {
@@ -147,6 +157,8 @@ export function quoteRequestOf(
   check('replicates', wholeFault(replicates, 1, limits.replicatesPerJob));
   check('horizon', Number.isNaN(horizon) ? 'Give a number.' : horizon <= 0 ? 'A horizon is above 0.' : null);
   check('gridIntervals', wholeFault(gridIntervals, 1, limits.gridIntervals));
+  if (settings.method === 'leap')
+    check('epsilon', epsilon > 0 && epsilon <= 0.5 ? null : 'Give a number above 0, at most 0.5.');
   check('keptTraces', wholeFault(keptTraces, 0, limits.keptTraces));
   if (seed !== '' && !(/^\d{1,20}$/.test(seed) && BigInt(seed) < 2n ** 64n)) {
     faults['seed'] = 'A seed is a whole number from 0 to 18,446,744,073,709,551,615.';
@@ -180,7 +192,8 @@ export function quoteRequestOf(
       replicates,
       horizon,
       gridIntervals,
-      method: 'exact',
+      method: settings.method,
+      ...(settings.method === 'leap' ? { epsilon } : {}),
       ...(stopping.kind === 'precision' ? { stopping: stoppingOf(stopping, version.network, horizon) } : {}),
       lane: settings.lane,
       ...(seed === '' ? {} : { seed }),
@@ -202,10 +215,12 @@ function stoppingOf(stopping: StoppingSettings, network: NetworkDocument, horizo
     : { ...target, absolute: halfWidth };
 }
 
-const passageOf = ({ observable, direction, threshold }: PassageSettings) =>
-  direction === 'rises_to'
-    ? { observable, risesTo: numberIn(threshold) }
-    : { observable, fallsTo: numberIn(threshold) };
+const passageOf = (passage: PassageSettings) =>
+  passageRequestOf({ ...passage, threshold: numberIn(passage.threshold) });
+
+/** A passage as requests write it. */
+export const passageRequestOf = ({ observable, direction, threshold }: PassageInput) =>
+  direction === 'rises_to' ? { observable, risesTo: threshold } : { observable, fallsTo: threshold };
 
 /** Numbers of the filled cells; a text that is no number becomes NaN, which the network's checks name. */
 const filled = (cells: Record<string, string>): Record<string, number> =>
