@@ -43,6 +43,7 @@ export const paths = {
   operateInvoices: '/operate/invoices',
   operateInvoice: (invoice: string) => `/operate/invoices/${invoice}`,
   operateTransfers: '/operate/transfers',
+  operateDisputes: '/operate/disputes',
   operateCredits: '/operate/credits',
   operatePriceBook: '/operate/price-book',
   operateActs: '/operate/acts',

@@ -4,6 +4,7 @@ import { limits } from '@/domain/limits.ts';
 import { automaticTopUpContracts } from './automatic-top-up.ts';
 import { cardContracts } from './cards.ts';
 import { contract } from './contract.ts';
+import { disputeContracts } from './disputes.ts';
 import { invoiceContracts } from './invoices.ts';
 import { pageQuery } from './page.ts';
 import { proFormaContracts } from './pro-formas.ts';
@@ -13,6 +14,7 @@ import { topUp } from './top-up.ts';
 
 export * from './automatic-top-up.ts';
 export * from './cards.ts';
+export * from './disputes.ts';
 export * from './invoices.ts';
 export * from './pro-formas.ts';
 export * from './refunds.ts';
@@ -164,5 +166,6 @@ export const billingContracts = [
   ...refundContracts,
   ...cardContracts,
   ...automaticTopUpContracts,
+  ...disputeContracts,
   receivePaymentEvent,
 ];

@@ -328,6 +328,7 @@ export const launchJob = contract({
   answers: [{ status: 201, description: 'Queued', schema: oneJob }],
   refusals: [
     ...launching,
+    'payment_owed',
     'quote_expired',
     'quote_used',
     'cap_too_low',
@@ -403,6 +404,7 @@ export const extendJob = contract({
   answers: [{ status: 200, description: 'Queued again', schema: oneJob }],
   refusals: [
     ...launching,
+    'payment_owed',
     'job_not_finished',
     'quote_expired',
     'quote_used',

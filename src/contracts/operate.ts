@@ -22,6 +22,8 @@ export const books = z.object({
     /** Net money received for what is bought and unspent: not earned yet. */
     unearned: z.array(money),
   }),
+  /** Tax included: what banks dispute now, what teams owe after lost disputes, and what was written off of it. */
+  disputes: z.object({ open: z.array(money), owed: z.array(money), writtenOff: z.array(money) }),
   /** Net money of lots as they are drawn: floor(net × drawn / credits), cumulative, so that months add up to the net paid. */
   months: z.array(
     z.object({
@@ -194,6 +196,8 @@ export const operatorActKinds = [
   'mark_transfer_received',
   'answer_invoice',
   'refund_purchase',
+  'settle_receivable',
+  'write_off_receivable',
 ] as const;
 
 export const operatorAct = z.object({

@@ -33,4 +33,40 @@ export const refundPurchase = contract({
   idempotency: 'service',
 });
 
-export const refundContracts = [refundPurchase];
+/** `by_transfer`: we pay by hand; `taken`: the bank has the money already. */
+export const returnStates = ['pending', 'sent', 'failed', 'by_transfer', 'taken'] as const;
+
+export const refundable = z.object({
+  /** Neither spent, held nor disputed. */
+  refundableMicrocredits: z.number().int(),
+  remainingMicrocredits: z.number().int(),
+  disputed: z.boolean(),
+  /** Oldest first. */
+  returns: z.array(
+    z.object({
+      id: z.string(),
+      cause: z.enum(['refund', 'dispute']),
+      state: z.enum(returnStates),
+      amountMicrocredits: z.number().int(),
+      total: money,
+      creditNoteNumber: z.string(),
+      reason: z.string(),
+      createdAt: z.string(),
+      problem: z.string().nullable(),
+    }),
+  ),
+});
+export type Refundable = z.infer<typeof refundable>;
+
+export const readRefundable = contract({
+  id: 'readRefundable',
+  feature: 'billing',
+  method: 'GET',
+  path: '/api/v1/operate/invoices/{invoice}/refunds',
+  summary: 'What of an invoice can be refunded now, and what has been',
+  access: { kind: 'operator' },
+  answers: [{ status: 200, description: 'Refunds', schema: refundable }],
+  refusals: ['not_signed_in', 'not_found'],
+});
+
+export const refundContracts = [refundPurchase, readRefundable];

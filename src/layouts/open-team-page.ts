@@ -10,6 +10,7 @@ import type { AstroGlobal } from 'astro';
 import { paths } from '@/paths.ts';
 import { mayDo, type Permission, type Role } from '@/domain/teams/permissions.ts';
 import { readAccount } from '@/server/auth/read-account.ts';
+import { readStanding, type Standing } from '@/server/billing/read-standing.ts';
 import { readBalance } from '@/server/ledger/read-balance.ts';
 import { authorise } from '@/server/teams/authorise.ts';
 
@@ -20,6 +21,7 @@ export interface TeamShell {
   roles: readonly Role[];
   may: (permission: Permission) => boolean;
   balance: { availableMicrocredits: number; heldMicrocredits: number } | null;
+  standing: Standing;
 }
 type Opened = { shell: TeamShell; refused?: undefined } | { shell?: undefined; refused: Response };
 
@@ -46,6 +48,7 @@ export async function openTeamPage(page: AstroGlobal, permission: Permission): P
       person: { name: person.name, email: person.email },
       roles,
       may: (wanted) => mayDo(roles, wanted),
+      standing: await readStanding(team.id),
       balance: balance && { availableMicrocredits: balance.available, heldMicrocredits: balance.held },
     },
   };

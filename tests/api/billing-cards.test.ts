@@ -1,5 +1,5 @@
 /** Saved cards and automatic top-ups through the whole house: API, SDK, fake, signed webhooks, ledger, letters. */
-import { afterEach, beforeEach, describe, expect, it, vi } from 'vitest';
+import { afterAll, afterEach, beforeEach, describe, expect, it, vi } from 'vitest';
 import { QueryTypes } from 'sequelize';
 import { database } from '@db/connection.ts';
 import { Invoice, TopUp } from '@db/models/billing.ts';
@@ -35,6 +35,10 @@ beforeEach(async () => {
 afterEach(() => {
   Object.assign(payment.store.state.switches, calm);
   setClock(null);
+});
+// What is still being delivered needs the database.
+afterAll(async () => {
+  await vi.waitFor(() => expect(payment.store.state.deliveries).toEqual([]), { timeout: 10_000 });
 });
 
 const api = (path: string) => `/api/v1/teams/${mine.team.slug}/${path}`;
@@ -275,8 +279,9 @@ describe('automatic top-up', () => {
     async (when) => {
       await save(cards.accepted);
       await set();
-      Object.assign(payment.store.state.switches, { hangNext: 2, lose: 100 });
+      Object.assign(payment.store.state.switches, { hangNext: 100, lose: 100 });
       await runAutomaticTopUps();
+      payment.store.state.switches.hangNext = 0;
       expect((await attempts()).map(({ state }) => state)).toEqual(['pending']);
       expect(charges()).toHaveLength(1);
       if (when !== 'within the day') {
@@ -294,8 +299,9 @@ describe('automatic top-up', () => {
   it('that never reached the service expires, and the next one begins', async () => {
     await save(cards.accepted);
     await set();
-    payment.store.state.switches.failNext = 2;
+    payment.store.state.switches.failNext = 100;
     await runAutomaticTopUps();
+    payment.store.state.switches.failNext = 0;
     const later = nowMs() + 25 * 3600 * 1000;
     setClock(() => later);
     await reconcileTopUps({ which: 'all' });
@@ -307,8 +313,9 @@ describe('automatic top-up', () => {
   it('issues nothing for a payment of another amount, currency, customer, team or top-up', async () => {
     await save(cards.accepted);
     await set();
-    Object.assign(payment.store.state.switches, { hangNext: 2, lose: 100 });
+    Object.assign(payment.store.state.switches, { hangNext: 100, lose: 100 });
     await runAutomaticTopUps();
+    payment.store.state.switches.hangNext = 0;
     const [charge] = charges();
     const before = await available();
     for (const change of [

@@ -148,6 +148,9 @@ export const cases: Record<string, Case> = {
   readQuestionedInvoice: plain,
   answerInvoice: { body: { body: 'It is the order of May.' } },
   listOperatorActs: plain,
+  readRefundable: plain,
+  listDisputes: plain,
+  decideReceivable: { body: { outcome: 'settled', reason: 'Paid.' } },
   refundPurchase: { body: { reason: 'Asked for.' } },
   receivePaymentEvent: { body: '{}', contentType: 'application/json' },
 };

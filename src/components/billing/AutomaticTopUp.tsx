@@ -9,7 +9,7 @@ import { readAutomaticTopUp, type AutomaticTopUpDocument } from '@/contracts/bil
 import type { CreditPack } from '@/domain/pricing/price-book.ts';
 import { paths } from '@/paths.ts';
 import { AutomaticTopUpForm } from './AutomaticTopUpForm.tsx';
-import { attemptWords, automaticWords } from './automatic-words.ts';
+import { attemptWords, automaticWords, topUpIsDue } from './automatic-words.ts';
 import { SavedCard } from './SavedCard.tsx';
 
 const refreshMs = 1_500;
@@ -26,9 +26,7 @@ export interface AutomaticTopUpProps {
 export function AutomaticTopUp({ team, initial, packs, returned, mayChange }: AutomaticTopUpProps) {
   const [present, setPresent] = useState(initial);
   const { tone, title, words } = automaticWords(present);
-  const waiting =
-    (returned && present.openPageUrl !== null) ||
-    present.attempts.some(({ state }) => state === 'pending' || state === 'processing');
+  const waiting = (returned && present.openPageUrl !== null) || topUpIsDue(present);
 
   async function read(): Promise<void> {
     const called = await callApi(readAutomaticTopUp, { path: { team } });

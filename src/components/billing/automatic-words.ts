@@ -10,11 +10,24 @@ export interface AutomaticWords {
   words: string;
 }
 
+/** One is under way, or begins in a moment. */
+export function topUpIsDue({
+  state,
+  settings,
+  ceilingReached,
+  availableMicrocredits,
+  attempts,
+}: AutomaticTopUpDocument) {
+  const open = attempts.some((each) => each.state === 'pending' || each.state === 'processing');
+  const low = settings !== null && availableMicrocredits < settings.thresholdMicrocredits;
+  return open || (state === 'on' && low && !ceilingReached);
+}
+
 const written = (money: { amountMinor: number; currency: string } | null): string =>
   money ? moneyText(money.amountMinor, money.currency) : '–';
 
 export function automaticWords(document: AutomaticTopUpDocument): AutomaticWords {
-  const { state, settings, problem, nextTotal, spentThisMonth, ceilingReached, attempts } = document;
+  const { state, settings, problem, nextTotal, spentThisMonth, ceilingReached } = document;
   if (state === 'unset' || !settings)
     return {
       tone: 'over',
@@ -29,8 +42,7 @@ export function automaticWords(document: AutomaticTopUpDocument): AutomaticWords
       words: `${problem ?? ''} Save another card or change the settings, then switch it on again.`.trim(),
     };
   const { pack, thresholdMicrocredits, monthlyCeiling } = settings;
-  const under = attempts.some((each) => each.state === 'pending' || each.state === 'processing');
-  if (under)
+  if (topUpIsDue(document))
     return {
       tone: 'working',
       title: 'A top-up is under way',

@@ -7,6 +7,8 @@ const words: Record<string, string> = {
   mark_transfer_received: 'Transfer marked received',
   answer_invoice: 'Invoice answered',
   refund_purchase: 'Purchase refunded',
+  settle_receivable: 'Receivable settled',
+  write_off_receivable: 'Receivable written off',
 };
 
 /** An act that is not in the list is shown by its stored name. */

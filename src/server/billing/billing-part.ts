@@ -6,6 +6,7 @@ import { log } from '../log.ts';
 import type { Part } from '../part.ts';
 import { forgetCards } from './discard-card.ts';
 import { reconcileCardSetups } from './reconcile-card-setups.ts';
+import { findUnheardDisputes, reconcileDisputes } from './reconcile-disputes.ts';
 import { reconcileTopUps } from './reconcile-top-ups.ts';
 import { remindProFormas } from './remind-pro-formas.ts';
 import { sendOpenRefunds } from './send-refund.ts';
@@ -48,6 +49,7 @@ export const billingPart: Part = {
       await run('billing round', async () => {
         await reconcileTopUps();
         await reconcileCardSetups();
+        await reconcileDisputes();
         await runAutomaticTopUps();
         await forgetCards();
         await sendOpenRefunds();
@@ -57,6 +59,7 @@ export const billingPart: Part = {
     };
     const hourly = async (): Promise<void> => {
       await run('reminders of pro-formas', remindProFormas);
+      await run('disputes that no event told of', findUnheardDisputes);
     };
     const nightly = async (): Promise<void> => {
       await run('ledger verification', () => watchLedger({ full: true }));

@@ -4,6 +4,7 @@ import { PaymentEvent } from '@db/models/billing.ts';
 import type { Result } from '@/domain/refusals.ts';
 import { log } from '../log.ts';
 import { refreshCardSetup } from './refresh-card-setup.ts';
+import { refreshDispute } from './refresh-dispute.ts';
 import { refreshTopUp } from './refresh-top-up.ts';
 
 /** Leaves the event open when the payment service cannot be asked; the billing part tries again. Never throws. */
@@ -22,7 +23,8 @@ export async function handlePaymentEvent(eventId: string): Promise<void> {
   );
 }
 
-function lookAt({ topUpId, cardSetupId }: PaymentEvent): Promise<Result<string>> | null {
+function lookAt({ topUpId, cardSetupId, disputeId }: PaymentEvent): Promise<Result<string>> | null {
+  if (disputeId) return refreshDispute(disputeId);
   if (topUpId) return refreshTopUp(topUpId);
   return cardSetupId ? refreshCardSetup(cardSetupId) : null;
 }

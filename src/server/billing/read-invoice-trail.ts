@@ -1,10 +1,11 @@
 /** What happened to an invoice, step by step, and where the credits that it bought went. */
 import { QueryTypes } from 'sequelize';
 import { database } from '@db/connection.ts';
-import { Invoice, InvoiceReceipt, ProForma, TopUp } from '@db/models/billing.ts';
+import { CreditReturn, Invoice, InvoiceReceipt, ProForma, TopUp } from '@db/models/billing.ts';
+import { Dispute, Receivable } from '@db/models/cards.ts';
 import { Lot } from '@db/models/ledger.ts';
 import type { InvoiceTrail } from '@/contracts/invoices.ts';
-import { dayText } from '@/domain/billing/money-text.ts';
+import { dayText, moneyText } from '@/domain/billing/money-text.ts';
 import { limits } from '@/domain/limits.ts';
 import { accept, type Result } from '@/domain/refusals.ts';
 import type { Actor } from '@/domain/teams/actor.ts';
@@ -37,6 +38,9 @@ async function timelineOf(invoice: Invoice): Promise<InvoiceTrail['timeline']> {
   const proForma = invoice.proFormaId ? await ProForma.findByPk(invoice.proFormaId) : null;
   const receipt = await InvoiceReceipt.findByPk(invoice.id);
   const corrections = await Invoice.findAll({ where: { correctsInvoiceId: invoice.id }, order: [['id', 'ASC']] });
+  const disputes = await Dispute.findAll({ where: { invoiceId: invoice.id }, order: [['openedAt', 'ASC']] });
+  const owed = await Receivable.findAll({ where: { invoiceId: invoice.id }, order: [['id', 'ASC']] });
+  const returns = await CreditReturn.findAll({ where: { invoiceId: invoice.id, state: 'sent' } });
   const corrected = invoice.correctsInvoiceId ? await Invoice.findByPk(invoice.correctsInvoiceId) : null;
   const word = invoice.kind === 'invoice' ? 'Invoice' : 'Credit note';
   const steps = [
@@ -51,11 +55,39 @@ async function timelineOf(invoice: Invoice): Promise<InvoiceTrail['timeline']> {
     },
     { at: invoice.issuedAt, words: corrected ? `${word} issued, correcting ${corrected.number}` : `${word} issued` },
     receipt && { at: receipt.queuedAt, words: 'Receipt sent by e-mail' },
+    ...disputes.flatMap(disputeSteps),
     ...corrections.map(({ issuedAt, number }) => ({ at: issuedAt, words: `Corrected by credit note ${number}` })),
+    ...returns.map(({ sentAt, totalMinor, currency }) => ({
+      at: sentAt ?? '',
+      words: `${moneyText(totalMinor, currency)} sent back`,
+    })),
+    ...owed.flatMap(receivableSteps),
   ];
   // A stable sort: what happened in one instant stays in the order above.
   return steps.flatMap((step) => step || []).sort((one, other) => (one.at < other.at ? -1 : one.at > other.at ? 1 : 0));
 }
+
+const disputeSteps = ({ openedAt, decidedAt, state, totalMinor, currency }: Dispute) => [
+  { at: openedAt, words: `The bank disputes ${moneyText(totalMinor, currency)}; unused credits are frozen` },
+  decidedAt && {
+    at: decidedAt,
+    words:
+      state === 'won'
+        ? 'Dispute won: frozen credits can be used again'
+        : `Dispute lost: the bank took ${moneyText(totalMinor, currency)} back`,
+  },
+];
+
+const receivableSteps = ({ createdAt, decidedAt, state, totalMinor, currency, reason }: Receivable) => [
+  {
+    at: createdAt,
+    words: `${state === 'open' ? `${moneyText(totalMinor, currency)} of it are owed for what was spent` : 'What was spent of it is owed'}; launching is suspended`,
+  },
+  decidedAt && {
+    at: decidedAt,
+    words: `${state === 'settled' ? 'What was owed is settled' : 'What was owed is written off'}: ${reason ?? ''}`,
+  },
+];
 
 async function presentLot(lot: Lot): Promise<NonNullable<InvoiceTrail['lot']>> {
   const [drawn] = await database().query<{ spent: number | null; returned: number | null }>(

@@ -17,19 +17,20 @@ export async function receivePaymentEvent(options: {
 }): Promise<Result<{ received: true }>> {
   const event = readEvent(options.body, options.signature);
   if (!event.ok) return event;
-  const { id, type, objectId, sessionId, topUpId } = event.value;
+  const { id, type, objectId, sessionId, topUpId, disputeId } = event.value;
   const isNew = await inWriteTransaction(async () => {
     if (await PaymentEvent.findByPk(id, { attributes: ['id'] })) return false;
     const bySession = sessionId ? await TopUp.findOne({ where: { sessionId }, attributes: ['id'] }) : null;
     const named = !bySession && topUpId ? await TopUp.findByPk(topUpId, { attributes: ['id'] }) : null;
     const setup = sessionId ? await CardSetup.findOne({ where: { sessionId }, attributes: ['id'] }) : null;
-    const known = bySession !== null || named !== null || setup !== null;
+    const known = bySession !== null || named !== null || setup !== null || disputeId !== null;
     await PaymentEvent.create({
       id,
       type,
       objectId,
       topUpId: bySession?.id ?? named?.id ?? null,
       cardSetupId: setup?.id ?? null,
+      disputeId,
       receivedAt: nowText(),
       state: known ? 'recorded' : 'ignored',
       outcome: known ? null : 'concerns nothing of ours',

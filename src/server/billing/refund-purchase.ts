@@ -7,9 +7,8 @@ import { recordAct } from '../operate/record-act.ts';
 import { requireOperator } from '../operate/require-operator.ts';
 import { answerOnce, type Idempotency } from '../http/answer-once.ts';
 import { newId } from '../ids.ts';
-import { readBalance } from '../ledger/read-balance.ts';
-import { readOpenLots } from '../ledger/read-open-lots.ts';
 import { refundLot } from '../ledger/refund-lot.ts';
+import { findRefundable } from './find-refundable.ts';
 import { issueCreditNote } from './issue-credit-note.ts';
 import { sendRefund } from './send-refund.ts';
 
@@ -47,11 +46,10 @@ async function takeBack(options: RefundPurchase, userId: string | null): Promise
   const invoice = await Invoice.findOne({ where: { id: invoiceId, kind: 'invoice' } });
   if (!invoice) return refuse('not_found', 'There is no such invoice.');
   const { teamId } = invoice;
-  const purchaseId = invoice.topUpId ?? invoice.proFormaId;
-  const lot = (await readOpenLots(teamId)).find((each) => each.purchaseId === purchaseId);
-  const { available } = await readBalance(teamId);
-  const free = lot ? Math.min(available, lot.remainingMicrocredits - lot.frozenMicrocredits) : 0;
-  const amountMicrocredits = options.amountMicrocredits ?? free;
+  const { lot, freeMicrocredits, disputed } = await findRefundable(invoice);
+  if (disputed)
+    return refuse('insufficient_credits', 'This payment is disputed: the bank gives the money back, not we.');
+  const amountMicrocredits = options.amountMicrocredits ?? freeMicrocredits;
   if (!lot || amountMicrocredits === 0)
     return refuse(
       'insufficient_credits',

@@ -11,6 +11,7 @@ import { nowText } from '../clock.ts';
 import { newId } from '../ids.ts';
 import { readBalance } from '../ledger/read-balance.ts';
 import { log } from '../log.ts';
+import { checkNothingOwed } from './check-nothing-owed.ts';
 import { pricePurchase } from './price-purchase.ts';
 import { readAutomaticSpending } from './read-automatic-spending.ts';
 import { refreshTopUp } from './refresh-top-up.ts';
@@ -56,6 +57,7 @@ async function begin(teamId: string): Promise<TopUp | null> {
     const card = await SavedCard.findOne({ where: { teamId, removedAt: null } });
     const customer = await PaymentCustomer.findByPk(teamId);
     if (setting?.state !== 'on' || !team || team.suspendedAt || !card || !customer?.customerId) return null;
+    if (!(await checkNothingOwed(teamId)).ok) return null;
     if (await TopUp.findOne({ where: { teamId, way: 'automatic', state: ['pending', 'processing'] } })) return null;
     const { pack, monthlyCeilingMinor, thresholdMicrocredits } = setting;
     const currency = setting.currency as Currency;

@@ -9,6 +9,7 @@ import { limits } from '@/domain/limits.ts';
 import { accept, refuse, type Result } from '@/domain/refusals.ts';
 import type { Actor } from '@/domain/teams/actor.ts';
 import { engineVersion } from '@/engine/engine-version.ts';
+import { checkNothingOwed } from '../billing/check-nothing-owed.ts';
 import { authorise } from '../teams/authorise.ts';
 import { findJob } from './find-job.ts';
 import { announceJobChange, wakeDispatcher } from './job-changes.ts';
@@ -28,6 +29,8 @@ export async function extendJob(options: {
   const { team, userId } = authorised.value;
   if (userId === null) return refuse('forbidden', 'Jobs are extended by people.');
   return inWriteTransaction(async () => {
+    const nothingOwed = await checkNothingOwed(team.id);
+    if (!nothingOwed.ok) return nothingOwed;
     const found = await findJob({ teamId: team.id, job: options.job });
     if (!found.ok) return found;
     const job = found.value;

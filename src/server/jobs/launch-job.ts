@@ -9,6 +9,7 @@ import { accept, refuse, type Result } from '@/domain/refusals.ts';
 import type { Actor } from '@/domain/teams/actor.ts';
 import { engineVersion } from '@/engine/engine-version.ts';
 import { nowText } from '../clock.ts';
+import { checkNothingOwed } from '../billing/check-nothing-owed.ts';
 import { newId } from '../ids.ts';
 import { authorise } from '../teams/authorise.ts';
 import { announceJobChange, wakeDispatcher } from './job-changes.ts';
@@ -29,6 +30,8 @@ export async function launchJob(options: {
   const { team, userId } = authorised.value;
   if (userId === null) return refuse('forbidden', 'Jobs are launched by people.');
   return inWriteTransaction(async () => {
+    const nothingOwed = await checkNothingOwed(team.id);
+    if (!nothingOwed.ok) return nothingOwed;
     const quote = await findOpenQuote({ teamId: team.id, quoteId: options.quoteId });
     if (!quote.ok) return quote;
     const open = await checkOpenJobs(team.id);

@@ -6,20 +6,25 @@ import { moveLot } from '@/domain/ledger/lots.ts';
 import { postTransaction } from './post-transaction.ts';
 import { readOpenLots } from './read-open-lots.ts';
 
-/** A dispute is decided once; deciding again changes nothing. Joins the caller's write transaction. */
+/**
+ * A dispute is decided once; deciding again changes nothing, but on another `occasion` (a job gives credits back after
+ * the loss). Absent amount: all that is frozen of the lot. Joins the caller's write transaction.
+ */
 export async function decideFrozenLot(options: {
   teamId: string;
   lotId: string;
   disputeId: string;
   outcome: 'won' | 'lost';
+  amountMicrocredits?: number;
+  occasion?: string;
 }): Promise<{ movedMicrocredits: number }> {
-  const { teamId, lotId, disputeId, outcome } = options;
-  const transactionKey = `decide:${disputeId}`;
+  const { teamId, lotId, disputeId, outcome, occasion } = options;
+  const transactionKey = `decide:${disputeId}${occasion ? `:${occasion}` : ''}`;
   return inWriteTransaction(async () => {
     if (await LedgerTransaction.findOne({ where: { transactionKey }, attributes: ['id'] }))
       return { movedMicrocredits: 0 };
     const lot = (await readOpenLots(teamId)).find(({ id }) => id === lotId);
-    const amount = lot?.frozenMicrocredits ?? 0;
+    const amount = options.amountMicrocredits ?? lot?.frozenMicrocredits ?? 0;
     if (!lot || amount === 0) return { movedMicrocredits: 0 };
     const won = outcome === 'won';
     await postTransaction({

@@ -1,6 +1,7 @@
 /** Gives back what a charge segment holds and will not spend: held → available. */
 import { inWriteTransaction } from '@db/in-write-transaction.ts';
 import { flows } from '@/domain/ledger/flows.ts';
+import { freezeReleased } from '../billing/freeze-released.ts';
 import { findTransaction } from './find-transaction.ts';
 import { postTransaction } from './post-transaction.ts';
 import { readSegment } from './read-segment.ts';
@@ -15,7 +16,10 @@ export interface ReleaseHold {
   releaseId: string;
 }
 
-/** Throws when the segment holds less than the amount. Releasing nothing writes nothing. Joins the caller's write transaction. */
+/**
+ * Throws when the segment holds less than the amount. Releasing nothing writes nothing. What comes back while a payment
+ * is disputed is frozen at once. Joins the caller's write transaction.
+ */
 export async function releaseHold(options: ReleaseHold): Promise<{ releasedMicrocredits: number }> {
   const { teamId, jobId, segmentId, releaseId } = options;
   const transactionKey = `release:${releaseId}`;
@@ -46,6 +50,7 @@ export async function releaseHold(options: ReleaseHold): Promise<{ releasedMicro
       },
       postings: flows.release(teamId, amountMicrocredits),
     });
+    await freezeReleased({ teamId, releasedMicrocredits: amountMicrocredits, occasion: transactionKey });
     return { releasedMicrocredits: amountMicrocredits };
   });
 }

@@ -16,7 +16,7 @@ const signed = (column: string) => `CASE kind WHEN 'credit_note' THEN -${column}
 export async function readBooks(options: { actor: Actor }): Promise<Result<{ books: Books }>> {
   const operator = requireOperator(options.actor);
   if (!operator.ok) return operator;
-  const [lots, drawn, flows, absorbed, invoiced, taxes] = await Promise.all([
+  const [lots, drawn, flows, absorbed, invoiced, taxes, disputes, receivables] = await Promise.all([
     readLots(),
     select<LotMonth>(
       `SELECT lots.id AS lotId, substr(occurredAt, 1, 7) AS month, sum(lotDraws.amountMicrocredits) AS drawnMicrocredits,
@@ -54,6 +54,12 @@ export async function readBooks(options: { actor: Actor }): Promise<Result<{ boo
          sum(${signed(`(item.value ->> 'baseMinor')`)}) AS base, sum(${signed(`(item.value ->> 'taxMinor')`)}) AS tax
        FROM invoices, json_each(taxes) AS item GROUP BY 1, 2, 3, 4, 5 ORDER BY 1 DESC, 2, 3`,
     ),
+    select<StateMoney>(
+      `SELECT state, currency, sum(totalMinor) AS amountMinor FROM disputes GROUP BY state, currency ORDER BY currency`,
+    ),
+    select<StateMoney>(
+      `SELECT state, currency, sum(totalMinor) AS amountMinor FROM receivables GROUP BY state, currency ORDER BY currency`,
+    ),
   ]);
   const earned = earnedByMonth(drawn);
   const months = [...new Set([...earned, ...flows, ...absorbed, ...invoiced].map(({ month }) => month))]
@@ -65,6 +71,11 @@ export async function readBooks(options: { actor: Actor }): Promise<Result<{ boo
   return accept({
     books: {
       owed: owedOf(lots, invoiced, earned),
+      disputes: {
+        open: disputes.filter(({ state }) => state === 'open').map(money),
+        owed: receivables.filter(({ state }) => state === 'open').map(money),
+        writtenOff: receivables.filter(({ state }) => state === 'written_off').map(money),
+      },
       months: months.map((month) => {
         const lost = absorbed.find((each) => each.month === month);
         return {
@@ -87,6 +98,12 @@ export async function readBooks(options: { actor: Actor }): Promise<Result<{ boo
       })),
     },
   });
+}
+
+interface StateMoney {
+  state: string;
+  currency: string;
+  amountMinor: number;
 }
 
 interface LotSum {
