@@ -5,6 +5,8 @@ import type { FakeEvent, Store } from './state.ts';
 const signer = new Stripe('local-fake-key');
 const firstRetryMs = 400;
 const attemptsAtMost = 12;
+/** With reordering, events wait this long for later ones. */
+const reorderMs = 250;
 
 export class Webhooks {
   #timer: NodeJS.Timeout | undefined;
@@ -34,7 +36,7 @@ export class Webhooks {
     const { switches } = state;
     if (switches.lose > 0) switches.lose -= 1;
     else {
-      const wait = switches.delayMs + (switches.reorder ? 250 : 0);
+      const wait = switches.delayMs + (switches.reorder ? reorderMs : 0);
       for (let copy = 0; copy <= switches.duplicate; copy += 1)
         state.deliveries.push({ eventId: event.id, attempts: 0, dueAtMs: Date.now() + wait });
     }
@@ -64,7 +66,9 @@ export class Webhooks {
   async #send(): Promise<void> {
     this.#sending = true;
     const { state } = this.store;
-    const due = state.deliveries.filter(({ dueAtMs }) => dueAtMs <= Date.now());
+    // What came within one pause goes together, so that there is something to reverse.
+    const horizonMs = Date.now() + (state.switches.reorder ? reorderMs : 0);
+    const due = state.deliveries.filter(({ dueAtMs }) => dueAtMs <= horizonMs);
     if (state.switches.reorder) due.reverse();
     for (const delivery of due) {
       const event = state.events.find(({ id }) => id === delivery.eventId);
