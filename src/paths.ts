@@ -38,6 +38,7 @@ export const paths = {
   proFormas: (team: string) => `/t/${team}/billing/pro-formas`,
   projectCodes: (team: string) => `/t/${team}/team/project-codes`,
   tokens: (team: string) => `/t/${team}/team/tokens`,
+  webhooks: (team: string) => `/t/${team}/team/webhooks`,
   operate: '/operate',
   operateBooks: '/operate/books',
   operateInvoices: '/operate/invoices',

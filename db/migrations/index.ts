@@ -10,6 +10,7 @@ import { finance } from './0007-finance.ts';
 import { creditReturns } from './0008-credit-returns.ts';
 import { cardsAndDisputes } from './0009-cards-and-disputes.ts';
 import { pilotMeans } from './0010-pilot-means.ts';
+import { webhooks } from './0020-webhooks.ts';
 
 export const migrations: Migration[] = [
   people,
@@ -22,4 +23,5 @@ export const migrations: Migration[] = [
   creditReturns,
   cardsAndDisputes,
   pilotMeans,
+  webhooks,
 ];

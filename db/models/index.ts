@@ -8,6 +8,7 @@ import { defineLedger } from './ledger.ts';
 import { defineNetworkModels } from './models.ts';
 import { definePeople } from './people.ts';
 import { defineTeams } from './teams.ts';
+import { defineWebhooks } from './webhooks.ts';
 
 export function defineModels(sequelize: Sequelize): void {
   definePeople(sequelize);
@@ -18,4 +19,5 @@ export function defineModels(sequelize: Sequelize): void {
   defineNetworkModels(sequelize);
   defineJobs(sequelize);
   defineFinance(sequelize);
+  defineWebhooks(sequelize);
 }

@@ -24,7 +24,7 @@ export interface Answer {
 export interface Contract {
   /** Unique, camelCase: OpenAPI's operationId. */
   id: string;
-  /** The feature word: network, jobs, ledger, billing, teams, archives, auth, system. */
+  /** The feature word: network, jobs, ledger, billing, teams, webhooks, archives, auth, system. */
   feature: string;
   method: 'GET' | 'POST' | 'PUT' | 'PATCH' | 'DELETE';
   /** `/api/v1/teams/{team}/jobs/{job}` */

@@ -12,11 +12,13 @@ import { operateContracts } from './operate.ts';
 import { statementContracts } from './statements.ts';
 import { systemContracts } from './system.ts';
 import { teamContracts } from './teams.ts';
+import { webhookContracts } from './webhooks.ts';
 
 export const contracts: Contract[] = [
   ...systemContracts,
   ...authContracts,
   ...teamContracts,
+  ...webhookContracts,
   ...networkContracts,
   ...jobContracts,
   readJobCost,

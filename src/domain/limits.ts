@@ -60,6 +60,10 @@ export const limits = {
   /** Finance. */
   invoicesPerZip: 500,
   messagesPerInvoice: 200,
+  /** Webhooks. */
+  webhooksPerTeam: 20,
+  webhookUrlCharacters: 2_000,
+  webhookLogDays: 30,
   /** Money: every integer of credits or money stays within this. */
   integer: Number.MAX_SAFE_INTEGER,
 } as const;

@@ -6,6 +6,18 @@ import { projectRoot } from './project-root.ts';
 
 const flag = z.enum(['0', '1']).transform((value) => value === '1');
 
+/** Networks such as `10.0.4.0/24`, separated by commas; a wrong one stops the boot. */
+const networks = z
+  .string()
+  .default('')
+  .transform((text) =>
+    text
+      .split(',')
+      .map((one) => one.trim())
+      .filter(Boolean),
+  )
+  .pipe(z.array(z.union([z.cidrv4(), z.cidrv6(), z.ipv4(), z.ipv6()], 'Not a network such as 10.0.4.0/24.')));
+
 const schema = z.object({
   NODE_ENV: z.enum(['development', 'production', 'test']).default('development'),
   PORT: z.coerce.number().int().min(0).max(65_535).default(4321),
@@ -31,6 +43,8 @@ const schema = z.object({
   /** Page that shows the local fake's mailbox; development only. */
   MAILBOX_URL: z.url().optional(),
   MAIL_FROM: z.string().default('Burette <no-reply@burette.example>'),
+  /** Networks that outgoing webhooks may reach though they are not public, on any port. */
+  WEBHOOK_ALLOWED_NETWORKS: networks,
   /** The seller on invoices. */
   SELLER_NAME: z.string().default('Burette Compute Ltd (sample seller)'),
   SELLER_ADDRESS: z.string().default('1 Sample Quay\nExampleton EX1 1EX'),

@@ -29,6 +29,7 @@ export type IdKind =
   | 'pricebook'
   | 'message'
   | 'act'
-  | 'webhook';
+  | 'webhook'
+  | 'delivery';
 
 export const newId = (kind: IdKind): string => `${kind}_${ulid()}`;

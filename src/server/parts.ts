@@ -4,5 +4,6 @@ import { billingPart } from './billing/billing-part.ts';
 import { jobsPart } from './jobs/jobs-part.ts';
 import { mailPart } from './mail/mail-part.ts';
 import type { Part } from './part.ts';
+import { webhooksPart } from './webhooks/webhooks-part.ts';
 
-export const parts: Part[] = [authPart, mailPart, billingPart, jobsPart];
+export const parts: Part[] = [authPart, mailPart, billingPart, webhooksPart, jobsPart];

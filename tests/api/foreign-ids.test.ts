@@ -7,6 +7,7 @@ import { inWriteTransaction } from '@db/in-write-transaction.ts';
 import { TopUp } from '@db/models/billing.ts';
 import { PriceBookRow } from '@db/models/ledger.ts';
 import { ModelVersion } from '@db/models/models.ts';
+import { WebhookDelivery } from '@db/models/webhooks.ts';
 import { contracts } from '@/contracts/index.ts';
 import { nowText } from '@/server/clock.ts';
 import { markTransferReceived } from '@/server/billing/mark-transfer-received.ts';
@@ -19,6 +20,8 @@ import { setExecutor } from '@/server/jobs/executor.ts';
 import { createProjectCode } from '@/server/teams/create-project-code.ts';
 import { createToken } from '@/server/teams/create-token.ts';
 import { inviteMember } from '@/server/teams/invite-member.ts';
+import { createWebhook } from '@/server/webhooks/create-webhook.ts';
+import { queueWebhook } from '@/server/webhooks/queue-webhook.ts';
 import { makeTeam, signedInHeaders } from '../factories/people.ts';
 import { callEndpoint } from '../support/call-endpoint.ts';
 import { inProcessExecutor, launch, makeBench, quote, value, type Bench } from '../support/jobs.ts';
@@ -48,7 +51,14 @@ async function thingsOf(bench: Bench): Promise<Record<string, string>> {
   );
   const system = { kind: 'system', reason: 'test' } as const;
   const { invoiceId } = value(await markTransferReceived({ actor: system, proFormaId: proForma.id }));
+  const webhook = value(
+    await createWebhook({ ...by, url: 'https://hooks.foreign.example/burette', kinds: ['balance_low'] }),
+  ).webhook.id;
+  await queueWebhook({ teamId: bench.team.id, kind: 'balance_low', occasion: 'test', data: {} });
+  const delivery = (await WebhookDelivery.findOne({ where: { webhookId: webhook } }))!.id;
   return {
+    webhook,
+    delivery,
     model: version.modelId,
     version: String(version.number),
     quote: (await quote(bench, { replicates: 100 })).id,

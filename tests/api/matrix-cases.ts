@@ -68,6 +68,13 @@ export const cases: Record<string, Case> = {
   listTokens: plain,
   createToken: { body: { name: 'script', scopes: ['models:read'] } },
   revokeToken: plain,
+  // webhooks
+  listWebhooks: plain,
+  createWebhook: { body: { url: 'https://hooks.matrix.example/burette', kinds: ['job_finished'] } },
+  changeWebhook: { body: { paused: true } },
+  removeWebhook: plain,
+  listDeliveries: plain,
+  redeliverWebhook: plain,
   // network
   createModel: { body: { name: 'Decay', network } },
   listModels: plain,

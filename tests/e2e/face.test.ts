@@ -78,6 +78,7 @@ const ownerPages = [
   `${team}/team/members`,
   `${team}/team/project-codes`,
   `${team}/team/tokens`,
+  `${team}/team/webhooks`,
   '/account',
 ];
 

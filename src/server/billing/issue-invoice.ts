@@ -4,6 +4,7 @@ import { Invoice } from '@db/models/billing.ts';
 import type { InvoiceFace } from '@/domain/billing/invoice-face.ts';
 import { nowText } from '../clock.ts';
 import { newId } from '../ids.ts';
+import { queueWebhook } from '../webhooks/queue-webhook.ts';
 import { nextInvoiceNumber } from './next-invoice-number.ts';
 
 export const invoiceSeries = 'BUR';
@@ -24,7 +25,7 @@ export async function issueInvoice(options: IssueInvoice): Promise<Invoice> {
     const earlier = await Invoice.findOne({ where: topUpId ? { topUpId } : { proFormaId } });
     if (earlier) return earlier;
     const issuedAt = nowText();
-    return Invoice.create({
+    const invoice = await Invoice.create({
       id: newId('invoice'),
       kind: 'invoice',
       ...(await nextInvoiceNumber(invoiceSeries, issuedAt)),
@@ -37,5 +38,13 @@ export async function issueInvoice(options: IssueInvoice): Promise<Invoice> {
       correctsInvoiceId: null,
       ...face,
     });
+    const { id, number, currency, totalMinor } = invoice;
+    await queueWebhook({
+      teamId,
+      kind: 'invoice_issued',
+      occasion: `invoice:${id}`,
+      data: { invoice: { id, number, issuedAt, total: { amountMinor: totalMinor, currency } } },
+    });
+    return invoice;
   });
 }

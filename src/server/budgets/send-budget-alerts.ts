@@ -14,6 +14,7 @@ import { env } from '../env.ts';
 import { readBalance } from '../ledger/read-balance.ts';
 import { composeLetter, type ComposedLetter } from '../mail/compose-letter.ts';
 import { queueMail } from '../mail/queue-mail.ts';
+import { queueWebhook } from '../webhooks/queue-webhook.ts';
 import { presentBudgets } from './present-budgets.ts';
 
 /** Looks at every team that has a budget or a low balance set; answers how many alerts went out. */
@@ -45,6 +46,13 @@ async function alertTeam(teamId: string): Promise<number> {
     for (const alert of due) {
       const { ids } = alert;
       for (const id of ids) await BudgetAlert.create({ teamId, month: budgets.month, alert: id, at: nowText() });
+      if (alert.kind === 'low_balance')
+        await queueWebhook({
+          teamId,
+          kind: 'balance_low',
+          occasion: `alert:${budgets.month}:${ids.at(-1)}`,
+          data: { availableMicrocredits: alert.availableMicrocredits, limitMicrocredits: alert.limitMicrocredits },
+        });
       const letter = letterOf(alert, team, budgets);
       for (const { email } of people)
         await queueMail({

@@ -9,6 +9,7 @@ import { queueMail } from '../mail/queue-mail.ts';
 import { announceJobChange } from './job-changes.ts';
 import { removeOutdatedFiles } from './job-folder.ts';
 import { jobEndedMail } from './job-ended-mail.ts';
+import { queueJobWebhook } from './queue-job-webhook.ts';
 import { writeResults } from './write-results.ts';
 
 /** Finishing again, after a crash anywhere in between, writes the same results and releases nothing twice. */
@@ -27,6 +28,7 @@ export async function finishJob(jobId: string): Promise<void> {
     await releaseSegments(job);
     await job.update({ ...written, state, heldMicrocredits: 0, finishedAt });
     await tellLauncher(job);
+    await queueJobWebhook(job);
     afterCommit(() => announceJobChange(jobId));
   });
   await removeOutdatedFiles(jobId, job.archiveRevision);
