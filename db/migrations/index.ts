@@ -11,6 +11,7 @@ import { creditReturns } from './0008-credit-returns.ts';
 import { cardsAndDisputes } from './0009-cards-and-disputes.ts';
 import { pilotMeans } from './0010-pilot-means.ts';
 import { webhooks } from './0020-webhooks.ts';
+import { secondFactor } from './0021-second-factor.ts';
 
 export const migrations: Migration[] = [
   people,
@@ -24,4 +25,5 @@ export const migrations: Migration[] = [
   cardsAndDisputes,
   pilotMeans,
   webhooks,
+  secondFactor,
 ];

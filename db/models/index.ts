@@ -7,11 +7,13 @@ import { defineJobs } from './jobs.ts';
 import { defineLedger } from './ledger.ts';
 import { defineNetworkModels } from './models.ts';
 import { definePeople } from './people.ts';
+import { defineSecondFactor } from './second-factor.ts';
 import { defineTeams } from './teams.ts';
 import { defineWebhooks } from './webhooks.ts';
 
 export function defineModels(sequelize: Sequelize): void {
   definePeople(sequelize);
+  defineSecondFactor(sequelize);
   defineTeams(sequelize);
   defineLedger(sequelize);
   defineBilling(sequelize);

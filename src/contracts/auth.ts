@@ -20,7 +20,16 @@ const newPassword = z
   .min(limits.passwordCharactersMinimum, `At least ${limits.passwordCharactersMinimum} characters.`)
   .max(limits.passwordCharacters);
 /** A password that is only compared: its length says nothing. */
-const presentPassword = z.string().min(1).max(limits.passwordCharacters);
+export const presentPassword = z.string().min(1).max(limits.passwordCharacters);
+/** Six figures of an authenticator app, or a recovery code. */
+export const oneTimeCode = z.string().trim().min(1).max(40);
+/** Where it is needed only of who has a second factor; a form sends it empty. */
+const optionalCode = z
+  .string()
+  .trim()
+  .max(40)
+  .transform((code) => (code === '' ? undefined : code))
+  .optional();
 const linkToken = z.string().min(1).max(200);
 
 const said = z.object({ message: z.string() });
@@ -65,11 +74,18 @@ export const signIn = contract({
   feature: 'auth',
   method: 'POST',
   path: '/api/v1/auth/sign-in',
-  summary: 'Sign in; sets the session cookie',
+  summary: 'Sign in; sets the session cookie. Where a second factor is on, with its code',
   access: { kind: 'public' },
-  body: z.strictObject({ email: emailAddress, password: presentPassword }),
+  body: z.strictObject({ email: emailAddress, password: presentPassword, code: optionalCode }),
   answers: [{ status: 200, description: 'Signed in', schema: signedInPerson }],
-  refusals: ['invalid_input', 'wrong_credentials', 'rate_limited', 'origin_refused'],
+  refusals: [
+    'invalid_input',
+    'wrong_credentials',
+    'second_factor_needed',
+    'wrong_code',
+    'rate_limited',
+    'origin_refused',
+  ],
 });
 
 export const signOut = contract({
@@ -102,9 +118,17 @@ export const resetPassword = contract({
   path: '/api/v1/auth/reset',
   summary: 'Set a new password with the token of the mail; ends every session and begins a new one here',
   access: { kind: 'public' },
-  body: z.strictObject({ token: linkToken, password: newPassword }),
+  body: z.strictObject({ token: linkToken, password: newPassword, code: optionalCode }),
   answers: [{ status: 200, description: 'Changed and signed in', schema: signedInPerson }],
-  refusals: ['invalid_input', 'link_expired', 'password_too_weak', 'rate_limited', 'origin_refused'],
+  refusals: [
+    'invalid_input',
+    'link_expired',
+    'password_too_weak',
+    'second_factor_needed',
+    'wrong_code',
+    'rate_limited',
+    'origin_refused',
+  ],
 });
 
 export const showInvitation = contract({

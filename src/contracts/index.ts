@@ -9,6 +9,7 @@ import { jobContracts } from './jobs.ts';
 import { ledgerContracts } from './ledger.ts';
 import { networkContracts } from './network.ts';
 import { operateContracts } from './operate.ts';
+import { secondFactorContracts } from './second-factor.ts';
 import { statementContracts } from './statements.ts';
 import { systemContracts } from './system.ts';
 import { teamContracts } from './teams.ts';
@@ -17,6 +18,7 @@ import { webhookContracts } from './webhooks.ts';
 export const contracts: Contract[] = [
   ...systemContracts,
   ...authContracts,
+  ...secondFactorContracts,
   ...teamContracts,
   ...webhookContracts,
   ...networkContracts,

@@ -10,6 +10,10 @@ export const refusalCodes = [
   'team_suspended',
   // people
   'wrong_credentials',
+  'second_factor_needed',
+  'wrong_code',
+  'second_factor_on',
+  'second_factor_off',
   'email_not_verified',
   'link_expired',
   'password_too_weak',

@@ -50,6 +50,10 @@ export const cases: Record<string, Case> = {
   changePassword: { body: { presentPassword: 'copper kettle nine drums', newPassword: password } },
   listSessions: plain,
   endSession: plain,
+  readSecondFactor: plain,
+  beginSecondFactor: { body: { presentPassword: 'copper kettle nine drums' } },
+  confirmSecondFactor: { body: { code: '000000' } },
+  removeSecondFactor: { body: { presentPassword: 'copper kettle nine drums', code: '000000' } },
   // teams
   listTeams: plain,
   readTeam: plain,

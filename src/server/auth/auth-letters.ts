@@ -50,3 +50,23 @@ export const passwordChangedLetter = (): ComposedLetter =>
       `If that was not you, set a new password at once at ${url(paths.reset)}, then look through your API tokens and revoke those you do not know.`,
     ],
   });
+
+export const secondFactorLetter = (state: 'on' | 'off'): ComposedLetter =>
+  composeLetter({
+    subject: `The second factor of your Burette account is ${state}`,
+    paragraphs: [
+      state === 'on'
+        ? 'From now on signing in asks for a code of your authenticator app beside the password. Keep the recovery codes where you will find them without it.'
+        : 'Signing in asks for the password alone again. Your recovery codes no longer work.',
+    ],
+    closing: [`If that was not you, set a new password at once at ${url(paths.reset)}.`],
+  });
+
+export const recoveryCodeUsedLetter = (left: number): ComposedLetter =>
+  composeLetter({
+    subject: 'A recovery code of your Burette account was used',
+    paragraphs: [
+      `One of your recovery codes stood in for your authenticator app; it does not work again. ${left} of them are left.`,
+    ],
+    closing: [`If that was not you, set a new password at once at ${url(paths.reset)}.`],
+  });

@@ -1,15 +1,15 @@
 /** Changes one's password; every session ends and a new one begins here. */
 import { inWriteTransaction } from '@db/in-write-transaction.ts';
-import { accept, refuse, type Result } from '@/domain/refusals.ts';
+import { accept, type Result } from '@/domain/refusals.ts';
 import type { Actor } from '@/domain/teams/actor.ts';
 import { weaknessOfPassword } from '@/domain/teams/check-password.ts';
-import { addressKey, giveBackAttempt, takeAttempt } from '../http/rate-limit.ts';
 import { newId } from '../ids.ts';
 import { queueMail } from '../mail/queue-mail.ts';
 import { passwordChangedLetter } from './auth-letters.ts';
 import { beginSession, type BegunSession } from './begin-session.ts';
+import { checkPresentPassword } from './check-present-password.ts';
 import { withdrawLinks } from './one-time-links.ts';
-import { hashPassword, passwordMatches } from './password-hash.ts';
+import { hashPassword } from './password-hash.ts';
 import { requirePerson } from './require-person.ts';
 import { sessions } from './sessions.ts';
 import { weakPassword } from './sign-up.ts';
@@ -25,12 +25,8 @@ export async function changePassword(options: {
   const person = await requirePerson(actor);
   if (!person.ok) return person;
   const { user } = person.value;
-  const key = `${addressKey(visitor.address)} ${user.email}`;
-  const attempt = await takeAttempt('signInByAddressAndAccount', key);
-  if (!attempt.ok) return attempt;
-  if (!(await passwordMatches(presentPassword, user.passwordHash)))
-    return refuse('wrong_credentials', 'This is not your present password; nothing was changed.');
-  await giveBackAttempt('signInByAddressAndAccount', key);
+  const proven = await checkPresentPassword({ user, presentPassword, visitor });
+  if (!proven.ok) return proven;
   const weakness = weaknessOfPassword(newPassword, { email: user.email, names: [user.name] });
   if (weakness) return weakPassword(weakness, 'newPassword');
   const passwordHash = await hashPassword(newPassword);

@@ -7,6 +7,7 @@ import { addressKey, forgetAttempts, takeAttempt } from '../http/rate-limit.ts';
 import { queueMail } from '../mail/queue-mail.ts';
 import { passwordChangedLetter } from './auth-letters.ts';
 import { beginSession, type BegunSession } from './begin-session.ts';
+import { checkSecondFactor } from './check-second-factor.ts';
 import { deadLink, findLink, useLink, withdrawLinks } from './one-time-links.ts';
 import { hashPassword } from './password-hash.ts';
 import { presentPerson, type PresentedPerson } from './present-person.ts';
@@ -17,6 +18,8 @@ import type { Visitor } from './visitor.ts';
 export async function resetPassword(options: {
   token: string;
   password: string;
+  /** Of the second factor, where there is one: a mailbox alone must not open the account. */
+  code?: string | undefined;
   visitor: Visitor;
 }): Promise<Result<{ session: BegunSession; answer: PresentedPerson }>> {
   const { token, password, visitor } = options;
@@ -29,6 +32,8 @@ export async function resetPassword(options: {
   if (!user) return deadLink();
   const weakness = weaknessOfPassword(password, { email: user.email, names: [user.name] });
   if (weakness) return weakPassword(weakness, 'password');
+  const second = await checkSecondFactor({ user, code: options.code });
+  if (!second.ok) return second;
   const passwordHash = await hashPassword(password);
 
   const begun = await inWriteTransaction(async () => {

@@ -8,6 +8,7 @@ import { Session, User } from '@db/models/people.ts';
 import { accept, refuse, type Result } from '@/domain/refusals.ts';
 import { addressKey, forgetAttempts, giveBackAttempt, takeAttempt, type LimitName } from '../http/rate-limit.ts';
 import { beginSession, type BegunSession } from './begin-session.ts';
+import { checkSecondFactor } from './check-second-factor.ts';
 import { passwordMatches } from './password-hash.ts';
 import { presentPerson, type PresentedPerson } from './present-person.ts';
 import type { Visitor } from './visitor.ts';
@@ -15,13 +16,15 @@ import type { Visitor } from './visitor.ts';
 export interface SignInOptions {
   email: string;
   password: string;
+  /** Of the second factor, where there is one. */
+  code?: string | undefined;
   visitor: Visitor;
 }
 
 export async function signIn(
   options: SignInOptions,
 ): Promise<Result<{ session: BegunSession; answer: PresentedPerson }>> {
-  const { email, password, visitor } = options;
+  const { email, password, code, visitor } = options;
   const user = await User.findOne({ where: { email } });
   const address = addressKey(visitor.address);
   const counters: [LimitName, string][] = [
@@ -40,6 +43,8 @@ export async function signIn(
     );
   for (const [name, key] of counters) await giveBackAttempt(name, key);
   await forgetAttempts('signInByAddressAndAccount', `${address} ${email}`);
+  const second = await checkSecondFactor({ user, code });
+  if (!second.ok) return second;
   const session = await beginSession({ userId: user.id, visitor });
   return accept({ session, answer: await presentPerson(user.id) });
 }

@@ -9,6 +9,8 @@ const windows = {
   signInByAddress: { attempts: 40, seconds: 15 * 60 },
   signInByAddressAndAccount: { attempts: 10, seconds: 15 * 60 },
   signInByAccount: { attempts: 30, seconds: 60 * 60 },
+  /** Codes of a second factor, asked for once the password was right: of 10⁶ codes three are valid at a time. */
+  codeByAccount: { attempts: 10, seconds: 15 * 60 },
   /** Acts that send a mail to somebody who has not proved to be the asker. */
   mailByAddress: { attempts: 40, seconds: 60 * 60 },
   signUpMailByRecipient: { attempts: 5, seconds: 60 * 60 },
