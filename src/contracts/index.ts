@@ -5,6 +5,7 @@ import { billingContracts } from './billing.ts';
 import { budgetContracts } from './budgets.ts';
 import type { Contract } from './contract.ts';
 import { readJobCost } from './job-cost.ts';
+import { readSweep } from './job-sweep.ts';
 import { jobContracts } from './jobs.ts';
 import { ledgerContracts } from './ledger.ts';
 import { networkContracts } from './network.ts';
@@ -24,6 +25,7 @@ export const contracts: Contract[] = [
   ...networkContracts,
   ...jobContracts,
   readJobCost,
+  readSweep,
   ...archiveContracts,
   ...ledgerContracts,
   ...billingContracts,

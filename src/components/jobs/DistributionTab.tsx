@@ -21,6 +21,8 @@ const restMs = 60;
 export function DistributionTab(props: {
   team: string;
   job: JobDocument;
+  /** Of a sweep. */
+  point: number;
   stage: string;
   results: Results;
   chosen: NamedObservable;
@@ -28,17 +30,17 @@ export function DistributionTab(props: {
   onTime: (index: number) => void;
   onObservable: (id: string) => void;
 }) {
-  const { team, job, stage, results, chosen, timeIndex, onTime, onObservable } = props;
+  const { team, job, point, stage, results, chosen, timeIndex, onTime, onObservable } = props;
   const rested = useRested(timeIndex);
   const time = results.times[rested] ?? 0;
   const query = useQuery({
-    queryKey: ['distribution', job.id, stage, chosen.id, rested],
+    queryKey: ['distribution', job.id, stage, point, chosen.id, rested],
     placeholderData: keepPreviousData,
     staleTime: stage === 'running' ? 4_000 : Infinity,
     queryFn: async ({ signal }) => {
       const called = await callApi(jobDistribution, {
         path: { team, job: job.id },
-        query: { observable: chosen.id, time },
+        query: { observable: chosen.id, time, point },
         signal,
       });
       if (!called.ok) throw new Error(called.problem.detail);

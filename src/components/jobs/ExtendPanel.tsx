@@ -160,6 +160,8 @@ const requestFor = (job: JobDocument, replicates: number): QuoteRequestBody => (
   lane: job.lane,
   seed: job.seed,
   overrides: job.overrides,
+  // The points as they are pinned: a grid asked for again would come to the same ones.
+  ...(job.sweep ? { sweep: { kind: 'list' as const, targets: job.sweep.targets, values: job.sweep.values } } : {}),
   outputs: {
     keptTraces: job.keptTraces,
     ...(job.passages.length > 0 ? { passages: job.passages.map(passageRequestOf) } : {}),

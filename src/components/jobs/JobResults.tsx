@@ -15,11 +15,13 @@ import { NumbersTab } from './NumbersTab.tsx';
 import { PassagesTab } from './PassagesTab.tsx';
 import { TimeCourseTab } from './TimeCourseTab.tsx';
 import { TracesTab } from './TracesTab.tsx';
+import { PointSelect } from './sweep/PointSelect.tsx';
+import { SweepTab } from './sweep/SweepTab.tsx';
 import { stageOf, useStatistics } from './use-statistics.ts';
 
 const askEveryMs = 4_000;
 const tracesShown = 50;
-const allTabs = ['time-course', 'distribution', 'noise', 'passages', 'traces', 'numbers'] as const;
+const allTabs = ['sweep', 'time-course', 'distribution', 'noise', 'passages', 'traces', 'numbers'] as const;
 
 interface Props {
   team: string;
@@ -31,21 +33,23 @@ interface Props {
 
 export function JobResults({ team, job, names, network }: Props) {
   const over = isOver(job);
-  const [tab, setTab] = useInUrl('tab', 'time-course');
+  const [tab, setTab] = useInUrl('tab', job.sweep ? 'sweep' : 'time-course');
+  const [pointText, setPoint] = useInUrl('point', '0');
+  const point = Math.min(Number(/^\d+$/.test(pointText) ? pointText : 0), job.points - 1);
   const [observable, setObservable] = useInUrl('observable', job.observables[0] ?? '');
   const [timeIndex, setTimeIndex] = useState(job.gridIntervals);
   const path = { team, job: job.id };
   const enabled = job.replicatesDone > 0;
   const stage = stageOf(job);
-  const { results, problem, askAgain } = useStatistics(team, job, names);
+  const { results, problem, askAgain } = useStatistics(team, job, names, point);
   const traces = useQuery({
-    queryKey: ['traces', job.id, stage],
+    queryKey: ['traces', job.id, stage, point],
     enabled: enabled && job.keptTraces > 0,
     placeholderData: keepPreviousData,
     refetchInterval: over || job.replicatesDone >= tracesShown ? false : askEveryMs,
     staleTime: over ? Infinity : askEveryMs,
     queryFn: async ({ signal }) => {
-      const called = await callApi(jobTraces, { path, query: { limit: tracesShown }, signal });
+      const called = await callApi(jobTraces, { path, query: { limit: tracesShown, point }, signal });
       return called.ok ? called.value : null;
     },
   });
@@ -58,23 +62,30 @@ export function JobResults({ team, job, names, network }: Props) {
   if (!results || !chosen) return <NothingYet {...{ job, problem }} asked={enabled} onRetry={askAgain} />;
   const shared = { results, chosen, onObservable: setObservable };
   const time = { timeIndex: Math.min(timeIndex, results.times.length - 1), onTime: setTimeIndex };
+  const atPoint = { job, point };
   const contents: Record<(typeof allTabs)[number], { label: string; content: React.ReactNode }> = {
+    sweep: { label: 'Sweep', content: <SweepTab {...shared} {...time} {...{ team, job, stage, over }} /> },
     'time-course': {
       label: 'Time course',
-      content: <TimeCourseTab {...shared} traces={ownTraces} job={job} network={network} />,
+      content: <TimeCourseTab {...shared} {...atPoint} traces={ownTraces} network={network} />,
     },
     distribution: {
       label: 'Distribution',
-      content: <DistributionTab {...shared} {...time} team={team} job={job} stage={stage} />,
+      content: <DistributionTab {...shared} {...time} {...atPoint} team={team} stage={stage} />,
     },
     noise: { label: 'Noise', content: <NoiseTab {...shared} job={job} /> },
-    passages: { label: 'First passage', content: <PassagesTab {...{ team, job, names, stage, over }} /> },
+    passages: { label: 'First passage', content: <PassagesTab {...{ team, job, point, names, stage, over }} /> },
     traces: { label: 'Traces', content: <TracesTab {...shared} traces={ownTraces} job={job} /> },
     numbers: { label: 'Numbers', content: <NumbersTab results={results} {...time} /> },
   };
-  const tabIds = allTabs.filter((id) => id !== 'passages' || job.passages.length > 0);
+  const offered = { passages: job.passages.length > 0, sweep: job.sweep !== null };
+  const tabIds = allTabs.filter((id) => !(id in offered) || offered[id as keyof typeof offered]);
+  const shownTab = tabIds.includes(tab as never) ? tab : 'time-course';
   return (
     <section aria-label="Results">
+      {job.sweep && shownTab !== 'sweep' && (
+        <PointSelect sweep={job.sweep} point={point} onPoint={(next) => setPoint(String(next))} />
+      )}
       {!over && (
         <p className="mb-2 text-sm text-soft">
           So far, from the first {countText(results.replicates)} replicates. The figures follow the job.
@@ -85,12 +96,7 @@ export function JobResults({ team, job, names, network }: Props) {
           The errors and intervals below are of sampling alone; what leaping shifts comes on top of them.
         </Notice>
       )}
-      <Tabs
-        label="Results"
-        tabs={tabIds.map((id) => ({ id, ...contents[id] }))}
-        chosen={tabIds.includes(tab as never) ? tab : 'time-course'}
-        onChoose={setTab}
-      />
+      <Tabs label="Results" tabs={tabIds.map((id) => ({ id, ...contents[id] }))} chosen={shownTab} onChoose={setTab} />
       <p className="mt-8 border-t border-rule pt-3 text-xs text-soft">{resultCaution}</p>
     </section>
   );

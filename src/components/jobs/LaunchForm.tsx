@@ -22,6 +22,8 @@ import { OverridesTable } from './OverridesTable.tsx';
 import { PassageFields } from './PassageFields.tsx';
 import { QuotePanel } from './QuotePanel.tsx';
 import { StoppingFields } from './StoppingFields.tsx';
+import { SweepFields } from './sweep/SweepFields.tsx';
+import { noSweep, readSweepSettings } from './sweep/sweep-settings.ts';
 import { useQuote } from './use-quote.ts';
 import { WhenLive } from '@/components/ui/WhenLive.tsx';
 
@@ -65,6 +67,7 @@ function Form(props: LaunchFormProps) {
   const { model, version } = opened;
 
   const read = useMemo(() => quoteRequestOf(settings, version), [settings, version]);
+  const sweep = useMemo(() => readSweepSettings(settings.sweep, version.network), [settings.sweep, version]);
   const quoteState = useQuote(team, opened.ready && read.ok ? read.request : null);
   const { quote } = quoteState;
   const cap = capOf(settings.cap);
@@ -110,6 +113,8 @@ function Form(props: LaunchFormProps) {
               change({
                 parameters: {},
                 initialCounts: {},
+                changeTimes: {},
+                sweep: noSweep,
                 passages: [],
                 stopping: { ...settings.stopping, kind: 'replicates', observable: '' },
               });
@@ -136,7 +141,7 @@ function Form(props: LaunchFormProps) {
         <div className="grid gap-4 sm:grid-cols-3">
           <TextField
             id="replicates"
-            label="Replicates"
+            label={settings.sweep.kind === 'none' ? 'Replicates' : 'Replicates at each point'}
             inputMode="numeric"
             autoComplete="off"
             value={settings.replicates}
@@ -173,6 +178,14 @@ function Form(props: LaunchFormProps) {
         />
         <MethodFields {...{ settings, faults, change }} />
         <OverridesTable key={version.id} network={version.network} {...{ settings, faults, change }} />
+        <SweepFields
+          network={version.network}
+          settings={settings.sweep}
+          sweep={sweep.ok ? sweep.sweep : undefined}
+          replicates={numberIn(settings.replicates)}
+          faults={faults}
+          onChange={(next) => change({ sweep: next })}
+        />
         <section aria-labelledby="more-title" className="border-t border-rule pt-4">
           <h2 id="more-title" className="mb-3 text-lg font-semibold">
             Job

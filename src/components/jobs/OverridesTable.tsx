@@ -1,4 +1,4 @@
-/** Values for this job in place of the model's own: parameters and initial counts. */
+/** Values for this job in place of the model's own: parameters, initial counts, times of changes. */
 import { useState } from 'react';
 import { TextField } from '@/components/ui/Field.tsx';
 import { Button } from '@/components/ui/Button.tsx';
@@ -50,10 +50,16 @@ function countsOf({ species, assignmentRules }: NetworkDocument): Overridable[] 
     .map(({ id, name, initialCount }) => ({ id, title: name ?? '', value: String(initialCount), unit: 'at time 0' }));
 }
 
+const timesOf = ({ changes, timeUnit }: NetworkDocument): Overridable[] =>
+  (changes ?? []).flatMap(({ id, name, when }) =>
+    when.kind === 'time' ? [{ id, title: name ?? 'first happens', value: when.time, unit: timeUnit }] : [],
+  );
+
 export function OverridesTable({ network, settings, faults, change }: Props) {
   const filled = (cells: Record<string, string>): number =>
     Object.values(cells).filter((text) => text.trim() !== '').length;
-  const used = filled(settings.parameters) + filled(settings.initialCounts);
+  const used = filled(settings.parameters) + filled(settings.initialCounts) + filled(settings.changeTimes);
+  const timed = timesOf(network);
   const [open, setOpen] = useState(used > 0);
   return (
     <section aria-labelledby="overrides-title" className="border-t border-rule pt-4">
@@ -65,7 +71,7 @@ export function OverridesTable({ network, settings, faults, change }: Props) {
           </span>
         </h2>
         <Button size="small" aria-expanded={open} onClick={() => setOpen(!open)}>
-          {open ? 'Hide' : 'Change parameters or initial counts'}
+          {open ? 'Hide' : 'Change parameters, counts or times'}
         </Button>
       </div>
       {open && (
@@ -86,6 +92,16 @@ export function OverridesTable({ network, settings, faults, change }: Props) {
             faults={faults}
             onCells={(initialCounts) => change({ initialCounts })}
           />
+          {(timed.length > 0 || filled(settings.changeTimes) > 0) && (
+            <OverrideList
+              title="Times of changes"
+              prefix="changeTimes"
+              rows={timed}
+              cells={settings.changeTimes}
+              faults={faults}
+              onCells={(changeTimes) => change({ changeTimes })}
+            />
+          )}
         </div>
       )}
     </section>
@@ -94,7 +110,7 @@ export function OverridesTable({ network, settings, faults, change }: Props) {
 
 function OverrideList(props: {
   title: string;
-  prefix: 'parameters' | 'initialCounts';
+  prefix: 'parameters' | 'initialCounts' | 'changeTimes';
   rows: Overridable[];
   cells: Record<string, string>;
   faults: FieldFaults;

@@ -22,19 +22,21 @@ const titleOf = (
 export function PassagesTab(props: {
   team: string;
   job: JobDocument;
+  /** Of a sweep. */
+  point: number;
   names: Record<string, string>;
   stage: string;
   over: boolean;
 }) {
-  const { team, job, names, stage, over } = props;
+  const { team, job, point, names, stage, over } = props;
   const [chosen, setChosen] = useState(0);
   const query = useQuery({
-    queryKey: ['passages', job.id, stage],
+    queryKey: ['passages', job.id, stage, point],
     placeholderData: keepPreviousData,
     refetchInterval: over ? false : 4_000,
     staleTime: over ? Infinity : 2_000,
     queryFn: async ({ signal }) => {
-      const called = await callApi(jobPassages, { path: { team, job: job.id }, signal });
+      const called = await callApi(jobPassages, { path: { team, job: job.id }, query: { point }, signal });
       if (!called.ok) throw new Error(called.problem.detail);
       return called.value;
     },

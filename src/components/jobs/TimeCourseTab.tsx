@@ -24,15 +24,17 @@ export function TimeCourseTab(props: {
   chosen: NamedObservable;
   traces: readonly ObservableTrace[];
   job: JobDocument;
+  /** Of a sweep. */
+  point: number;
   network: NetworkDocument | null;
   onObservable: (id: string) => void;
 }) {
-  const { results, chosen, traces, job, network, onObservable } = props;
+  const { results, chosen, traces, job, point, network, onObservable } = props;
   const [together, setTogether] = useState(false);
   const [fan, setFan] = useState(true);
   const [withTraces, setWithTraces] = useState(false);
   const [withMeanField, setWithMeanField] = useState(false);
-  const meanField = useMeanField(job, network, withMeanField);
+  const meanField = useMeanField(job, point, network, withMeanField);
   const curve = meanField.curves?.observables.find(({ id }) => id === chosen.id)?.values;
   const content = useMemo((): FigureContent => {
     const { times, timeUnit, replicates } = results;

@@ -31,7 +31,9 @@ export function methodWords({ method, epsilon, kernel }: Pick<JobDocument, 'meth
 export const seedText = (seed: string): string => seed.replaceAll(/\B(?=(\d{3})+$)/g, ' ');
 
 export const overrideCount = ({ overrides }: Pick<JobDocument, 'overrides'>): number =>
-  Object.keys(overrides.parameters ?? {}).length + Object.keys(overrides.initialCounts ?? {}).length;
+  Object.keys(overrides.parameters ?? {}).length +
+  Object.keys(overrides.initialCounts ?? {}).length +
+  Object.keys(overrides.changeTimes ?? {}).length;
 
 const failureKinds = {
   negative_propensity: 'a rate law became negative',

@@ -7,6 +7,7 @@ import { resolveNetwork } from '@/domain/network/resolve-network.ts';
 import type { PassageInput } from '@/domain/jobs/job-inputs.ts';
 import { defaultEpsilon } from '@/domain/jobs/method-comparison.ts';
 import type { Lane, MethodFamily } from '@/domain/pricing/price-book.ts';
+import { noSweep, readSweepSettings, sweepSettingsOf, type SweepSettings } from './sweep/sweep-settings.ts';
 
 export interface PassageSettings {
   observable: string;
@@ -47,6 +48,9 @@ export interface LaunchSettings {
   /** Text by parameter id and by species id; empty text means the model's own value. */
   parameters: Record<string, string>;
   initialCounts: Record<string, string>;
+  /** When timed changes first happen. */
+  changeTimes: Record<string, string>;
+  sweep: SweepSettings;
 }
 
 export type QuoteRequestBody = z.input<typeof quoteRequest>;
@@ -80,6 +84,8 @@ export const firstSettings = (network: NetworkDocument): LaunchSettings => ({
   cap: '',
   parameters: {},
   initialCounts: {},
+  changeTimes: {},
+  sweep: noSweep,
 });
 
 const texts = (values: Record<string, number> | undefined): Record<string, string> =>
@@ -102,6 +108,8 @@ export const settingsOfJob = (job: JobDocument, keepSeed: boolean): LaunchSettin
   cap: '',
   parameters: texts(job.overrides.parameters),
   initialCounts: texts(job.overrides.initialCounts),
+  changeTimes: texts(job.overrides.changeTimes),
+  sweep: sweepSettingsOf(job),
 });
 
 function stoppingSettingsOf({ stopping }: JobDocument): StoppingSettings {
@@ -173,9 +181,11 @@ export function quoteRequestOf(
   settings.passages.forEach(({ threshold }, index) =>
     check(`passages[${index}].threshold`, Number.isNaN(numberIn(threshold)) ? 'Give a number.' : null),
   );
+  const changeTimes = filled(settings.changeTimes);
   const overrides = {
     parameters: filled(settings.parameters),
     initialCounts: filled(settings.initialCounts),
+    ...(Object.keys(changeTimes).length > 0 ? { changeTimes } : {}),
   };
   const resolved = resolveNetwork(version.network, overrides);
   if (!resolved.ok) {
@@ -184,7 +194,9 @@ export function quoteRequestOf(
       else faults['model'] ??= message;
     }
   }
-  if (Object.keys(faults).length > 0) return { ok: false, faults };
+  const sweep = readSweepSettings(settings.sweep, version.network);
+  if (!sweep.ok) Object.assign(faults, sweep.faults);
+  if (Object.keys(faults).length > 0 || !sweep.ok) return { ok: false, faults };
   return {
     ok: true,
     request: {
@@ -197,7 +209,10 @@ export function quoteRequestOf(
       ...(stopping.kind === 'precision' ? { stopping: stoppingOf(stopping, version.network, horizon) } : {}),
       lane: settings.lane,
       ...(seed === '' ? {} : { seed }),
-      ...(Object.keys({ ...overrides.parameters, ...overrides.initialCounts }).length > 0 ? { overrides } : {}),
+      ...(Object.keys({ ...overrides.parameters, ...overrides.initialCounts, ...changeTimes }).length > 0
+        ? { overrides }
+        : {}),
+      ...(sweep.request ? { sweep: sweep.request } : {}),
       outputs: { keptTraces, ...(settings.passages.length > 0 ? { passages: settings.passages.map(passageOf) } : {}) },
     },
   };
@@ -237,7 +252,8 @@ export function faultsOfProblem(errors: readonly { path: string; message: string
     const field = path
       .replace(/^overrides\./, '')
       .replace(/^outputs\./, '')
-      .replace(/^modelVersionId$/, 'model');
+      .replace(/^modelVersionId$/, 'model')
+      .replace(/^sweep\.points\[\d+\]$/, 'sweep');
     faults[field] ??= message;
   }
   return faults;

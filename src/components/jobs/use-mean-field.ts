@@ -1,6 +1,7 @@
 /** The mean field of a job, solved in this browser by the same engine, once it is wished for. */
 import { useQuery } from '@tanstack/react-query';
 import type { JobDocument } from '@/contracts/jobs.ts';
+import { overridesAt } from '@/domain/jobs/sweep.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
 import type { MeanFieldAnswer, MeanFieldTask } from './mean-field-protocol.ts';
 
@@ -22,15 +23,16 @@ function solveBeside(task: MeanFieldTask, signal: AbortSignal): Promise<MeanFiel
 }
 
 /** `network` null: the reader may not see the model, so there is nothing to solve. */
-export function useMeanField(job: JobDocument, network: NetworkDocument | null, wished: boolean) {
+export function useMeanField(job: JobDocument, point: number, network: NetworkDocument | null, wished: boolean) {
   const query = useQuery({
-    queryKey: ['mean-field', job.id],
+    queryKey: ['mean-field', job.id, point],
     enabled: wished && network !== null,
     staleTime: Infinity,
     retry: false,
     refetchOnWindowFocus: false,
     queryFn: ({ signal }) => {
-      const { overrides, horizon, gridIntervals } = job;
+      const { horizon, gridIntervals } = job;
+      const overrides = overridesAt({ overrides: job.overrides, sweep: job.sweep ?? undefined }, point);
       return solveBeside({ network: network!, overrides, horizon, gridIntervals }, signal);
     },
   });

@@ -12,16 +12,16 @@ const askEveryMs = 4_000;
 export const stageOf = (job: JobDocument): string =>
   isOver(job) ? `${job.state} ${job.archive?.revision ?? 0} ${job.replicatesDone}` : 'running';
 
-export function useStatistics(team: string, job: JobDocument, names: Record<string, string>) {
+export function useStatistics(team: string, job: JobDocument, names: Record<string, string>, point = 0) {
   const over = isOver(job);
   const query = useQuery({
-    queryKey: ['statistics', job.id, stageOf(job)],
+    queryKey: ['statistics', job.id, stageOf(job), point],
     enabled: job.replicatesDone > 0,
     placeholderData: keepPreviousData,
     refetchInterval: over ? false : askEveryMs,
     staleTime: over ? Infinity : askEveryMs / 2,
     queryFn: async ({ signal }) => {
-      const called = await callApi(jobStatistics, { path: { team, job: job.id }, signal });
+      const called = await callApi(jobStatistics, { path: { team, job: job.id }, query: { point }, signal });
       if (called.ok) return called.value;
       if (called.problem.code === 'results_not_ready') return null;
       throw new Error(called.problem.detail);

@@ -13,6 +13,8 @@ export interface OpenResults {
   job: Job;
   /** Complete at every point. */
   replicates: number;
+  /** Of all points. */
+  points: PointEnsemble[];
   /** Of the point asked for. */
   ensemble: PointEnsemble;
   summary: EnsembleSummary;
@@ -42,7 +44,7 @@ export async function openResults(options: {
   const { points: ensembles, replicates } = await ensembleOf(job);
   const ensemble = ensembles[options.point];
   return ensemble
-    ? accept({ job, replicates, ensemble, summary: ensemble.summary })
+    ? accept({ job, replicates, points: ensembles, ensemble, summary: ensemble.summary })
     : refuse('results_not_ready', 'No replicate is complete yet.');
 }
 
