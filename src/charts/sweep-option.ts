@@ -1,7 +1,7 @@
 /** One number over the points of a sweep: curves with 95 % intervals along one quantity, or a heat map over two. */
 import type { EChartsOption } from 'echarts';
 import type { FigureTable } from './figure-table.ts';
-import { frame } from './frame.ts';
+import { frame, labelSeries } from './frame.ts';
 import { countText, numberText } from './number-text.ts';
 import { seriesDashes, type ChartTheme } from './palette.ts';
 
@@ -37,11 +37,14 @@ export function sweepCurvesOption(figure: SweepCurves, theme: ChartTheme): EChar
   const [least, most] = [Math.min(...xs), Math.max(...xs)];
   const isLog = least > 0 && most / least >= logRatio;
   const base = frame(theme, { x: { title: along }, y: { title }, labels: curves.length > 1 });
+  const lows = curves.flatMap(({ points }) => points.map(({ value, lower }) => lower ?? value));
+  const colorOf = (place: number): string => theme.series[place % theme.series.length]!;
   const words = ({ value, lower, upper }: SweepValue): string =>
     `${numberText(value, 5)}${lower === null || upper === null ? '' : ` (95 %: ${numberText(lower, 5)} – ${numberText(upper, 5)})`}`;
   return {
     ...base,
     xAxis: { ...base.xAxis, type: isLog ? 'log' : 'value', scale: true },
+    yAxis: { ...base.yAxis, ...(Math.min(...lows) >= 0 ? { min: 0 } : {}) },
     tooltip: {
       ...base.tooltip,
       trigger: 'item',
@@ -59,31 +62,34 @@ export function sweepCurvesOption(figure: SweepCurves, theme: ChartTheme): EChar
         ].join('\n');
       },
     },
-    series: curves.flatMap(({ name, points }, place) => {
-      const color = theme.series[place % theme.series.length]!;
-      return [
-        {
-          type: 'line',
-          name: name || title,
-          showSymbol: true,
-          symbol: 'circle',
-          symbolSize: 7,
-          z: 4,
-          lineStyle: { color, width: scattered ? 0 : 2, type: seriesDashes[place % seriesDashes.length] },
-          itemStyle: { color },
-          data: points.map(({ x, value }) => [x, value]),
-          endLabel: {
-            show: curves.length > 1,
-            formatter: () => name,
-            color,
-            fontFamily: theme.fontFamily,
-            fontSize: 12,
-            distance: 6,
+    series: [
+      ...curves.flatMap(({ name, points }, place) => {
+        const color = colorOf(place);
+        return [
+          {
+            type: 'line',
+            name: name || title,
+            showSymbol: true,
+            symbol: 'circle',
+            symbolSize: 7,
+            z: 4,
+            lineStyle: { color, width: scattered ? 0 : 2, type: seriesDashes[place % seriesDashes.length] },
+            itemStyle: { color },
+            data: points.map(({ x, value }) => [x, value]),
           },
-        },
-        intervals(points, color),
-      ];
-    }),
+          intervals(points, color),
+        ];
+      }),
+      labelSeries(
+        curves.length < 2
+          ? []
+          : curves.flatMap(({ name, points }, place) => {
+              const last = points.at(-1);
+              return last ? [{ x: last.x, y: last.value, text: name, color: colorOf(place) }] : [];
+            }),
+        theme,
+      ),
+    ],
   } as EChartsOption;
 }
 
@@ -191,7 +197,9 @@ export function sweepMapOption(figure: SweepMap, theme: ChartTheme): EChartsOpti
           return {
             type: 'group',
             children: [
-              { type: 'rect', shape, style: { fill: mixed(theme.glass, theme.bromo, part) } },
+              // Colours of a page come in any notation, so they are laid over each other and not computed.
+              { type: 'rect', shape, style: { fill: theme.glass } },
+              { type: 'rect', shape, style: { fill: theme.bromo, opacity: part } },
               ...(labelled
                 ? [
                     {
@@ -216,17 +224,6 @@ export function sweepMapOption(figure: SweepMap, theme: ChartTheme): EChartsOpti
       },
     ],
   } as EChartsOption;
-}
-
-/** Between two colours of the form #RRGGBB. */
-function mixed(from: string, to: string, part: number): string {
-  const channel = (colour: string, at: number) => parseInt(colour.slice(at, at + 2), 16);
-  const hex = [1, 3, 5].map((at) =>
-    Math.round(channel(from, at) + (channel(to, at) - channel(from, at)) * part)
-      .toString(16)
-      .padStart(2, '0'),
-  );
-  return `#${hex.join('')}`;
 }
 
 /** Every point, whatever part of them is drawn. */

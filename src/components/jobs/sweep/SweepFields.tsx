@@ -194,7 +194,7 @@ function Points({ sweep, replicates }: { sweep: Sweep; replicates: number }) {
         )}
       </summary>
       <div className="mt-2 max-h-64 overflow-auto" tabIndex={0} role="region" aria-label="Points of the sweep">
-        <table className="table text-sm">
+        <table className="text-sm [&_td]:px-3 [&_th]:px-3">
           <thead>
             <tr>
               <th scope="col">Point</th>
