@@ -7,6 +7,7 @@ import { LedgerTransaction } from '@db/models/ledger.ts';
 import { Mail } from '@db/models/teams.ts';
 import { longestPrefix } from '@/domain/jobs/longest-prefix.ts';
 import { eventsPerCycle, runPoints } from '@/engine/run-points.ts';
+import { asSummary, momentsAt } from '@/engine/statistics/statistics-of.ts';
 import { batchTask, networksOfJob } from '@/server/jobs/batch-task.ts';
 import { cancelJob } from '@/server/jobs/cancel-job.ts';
 import { setExecutor } from '@/server/jobs/executor.ts';
@@ -55,12 +56,15 @@ async function letRun(id: string, executor = inProcessExecutor()): Promise<Job> 
   return job;
 }
 
-/** Events of each replicate of a job, straight from the engine. */
-async function eventsOf(job: Job, replicateCount: number): Promise<Float64Array> {
+/** Each point of a job, straight from the engine. */
+async function pointsOfJob(job: Job, replicateCount: number) {
   const networks = await networksOfJob(job);
-  const { points } = await runPoints(batchTask({ job, networks, firstReplicate: 0, replicateCount }));
-  return eventsPerCycle(points);
+  return (await runPoints(batchTask({ job, networks, firstReplicate: 0, replicateCount }))).points;
 }
+
+/** Events of each replicate of a job, over all its points. */
+const eventsOf = async (job: Job, replicateCount: number): Promise<Float64Array> =>
+  eventsPerCycle(await pointsOfJob(job, replicateCount));
 
 /** What must hold of the money of any job that is over. */
 async function expectReconciled(bench: Bench, job: Job): Promise<void> {
@@ -348,6 +352,123 @@ describe('a job that is extended', () => {
     value(await extend((await quote(bench, extension)).id));
     const job = await letRun(id);
     expect(job).toMatchObject({ state: 'done', replicatesDone: replicatesDone + 500 });
+    await expectReconciled(bench, job);
+  });
+});
+
+/** What counts of a sweep, however it ends, is whole cycles: the same first replicates of every point. */
+describe('a sweep', () => {
+  const births = [5, 20, 40];
+  const sweepOf = (values: number[]) => ({
+    sweep: {
+      kind: 'list' as const,
+      targets: [{ kind: 'parameter' as const, id: 'birth' }],
+      values: values.map((v) => [v]),
+    },
+  });
+  const asked = { ...sweepOf(births), replicates: 300, gridIntervals: 4 };
+  const sum = (values: Float64Array): number => values.reduce((total, value) => total + value, 0);
+
+  /** Replicates behind the results of each point. */
+  const replicatesByPoint = (bench: Bench, job: Job) =>
+    Promise.all(
+      births.map(async (_, point) => {
+        const read = { actor: bench.actors.viewer, team: bench.team.slug, job: job.id, point };
+        return value(await readStatistics(read)).replicates;
+      }),
+    );
+
+  it('that is cancelled keeps and charges the cycles that are complete', async () => {
+    const bench = await makeBench();
+    const id = await prepare(bench, 20, asked);
+    stop = await startJobs(inProcessExecutor({ capacity: 1 }));
+    await whenJob(id, ({ replicatesDone }) => replicatesDone >= 60);
+    value(await cancelJob({ actor: bench.actors.modeller, team: bench.team.slug, job: id }));
+    const job = await whenOver(id);
+    await halt();
+    expect(job.state).toBe('cancelled');
+    expect(job.replicatesDone % 20).toBe(0);
+    expect(job.events).toBe(sum(await eventsOf(job, job.replicatesDone)));
+    expect(await replicatesByPoint(bench, job)).toEqual(births.map(() => job.replicatesDone));
+    await expectReconciled(bench, job);
+  });
+
+  it('whose model fails at one point keeps the cycles before, and names the point', async () => {
+    const bench = await makeBench();
+    setExecutor(inProcessExecutor());
+    const { id: quoteId, microcredits } = await quote(bench, { ...asked, replicates: 2_000 });
+    const row = (await Quote.findByPk(quoteId))!;
+    const probe = { seed: row.inputs.seed, inputs: row.inputs, modelVersionId: row.modelVersionId } as Job;
+    const events = (await pointsOfJob(probe, 2_000)).map(({ eventsPerReplicate }) => eventsPerReplicate);
+    // The budget that the third dearest of all replicates just keeps: two fail, and the first of them ends the job.
+    const eventBudgetPerReplicate = events.flatMap((each) => [...each]).sort((a, b) => b - a)[2]!;
+    const firstOver = events.map((each) => each.findIndex((count) => count > eventBudgetPerReplicate));
+    const failing = Math.min(...firstOver.filter((at) => at >= 0));
+    expect(failing).toBeGreaterThan(0);
+    await inWriteTransaction(() => row.update({ inputs: { ...row.inputs, eventBudgetPerReplicate } }));
+    const actor = bench.actors.modeller;
+    const cap = { capMicrocredits: 2 * microcredits.high };
+    const launched = value(await launchJob({ actor, team: bench.team.slug, quoteId, name: 'Fails', ...cap })).job;
+    await replan(launched.id, 111);
+    const job = await letRun(launched.id, inProcessExecutor({ capacity: 3 }));
+    const point = firstOver.indexOf(failing);
+    expect(job).toMatchObject({ state: 'failed', replicatesDone: failing });
+    expect(job.ending).toMatchObject({ reason: 'event_budget', failure: { replicate: failing, point } });
+    expect(job.ending?.detail).toContain(`Replicate ${failing} at point ${point}`);
+    expect(job.events).toBe(events.reduce((total, each) => total + sum(each.subarray(0, failing)), 0));
+    expect(await replicatesByPoint(bench, job)).toEqual(births.map(() => failing));
+    await expectReconciled(bench, job);
+  });
+
+  it('that stops by precision does so at the first look at which every point is precise enough', async () => {
+    const bench = await makeBench();
+    // Poisson with mean b at equilibrium, so 1.96/√(b·n) of the mean: at 4 % point 0 needs about 480 replicates, the others fewer than 256.
+    const stopping = { kind: 'precision' as const, observable: 'X', time: 10, relative: 0.04 };
+    // Batches of 64 end at every look.
+    const job = await letRun(await prepare(bench, 64, { ...asked, replicates: 4_000, stopping }));
+    expect(job.ending).toMatchObject({ state: 'done', reason: 'precision_reached' });
+    const halfWidths = async (replicates: number) =>
+      (await pointsOfJob(job, replicates)).map(({ summary }) => {
+        const { mean, meanStandardError } = momentsAt(asSummary(summary), 0, 4);
+        return (1.96 * meanStandardError) / mean;
+      });
+    expect([512, 1_024]).toContain(job.replicatesDone);
+    expect(Math.max(...(await halfWidths(job.replicatesDone)))).toBeLessThan(0.0401);
+    const earlier = await halfWidths(job.replicatesDone / 2);
+    expect(Math.max(...earlier)).toBeGreaterThan(0.0399);
+    expect(Math.min(...earlier)).toBeLessThan(0.0399);
+    expect(await replicatesByPoint(bench, job)).toEqual(births.map(() => job.replicatesDone));
+    await expectReconciled(bench, job);
+  });
+
+  it('survives stops at any moment, and is extended at all points: the results of one job of all its replicates', async () => {
+    const bench = await makeBench();
+    const whole = await letRun(await prepare(bench, 64, { ...asked, replicates: 450 }));
+    const id = await prepare(bench, 25, asked);
+    for (const done of [0, 50, 51, 200]) {
+      stop = await startJobs(inProcessExecutor());
+      await whenJob(id, ({ replicatesDone }) => replicatesDone >= done);
+      await halt();
+      forget(id);
+    }
+    expect((await letRun(id)).state).toBe('done');
+    const extend = async (more: ReturnType<typeof sweepOf>) => {
+      const { id: quoteId, microcredits } = await quote(bench, { ...asked, ...more, replicates: 150 });
+      const cap = { capMicrocredits: 2 * microcredits.high };
+      return extendJob({ actor: bench.actors.modeller, team: bench.team.slug, job: id, quoteId, ...cap });
+    };
+    for (const others of [
+      [5, 20],
+      [5, 20, 41],
+      [20, 5, 40],
+    ])
+      expect(await extend(sweepOf(others))).toMatchObject({ ok: false, code: 'invalid_input' });
+    value(await extend(sweepOf(births)));
+    await replan(id, 31);
+    const job = await letRun(id);
+    expect(job).toMatchObject({ state: 'done', replicatesDone: 450, events: whole.events });
+    expect(job.resultsDigest).toBe(whole.resultsDigest);
+    expect(await replicatesByPoint(bench, job)).toEqual(births.map(() => 450));
     await expectReconciled(bench, job);
   });
 });

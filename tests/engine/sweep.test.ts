@@ -1,4 +1,5 @@
 /** Points of a sweep: one compiled kernel, whole cycles, the same replicates as each point alone, and Bailey's moments at each. */
+import fc from 'fast-check';
 import { describe, expect, it, vi } from 'vitest';
 import { networksOf } from '@/domain/jobs/networks-of.ts';
 import type { Sweep } from '@/domain/jobs/sweep.ts';
@@ -41,6 +42,25 @@ describe('points of a sweep', () => {
     }
     const cycle = eventsPerCycle(all.points);
     expect(cycle[7]).toBe(all.points.reduce((sum, { eventsPerReplicate }) => sum + eventsPerReplicate[7]!, 0));
+  });
+
+  it('have the same replicates and the same cost of a cycle however their range is cut', async () => {
+    const cyclesOf = async (firstReplicate: number, replicateCount: number) => {
+      const task = pointsTask(networks(), { firstReplicate, replicateCount, horizon: 1, keptTraces: 60 });
+      const { points } = await runPoints(task);
+      return { costs: [...eventsPerCycle(points)], traces: points.map(({ traces }) => traces) };
+    };
+    const whole = await cyclesOf(0, 60);
+    await fc.assert(
+      fc.asyncProperty(fc.uniqueArray(fc.integer({ min: 1, max: 59 }), { maxLength: 6 }), async (cuts) => {
+        const starts = [0, ...cuts.sort((a, b) => a - b)];
+        const parts = await Promise.all(starts.map((start, i) => cyclesOf(start, (starts[i + 1] ?? 60) - start)));
+        expect(parts.flatMap(({ costs }) => costs)).toEqual(whole.costs);
+        for (const point of sweep.values.keys())
+          expect(parts.flatMap(({ traces }) => traces[point]!)).toEqual(whole.traces[point]);
+      }),
+      { seed: 6, numRuns: 20 },
+    );
   });
 
   it('end together before the first replicate that fails at any of them, named with its point', async () => {

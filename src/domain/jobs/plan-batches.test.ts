@@ -9,6 +9,7 @@ const inputs = fc.record({
   eventsPerReplicate: fc.double({ min: 0, max: 1e12, noNaN: true }),
   gridPoints: fc.integer({ min: 2, max: 10_001 }),
   observables: fc.integer({ min: 1, max: 100 }),
+  points: fc.integer({ min: 1, max: limits.sweepPoints }),
   firstOrdinal: fc.nat(1_000),
 });
 
@@ -36,7 +37,7 @@ describe('planBatches', () => {
         expect(batches.length).toBeLessThanOrEqual(limits.batchesPerJob);
         const least = Math.ceil(options.replicates / limits.batchesPerJob);
         const largest = Math.max(...batches.map(({ replicateCount }) => replicateCount));
-        expect(largest).toBeLessThanOrEqual(replicatesPerBatch);
+        expect(largest * options.points).toBeLessThanOrEqual(replicatesPerBatch);
         if (largest > least) expect(largest * unitsOf(options)).toBeLessThanOrEqual(unitsPerBatch);
       }),
       { seed: 2, numRuns: 200 },
