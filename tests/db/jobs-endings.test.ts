@@ -452,8 +452,8 @@ describe('a sweep', () => {
       forget(id);
     }
     expect((await letRun(id)).state).toBe('done');
-    const extend = async (more: ReturnType<typeof sweepOf>) => {
-      const { id: quoteId, microcredits } = await quote(bench, { ...asked, ...more, replicates: 150 });
+    const extend = async (more: ReturnType<typeof sweepOf>, replicates = 150) => {
+      const { id: quoteId, microcredits } = await quote(bench, { ...asked, ...more, replicates });
       const cap = { capMicrocredits: 2 * microcredits.high };
       return extendJob({ actor: bench.actors.modeller, team: bench.team.slug, job: id, quoteId, ...cap });
     };
@@ -463,6 +463,11 @@ describe('a sweep', () => {
       [20, 5, 40],
     ])
       expect(await extend(sweepOf(others))).toMatchObject({ ok: false, code: 'invalid_input' });
+    // With the 300 there are, 3,333,200 more at each of three points are over ten million.
+    expect(await extend(sweepOf(births), 3_333_200)).toMatchObject({
+      ok: false,
+      detail: expect.stringContaining('over all points') as string,
+    });
     value(await extend(sweepOf(births)));
     await replan(id, 31);
     const job = await letRun(id);

@@ -50,7 +50,7 @@ export async function cutAtCap(options: {
       state: 'stopped_at_cap',
       reason: 'cap_reached',
       detail:
-        `The next replicate would have cost more than the cap. ${job.replicatesDone.toLocaleString('en')} of ` +
+        `The next replicate${content.points.length > 1 ? ' of every point' : ''} would have cost more than the cap. ${job.replicatesDone.toLocaleString('en')} of ` +
         `${job.replicatesPlanned.toLocaleString('en')} replicates are complete; what was computed past them was not charged.`,
       failure: null,
     });

@@ -5,6 +5,7 @@ import { ModelVersion } from '@db/models/models.ts';
 import type { JobDocument } from '@/contracts/jobs.ts';
 import { continuesSample } from '@/domain/jobs/job-inputs.ts';
 import { stepJob } from '@/domain/jobs/job-state.ts';
+import { pointsOf } from '@/domain/jobs/sweep.ts';
 import { limits } from '@/domain/limits.ts';
 import { accept, refuse, type Result } from '@/domain/refusals.ts';
 import type { Actor } from '@/domain/teams/actor.ts';
@@ -91,10 +92,13 @@ function checkContinues(job: Job, quote: Quote): Result<null> {
   if (quote.modelVersionId !== job.modelVersionId || !continuesSample(job.inputs, quote.inputs))
     return refuse(
       'invalid_input',
-      'This quote is for other inputs. Quote the same model version, overrides, horizon, grid, method with its ε, traces and seed; only replicates and lane may differ.',
+      'This quote is for other inputs. Quote the same model version, overrides, points, horizon, grid, method with its ε, traces and seed; only replicates and lane may differ.',
       { errors: [{ path: 'quoteId', code: 'other_inputs', message: 'The quote does not continue this job.' }] },
     );
-  if (job.replicatesDone + quote.inputs.replicates > limits.replicatesPerJob)
-    return refuse('invalid_input', `A job has at most ${limits.replicatesPerJob.toLocaleString('en')} replicates.`);
+  if ((job.replicatesDone + quote.inputs.replicates) * pointsOf(job.inputs) > limits.replicatesPerJob)
+    return refuse(
+      'invalid_input',
+      `A job has at most ${limits.replicatesPerJob.toLocaleString('en')} replicates over all points.`,
+    );
   return accept(null);
 }
