@@ -12,6 +12,7 @@ import { cardsAndDisputes } from './0009-cards-and-disputes.ts';
 import { pilotMeans } from './0010-pilot-means.ts';
 import { webhooks } from './0020-webhooks.ts';
 import { secondFactor } from './0021-second-factor.ts';
+import { tokenCaps } from './0022-token-caps.ts';
 
 export const migrations: Migration[] = [
   people,
@@ -26,4 +27,5 @@ export const migrations: Migration[] = [
   pilotMeans,
   webhooks,
   secondFactor,
+  tokenCaps,
 ];

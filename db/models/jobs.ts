@@ -102,6 +102,8 @@ export class Segment extends Model<InferAttributes<Segment>, InferCreationAttrib
   declare ordinal: number;
   declare quoteId: string;
   declare userId: string;
+  /** Of the token it was launched with; null: by a person at a browser. */
+  declare tokenId: CreationOptional<string | null>;
   declare priceBookId: string;
   declare microcreditsPerMillionEvents: number;
   declare firstReplicate: number;
@@ -229,6 +231,7 @@ export function defineJobs(sequelize: Sequelize): void {
       ordinal: column.integer(),
       quoteId: column.text(),
       userId: column.text(),
+      tokenId: column.optionalText(),
       priceBookId: column.text(),
       microcreditsPerMillionEvents: column.integer(),
       firstReplicate: column.integer(),

@@ -80,6 +80,8 @@ export class ApiToken extends Model<InferAttributes<ApiToken>, InferCreationAttr
   declare userId: string;
   declare teamId: string;
   declare scopes: TokenScope[];
+  /** What launches with it may spend and hold in all; null: no cap of its own. */
+  declare capMicrocredits: CreationOptional<number | null>;
   declare createdAt: string;
   declare expiresAt: CreationOptional<string | null>;
   declare lastUsedAt: CreationOptional<string | null>;
@@ -169,6 +171,7 @@ export function definePeople(sequelize: Sequelize): void {
       userId: column.text(),
       teamId: column.text(),
       scopes: column.json('scopes'),
+      capMicrocredits: column.optionalInteger(),
       createdAt: column.text(),
       expiresAt: column.optionalText(),
       lastUsedAt: column.optionalText(),

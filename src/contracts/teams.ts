@@ -68,6 +68,10 @@ export const tokenDocument = z.object({
   name: z.string(),
   person: z.object({ id: z.string(), name: z.string() }),
   scopes: z.array(z.enum(tokenScopes)),
+  /** What its launches may spend and hold in all; null: no cap of its own. */
+  capMicrocredits: z.number().int().nullable(),
+  /** What they have spent and hold. */
+  usedMicrocredits: z.number().int(),
   createdAt: z.string(),
   expiresAt: z.string().nullable(),
   lastUsedAt: z.string().nullable(),
@@ -304,6 +308,8 @@ export const createToken = contract({
       .transform((held) => tokenScopes.filter((one) => held.includes(one))),
     /** Null: until it is revoked. */
     expiresInDays: z.number().int().min(1).max(limits.tokenDays).nullable().default(90),
+    /** What launches with the token may spend and hold in all. Null: only what bounds its person. */
+    capMicrocredits: z.number().int().min(1).max(limits.integer).nullable().default(null),
   }),
   answers: [
     {

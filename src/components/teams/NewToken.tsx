@@ -40,6 +40,7 @@ export function NewToken({
   const [name, setName] = useState('');
   const [scopes, setScopes] = useState<TokenScope[]>(grantable.filter((scope) => !scope.startsWith('billing:')));
   const [days, setDays] = useState('90');
+  const [cap, setCap] = useState('');
   const [pending, setPending] = useState(false);
   const [problem, setProblem] = useState<ProblemDocument | null>(null);
   const [secret, setSecret] = useState<string | null>(null);
@@ -47,7 +48,11 @@ export function NewToken({
   async function create(): Promise<void> {
     setPending(true);
     const expiresInDays = days === '' ? null : Number(days);
-    const called = await callApi(createToken, { path: { team }, body: { name, scopes, expiresInDays } });
+    const capMicrocredits = cap === '' ? null : Math.round(Number(cap) * 1_000_000);
+    const called = await callApi(createToken, {
+      path: { team },
+      body: { name, scopes, expiresInDays, capMicrocredits },
+    });
     setPending(false);
     setProblem(called.ok ? null : called.problem);
     if (!called.ok) return;
@@ -102,6 +107,19 @@ export function NewToken({
               onChange={(event) => setDays(event.target.value)}
             />
           </div>
+          {scopes.includes('jobs:launch') && (
+            <TextField
+              label="Spending cap"
+              hint="What jobs launched with the token may spend and hold in all. Empty: only the budgets bound it."
+              unit="credits"
+              type="number"
+              min="0.000001"
+              step="any"
+              fieldClassName="max-w-xs"
+              value={cap}
+              onChange={(event) => setCap(event.target.value)}
+            />
+          )}
           <fieldset>
             <legend className="mb-1 text-sm font-medium">Scopes</legend>
             <div className="grid gap-x-6 gap-y-2.5 border-t border-rule pt-3 sm:grid-cols-2">

@@ -11,6 +11,7 @@ import { QueryProvider } from '@/components/ui/QueryProvider.tsx';
 import { StateLabel } from '@/components/ui/StateLabel.tsx';
 import type { ProblemDocument } from '@/contracts/errors.ts';
 import { listTokens, revokeToken, type tokenDocument } from '@/contracts/teams.ts';
+import { creditsText } from '@/domain/pricing/credits-text.ts';
 import type { TokenScope } from '@/domain/teams/permissions.ts';
 import { NewToken } from './NewToken.tsx';
 
@@ -78,6 +79,11 @@ function List({ team, timeZone, scopes, suspended, initial }: TokensProps) {
                 <span className="block text-sm text-soft">
                   {token.person.name} · {token.scopes.join(', ')}
                 </span>
+                {token.capMicrocredits !== null && (
+                  <span className="block text-sm text-soft">
+                    {creditsText(token.usedMicrocredits)} of {creditsText(token.capMicrocredits)} spent or held
+                  </span>
+                )}
                 <span className="block text-sm text-soft">
                   {token.lastUsedAt ? (
                     <>

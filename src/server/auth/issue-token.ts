@@ -13,6 +13,8 @@ export interface IssueTokenOptions {
   scopes: TokenScope[];
   /** RFC 3339, null: until revoked. */
   expiresAt: string | null;
+  /** Microcredits; absent or null: no cap of its own. */
+  capMicrocredits?: number | null;
 }
 
 export async function issueToken(options: IssueTokenOptions): Promise<{ token: ApiToken; secret: string }> {

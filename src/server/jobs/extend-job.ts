@@ -59,6 +59,7 @@ export async function extendJob(options: {
       job,
       quote: quote.value,
       userId,
+      tokenId: options.actor.kind === 'token' ? options.actor.tokenId : null,
       capMicrocredits: cap.value,
       firstReplicate: job.replicatesDone,
       gridPoints: job.inputs.gridIntervals + 1,

@@ -71,6 +71,7 @@ export async function launchJob(options: {
       job,
       quote: quote.value,
       userId,
+      tokenId: options.actor.kind === 'token' ? options.actor.tokenId : null,
       capMicrocredits: cap.value,
       firstReplicate: 0,
       gridPoints: inputs.gridIntervals + 1,

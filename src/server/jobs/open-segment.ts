@@ -9,6 +9,7 @@ import { accept, refuse, type Result } from '@/domain/refusals.ts';
 import { nowText } from '../clock.ts';
 import { newId } from '../ids.ts';
 import { checkBudgets } from '../budgets/check-budgets.ts';
+import { checkTokenCap } from '../budgets/check-token-cap.ts';
 import { holdCredits } from '../ledger/hold-credits.ts';
 import { Op } from 'sequelize';
 
@@ -53,13 +54,17 @@ export async function openSegment(options: {
   job: Job;
   quote: Quote;
   userId: string;
+  /** Of an actor that came with one. */
+  tokenId: string | null;
   capMicrocredits: number;
   /** The first replicate of the segment. */
   firstReplicate: number;
   gridPoints: number;
   observables: number;
 }): Promise<Result<Segment>> {
-  const { job, quote, userId, capMicrocredits, firstReplicate } = options;
+  const { job, quote, userId, tokenId, capMicrocredits, firstReplicate } = options;
+  const byToken = await checkTokenCap({ tokenId, capMicrocredits });
+  if (!byToken.ok) return byToken;
   const within = await checkBudgets({ teamId: job.teamId, projectCodeId: job.projectCodeId, capMicrocredits });
   if (!within.ok) return within;
   const segmentId = newId('segment');
@@ -79,6 +84,7 @@ export async function openSegment(options: {
     ordinal: (lastSegment ?? -1) + 1,
     quoteId: quote.id,
     userId,
+    tokenId,
     priceBookId: quote.priceBookId,
     microcreditsPerMillionEvents: quote.microcreditsPerMillionEvents,
     firstReplicate,

@@ -18,12 +18,14 @@ export interface CreateTokenOptions {
   scopes: TokenScope[];
   /** Null: until revoked. */
   expiresInDays: number | null;
+  /** What its launches may spend and hold in all; absent or null: no cap of its own. */
+  capMicrocredits?: number | null;
 }
 
 export async function createToken(
   options: CreateTokenOptions,
 ): Promise<Result<{ token: PresentedToken; secret: string }>> {
-  const { actor, name, scopes, expiresInDays } = options;
+  const { actor, name, scopes, expiresInDays, capMicrocredits = null } = options;
   return inWriteTransaction(async () => {
     const authorised = await authorise({ actor, team: options.team, permission: 'tokens:manage' });
     if (!authorised.ok) return authorised;
@@ -41,7 +43,8 @@ export async function createToken(
     if (live >= limits.tokensPerMember)
       return refuse('limit_reached', `A member has at most ${limits.tokensPerMember} live tokens. Revoke some first.`);
     const expiresAt = expiresInDays === null ? null : nowText(expiresInDays * 24 * 60 * 60 * 1000);
-    const { token, secret } = await issueToken({ userId: user.id, teamId: team.id, name, scopes, expiresAt });
-    return accept({ token: presentToken(token, user), secret });
+    const owner = { userId: user.id, teamId: team.id };
+    const { token, secret } = await issueToken({ ...owner, name, scopes, expiresAt, capMicrocredits });
+    return accept({ token: presentToken(token, user, 0), secret });
   });
 }

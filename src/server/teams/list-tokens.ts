@@ -5,6 +5,7 @@ import { limits } from '@/domain/limits.ts';
 import { accept, type Result } from '@/domain/refusals.ts';
 import type { Actor } from '@/domain/teams/actor.ts';
 import type { TokenScope } from '@/domain/teams/permissions.ts';
+import { usedByTokens } from '../budgets/check-token-cap.ts';
 import { pageOf } from '../http/page-of.ts';
 import { authorise, type Authorised } from './authorise.ts';
 
@@ -13,15 +14,19 @@ export interface PresentedToken {
   name: string;
   person: { id: string; name: string };
   scopes: TokenScope[];
+  capMicrocredits: number | null;
+  usedMicrocredits: number;
   createdAt: string;
   expiresAt: string | null;
   lastUsedAt: string | null;
   revokedAt: string | null;
 }
 
-export const presentToken = (row: ApiToken, user: User): PresentedToken => {
+export const presentToken = (row: ApiToken, user: User, usedMicrocredits: number): PresentedToken => {
   const { id, name, scopes, createdAt, expiresAt = null, lastUsedAt = null, revokedAt = null } = row;
-  return { id, name, person: { id: user.id, name: user.name }, scopes, createdAt, expiresAt, lastUsedAt, revokedAt };
+  const person = { id: user.id, name: user.name };
+  const { capMicrocredits = null } = row;
+  return { id, name, person, scopes, capMicrocredits, usedMicrocredits, createdAt, expiresAt, lastUsedAt, revokedAt };
 };
 
 /** The tokens that an authorised person may see and revoke. */
@@ -47,5 +52,7 @@ export async function listTokens(options: {
   const { rows, nextCursor } = pageOf(found, limit);
   const users = await User.findAll({ where: { id: rows.map(({ userId }) => userId) } });
   const byId = new Map(users.map((user) => [user.id, user]));
-  return accept({ tokens: rows.map((row) => presentToken(row, byId.get(row.userId)!)), nextCursor });
+  const used = await usedByTokens(rows.map(({ id }) => id));
+  const tokens = rows.map((row) => presentToken(row, byId.get(row.userId)!, used.get(row.id) ?? 0));
+  return accept({ tokens, nextCursor });
 }
