@@ -1,5 +1,4 @@
 /** The second factor, end to end through the API, its codes made here by an implementation of our own of RFC 6238. */
-import { createHmac } from 'node:crypto';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
 import { RecoveryCode, SecondFactor } from '@db/models/second-factor.ts';
 import type { User } from '@db/models/people.ts';
@@ -7,6 +6,7 @@ import { issueLink } from '@/server/auth/one-time-links.ts';
 import { setClock } from '@/server/clock.ts';
 import { resetRateLimits } from '@/server/http/rate-limit.ts';
 import { makeUser, signedInHeaders, testPassword } from '../factories/people.ts';
+import { authenticatorCode } from '../support/authenticator.ts';
 import { callEndpoint } from '../support/call-endpoint.ts';
 import { useTestDatabase } from '../support/test-database.ts';
 
@@ -20,18 +20,7 @@ beforeEach(() => {
 });
 afterEach(() => setClock(null));
 
-/** Python's base64.b32decode and RFC 4226 by the letter, without the product's code. */
-function codeOf(secret: string, shift = 0): string {
-  let bits = 0n;
-  for (const letter of secret) bits = bits * 32n + BigInt('ABCDEFGHIJKLMNOPQRSTUVWXYZ234567'.indexOf(letter));
-  const key = Buffer.from(bits.toString(16).padStart(40, '0'), 'hex');
-  const step = Math.floor(nowMs / 30_000) + shift;
-  const digest = createHmac('sha1', key)
-    .update(Buffer.from(step.toString(16).padStart(16, '0'), 'hex'))
-    .digest('hex');
-  const offset = parseInt(digest.at(-1)!, 16) * 2;
-  return String((parseInt(digest.slice(offset, offset + 8), 16) & 0x7fffffff) % 1_000_000).padStart(6, '0');
-}
+const codeOf = (secret: string, shift = 0): string => authenticatorCode(secret, nowMs, shift);
 
 const post = async (path: string, body: object, headers: Record<string, string>) => {
   const answer = await callEndpoint({ method: 'POST', path: `/api/v1/${path}`, body, headers });

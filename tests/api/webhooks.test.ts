@@ -13,6 +13,7 @@ import { openSecret, sealSecret } from '@/server/auth/sealed-secret.ts';
 import { setClock } from '@/server/clock.ts';
 import { isForbidden, networksOf } from '@/server/webhooks/forbidden-address.ts';
 import { answerBytesMaximum, postGuarded, type PostOptions } from '@/server/webhooks/post-guarded.ts';
+import { setExecutor } from '@/server/jobs/executor.ts';
 import { changeWebhook } from '@/server/webhooks/change-webhook.ts';
 import { createWebhook } from '@/server/webhooks/create-webhook.ts';
 import { listDeliveries } from '@/server/webhooks/list-deliveries.ts';
@@ -22,7 +23,7 @@ import { removeWebhook } from '@/server/webhooks/remove-webhook.ts';
 import { sendWebhooks } from '@/server/webhooks/send-webhooks.ts';
 import { makeTeam, signedInHeaders } from '../factories/people.ts';
 import { callEndpoint } from '../support/call-endpoint.ts';
-import { value } from '../support/jobs.ts';
+import { inProcessExecutor, launch, makeBench, quote, startJobs, value, whenOver } from '../support/jobs.ts';
 import { useTestDatabase } from '../support/test-database.ts';
 
 useTestDatabase();
@@ -276,5 +277,27 @@ describe('deliveries', () => {
       const path = `/api/v1/teams/${made.team.slug}/webhooks`;
       expect((await callEndpoint({ method: 'POST', path, body, headers })).status).toBe(422);
     }
+  });
+});
+
+describe('a job', () => {
+  it.each([
+    ['job_finished', undefined, 'done'],
+    ['job_stopped_at_cap', 0.5, 'stopped_at_cap'],
+  ] as const)('tells of its end as %s in the transaction that ends it', async (kind, ofExpected, state) => {
+    setExecutor(inProcessExecutor());
+    const bench = await makeBench();
+    const by = { actor: bench.actors.owner, team: bench.team.slug };
+    const url = 'https://hooks.example/burette';
+    const { webhook } = value(await createWebhook({ ...by, url, kinds: ['job_finished', 'job_stopped_at_cap'] }));
+    const { microcredits } = await quote(bench, { replicates: 2_000 });
+    const cap = ofExpected ? Math.round(ofExpected * microcredits.expected) : undefined;
+    const { id } = await launch(bench, { replicates: 2_000 }, cap);
+    const stop = await startJobs(inProcessExecutor());
+    await whenOver(id);
+    await stop();
+    const rows = await WebhookDelivery.findAll({ where: { webhookId: webhook.id } });
+    expect(rows.map((row) => row.kind)).toEqual([kind]);
+    expect(JSON.parse(rows[0]!.body)).toMatchObject({ type: kind, data: { job: { id, state } } });
   });
 });
