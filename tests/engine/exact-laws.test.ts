@@ -20,7 +20,7 @@ import {
   epidemic,
   immigrationDeath,
 } from '@tests/factories/networks.ts';
-import { isomerisation, pureDeath, twoStageExpression } from '@tests/factories/networks.ts';
+import { isomerisation, network, pureDeath, twoStageExpression } from '@tests/factories/networks.ts';
 import { expectDistribution, expectMean, expectShare, expectVariance } from './statistical-checks.ts';
 
 /** The ensemble at the horizon. */
@@ -171,6 +171,43 @@ describe('two-stage gene expression (Thattai & van Oudenaarden 2001, PNAS 98:861
     expectVariance(at('protein').variance, variance, 4, n);
     const early = await ensemble(twoStageExpression(), 5, n);
     expectMean(early.at('protein').mean, 2.62357925, early.at('protein').sd, n);
+  });
+
+  it('has a stationary covariance of mRNA and protein of 1.66666667', async () => {
+    const n = 20_000;
+    const { traces } = await runBatch(
+      batchTask(twoStageExpression(), { horizon: 150, replicateCount: n, gridIntervals: 1, keptTraces: n }),
+    );
+    // Stationary means 1 and 10, known exactly, so that the products average to the covariance itself. What is left of the start
+    // at 0 is e^(−0.1 · 150), 3 in 10 million.
+    const products = Float64Array.from(traces, ({ values }) => (values[1]! - 1) * (values[3]! - 10));
+    const average = mean(products);
+    const sd = Math.sqrt(mean(products.map((product) => (product - average) ** 2)));
+    expect(products).toHaveLength(n);
+    expectMean(average, 1.66666667, sd, n);
+  });
+});
+
+describe('one enzyme molecule at a fixed 30 substrates (Kou et al. 2005, J. Phys. Chem. B 109:19068)', () => {
+  it('waits 4.66666667 for a turnover, with variance 15.1111111', async () => {
+    const n = 40_000;
+    const fixed = network({
+      counts: { S: 30, E: 1, ES: 0, P: 0 },
+      boundary: ['S'],
+      reactions: [
+        { consumes: { S: 1, E: 1 }, produces: { ES: 1 }, rate: 0.02 },
+        { consumes: { ES: 1 }, produces: { S: 1, E: 1 }, rate: 0.3 },
+        { consumes: { ES: 1 }, produces: { E: 1, P: 1 }, rate: 0.5 },
+      ],
+    });
+    const passages = [{ observable: 3, direction: 'rises_to' as const, threshold: 1 }];
+    const { passageTimes } = await runBatch(
+      batchTask(fixed, { horizon: 200, gridIntervals: 1, replicateCount: n, passages }),
+    );
+    const wait = mean(passageTimes);
+    expectMean(wait, 4.66666667, Math.sqrt(15.1111111), n);
+    // A sum of two exponentials: kurtosis 9 at most, which one exponential alone has.
+    expectVariance(mean(passageTimes.map((time) => (time - wait) ** 2)), 15.1111111, 9, n);
   });
 });
 
