@@ -7,6 +7,7 @@ import { verifyArchive } from '@/archives/verify/verify-archive.ts';
 import { createQuote } from '@/server/jobs/create-quote.ts';
 import { setExecutor } from '@/server/jobs/executor.ts';
 import { archiveFileName, jobFile } from '@/server/jobs/job-folder.ts';
+import { readSweepResults } from '@/server/jobs/read-sweep-results.ts';
 import { readStatistics } from '@/server/jobs/read-statistics.ts';
 import {
   inProcessExecutor,
@@ -93,6 +94,44 @@ describe('a sweep', () => {
       ok: false,
       code: 'invalid_input',
     });
+  });
+
+  // Immigration and death from 0 (Bailey 1964, chapter 8, from memory): Poisson with mean b(1 − e^−t), so P(no arrival by t) = e^−bt.
+  // Ten checks at 4.4 standard errors: a false alarm in about 9,000 runs.
+  it('tells one statistic at every point, with intervals that fit the closed forms', async () => {
+    const births = [0.05, 2];
+    const job = await launch(bench, {
+      replicates: 2_000,
+      gridIntervals: 4,
+      sweep: {
+        kind: 'list',
+        targets: [{ kind: 'parameter', id: 'birth' }],
+        values: births.map((birth) => [birth]),
+      },
+      outputs: { passages: [{ observable: 'X', risesTo: 1 }] },
+    });
+    expect((await run(job.id)).replicatesDone).toBe(2_000);
+    const read = (query: Omit<Parameters<typeof readSweepResults>[0], 'actor' | 'team' | 'job'>) =>
+      readSweepResults({ actor: bench.actors.viewer, team: bench.team.slug, job: job.id, ...query });
+    const mean = (birth: number) => birth * (1 - Math.exp(-2.5));
+    const exact = {
+      mean,
+      sd: (birth: number) => Math.sqrt(mean(birth)),
+      fano: () => 1,
+      cv: (birth: number) => 1 / Math.sqrt(mean(birth)),
+      passed: (birth: number) => 1 - Math.exp(-10 * birth),
+    };
+    for (const statistic of ['mean', 'sd', 'fano', 'cv', 'passed'] as const) {
+      const answer = value(await read({ statistic, observable: 'X', time: 2.5, passage: 0 }));
+      expect(answer).toMatchObject({ replicates: 2_000, statistic });
+      for (const [point, birth] of births.entries()) {
+        const { value: found, lower, upper } = answer.values[point]!;
+        const standardError = (upper! - lower!) / (2 * 1.96);
+        expect(Math.abs(found - exact[statistic](birth)), `${statistic} at ${birth}`).toBeLessThan(4.4 * standardError);
+      }
+    }
+    expect(await read({ statistic: 'mean', observable: 'Y', passage: 0 })).toMatchObject({ code: 'invalid_input' });
+    expect(await read({ statistic: 'passed', passage: 1 })).toMatchObject({ code: 'invalid_input' });
   });
 
   it('stops at its cap after whole cycles: every point has equally many, and the next cycle would not have fitted', async () => {
