@@ -18,6 +18,7 @@ export function jobJson({ job, model, version }: ArchiveSubject, { ensemble }: R
     overrides: inputs.overrides,
     keptTraces: inputs.keptTraces,
     passages: inputs.passages ?? [],
+    ...(inputs.correlations ? { correlations: inputs.correlations } : {}),
     eventBudgetPerReplicate: inputs.eventBudgetPerReplicate,
     points: pointsOf(inputs),
     ...(inputs.sweep ? { sweep: inputs.sweep } : {}),

@@ -2,11 +2,16 @@
 import type { JobInputs } from '@/domain/jobs/job-inputs.ts';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 import type { PointsTask } from '@/engine/run-points.ts';
+import { pairsOf } from '@/engine/statistics/cross-statistics.ts';
+
+/** All pairs of the observables of these ids, in the order asked for. */
+export const correlatedPairs = ({ observables }: ResolvedNetwork, ids: string[]): [number, number][] =>
+  pairsOf(ids.map((id) => observables.findIndex((observable) => observable.id === id)));
 
 export function jobTask(options: {
   inputs: Pick<
     JobInputs,
-    'horizon' | 'gridIntervals' | 'epsilon' | 'keptTraces' | 'passages' | 'eventBudgetPerReplicate'
+    'horizon' | 'gridIntervals' | 'epsilon' | 'keptTraces' | 'passages' | 'correlations' | 'eventBudgetPerReplicate'
   >;
   seed: string;
   /** At each of the job's points. */
@@ -24,6 +29,7 @@ export function jobTask(options: {
     gridIntervals,
     keptTraces,
     passages,
+    ...(inputs.correlations ? { pairs: correlatedPairs(range.networks[0]!, inputs.correlations) } : {}),
     eventBudgetPerReplicate,
     ...(epsilon === undefined ? {} : { epsilon }),
     purpose: 'job',

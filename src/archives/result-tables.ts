@@ -9,10 +9,13 @@ import { gridTimes, histogramTimes } from '@/domain/jobs/result-outputs.ts';
 import type { JobInputs, PassageInput } from '@/domain/jobs/job-inputs.ts';
 import { targetName, type Sweep } from '@/domain/jobs/sweep.ts';
 import type { EnsembleStatistics, EnsembleSummary } from '@/engine/ensemble.ts';
+import { crossPowers } from '@/engine/statistics/cross-cells.ts';
+import { crossMomentsAt } from '@/engine/statistics/cross-statistics.ts';
 import { distributionOf } from '@/engine/statistics/distribution-of.ts';
 import { passageEstimates } from '@/engine/statistics/first-passage.ts';
 import { standardProbabilities } from '@/engine/statistics/quantile.ts';
 import { asSummary, statisticsOf } from '@/engine/statistics/statistics-of.ts';
+import type { Summary } from '@/engine/statistics/summary.ts';
 import { joined } from '@/engine/statistics/block-collector.ts';
 import { scaleOf, sumText } from '@/engine/statistics/block-sums.ts';
 import type { BlockShare } from '@/engine/statistics/blocks.ts';
@@ -61,6 +64,24 @@ export const tableHeads = {
     'sum_of_cubes',
     'sum_of_fourths',
   ],
+  covariances: [
+    'point',
+    'observable',
+    'other_observable',
+    'time',
+    'covariance',
+    'covariance_standard_error',
+    'correlation',
+    'correlation_standard_error',
+  ],
+  'block-cross-sums': [
+    'point',
+    'first_replicate',
+    'observable',
+    'other_observable',
+    'time',
+    ...crossPowers.map(([x, y]) => `sum_x${x}_y${y}`),
+  ],
   quantiles: ['point', 'observable', 'time', ...standardProbabilities.map((probability) => `q${probability}`)],
 };
 
@@ -82,7 +103,7 @@ export function resultTables({
   inputs,
   results,
 }: {
-  inputs: Pick<JobInputs, 'horizon' | 'gridIntervals' | 'passages' | 'sweep'>;
+  inputs: Pick<JobInputs, 'horizon' | 'gridIntervals' | 'passages' | 'correlations' | 'sweep'>;
   results: Results;
 }): ResultTable[] {
   const { points, replicates } = results.ensemble;
@@ -113,6 +134,11 @@ export function resultTables({
     tables.push(
       table('first-passage', (point) => passageRows(timed(point), inputs.horizon)),
       table('passage-times', (point) => passageTimeRows(timed(point))),
+    );
+  if (inputs.correlations)
+    tables.push(
+      table('covariances', ({ summary }) => covarianceRows(asSummary(summary), times)),
+      table('block-cross-sums', (point, place) => blockCrossSumRows(point, results.blocks[place]!, times)),
     );
   if (replicates > 0 && points[0]!.traces.length > 0) {
     const { observables } = points[0]!.summary;
@@ -214,6 +240,34 @@ function* blockSumRows(point: PointEnsemble, share: BlockShare, times: number[])
     for (const [observable, { id, kind }] of observables.entries())
       for (const [gridPoint, time] of times.entries())
         yield [firstReplicate, id, time, ...powerSumTexts(sums.sums(observable, gridPoint), scaleOf(kind))];
+}
+
+/** Pairs in order of the observables asked for. */
+function* covarianceRows(summary: Summary, times: number[]): Iterable<Row> {
+  const { observables, pairs = [] } = summary.shape;
+  for (const [pair, [first, second]] of pairs.entries())
+    for (const [gridPoint, time] of times.entries()) {
+      const moments = crossMomentsAt(summary, pair, gridPoint);
+      yield [
+        observables[first]!.id,
+        observables[second]!.id,
+        time,
+        moments.covariance,
+        moments.covarianceStandardError,
+        moments.correlation,
+        moments.correlationStandardError,
+      ];
+    }
+}
+
+function* blockCrossSumRows(point: PointEnsemble, share: BlockShare, times: number[]): Iterable<Row> {
+  const { observables, pairs = [] } = asSummary(point.summary).shape;
+  for (const { firstReplicate, sums } of blocksIn(point, share))
+    for (const [pair, [first, second]] of pairs.entries())
+      for (const [gridPoint, time] of times.entries()) {
+        const ids = [observables[first]!.id, observables[second]!.id];
+        yield [firstReplicate, ...ids, time, ...sums.crossSums(pair, gridPoint).map(String)];
+      }
 }
 
 const powerSumTexts = (sums: bigint[], scale: bigint): string[] => sums.map((sum) => sumText(sum, scale));

@@ -3,6 +3,7 @@ import { writeFile } from 'node:fs/promises';
 import { asSummary } from '@/engine/statistics/statistics-of.ts';
 import { recordsOf, replicatesPerBlock } from '@/engine/statistics/blocks.ts';
 import { BlockMerger } from '@/engine/statistics/merge-blocks.ts';
+import { sumCells } from '@/engine/statistics/summary.ts';
 import { encodeBatch, readBatchFile, sha256Hex } from './batch-file.ts';
 import { addBatch, asBatch, emptyEnsemble, recordsOfPoint, type Ensemble } from './ensemble.ts';
 import type { ArchiveSubject, Results } from './subject.ts';
@@ -83,7 +84,6 @@ async function readResults(
 
 function mergersOf({ points }: Ensemble, replicates: number): BlockMerger[] {
   const { shape } = asSummary(points[0]!.summary);
-  const cells = shape.observables.length * shape.gridPoints;
-  const size = replicatesPerBlock({ replicates, cells, points: points.length });
+  const size = replicatesPerBlock({ replicates, cells: sumCells(shape), points: points.length });
   return points.map(() => new BlockMerger(shape, size));
 }

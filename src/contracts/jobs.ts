@@ -119,6 +119,8 @@ export const quoteRequest = z.strictObject({
     .strictObject({
       keptTraces: z.number().int().min(0).max(limits.keptTraces).optional(),
       passages: z.array(passageRequest).max(limits.passagesPerJob).optional(),
+      /** Observables, all whole counts, whose covariances and correlations are wanted: two or more. */
+      correlations: z.array(id).min(2).max(limits.correlatedObservables).optional(),
     })
     .optional(),
 });
@@ -508,6 +510,36 @@ export const jobPassages = contract({
   refusals: [...reading, 'invalid_input', 'results_not_ready'],
 });
 
+const orNulls = z.array(z.number().nullable());
+
+export const correlationsDocument = z.object({
+  replicates: count,
+  times: numbers,
+  /** Every two of the observables asked for at launch; none when none were. Null where a number does not exist. */
+  pairs: z.array(
+    z.object({
+      observables: z.tuple([z.string(), z.string()]),
+      covariance: orNulls,
+      covarianceStandardError: orNulls,
+      correlation: orNulls,
+      correlationStandardError: orNulls,
+    }),
+  ),
+});
+export type CorrelationsDocument = z.infer<typeof correlationsDocument>;
+
+export const jobCorrelations = contract({
+  id: 'jobCorrelations',
+  feature: 'jobs',
+  method: 'GET',
+  path: `${jobPath}/{job}/correlations`,
+  summary: 'Covariances and correlations asked for at launch, with delta-method standard errors, at every grid time',
+  access: { kind: 'team', permission: 'results:read' },
+  query: z.object({ point }),
+  answers: [{ status: 200, description: 'Covariances and correlations', schema: correlationsDocument }],
+  refusals: [...reading, 'invalid_input', 'results_not_ready'],
+});
+
 export const jobDistribution = contract({
   id: 'jobDistribution',
   feature: 'jobs',
@@ -528,6 +560,10 @@ export const jobDistribution = contract({
         /** 1 where the count is exact for one value. */
         widths: numbers,
         counts: z.array(count),
+        /** Hartigan's dip test; null where it says nothing: few replicates, real numbers, counts from 4096 on. */
+        modes: z
+          .object({ dip: z.number(), pValue: z.number(), uniformSamples: count, moreThanOne: z.boolean() })
+          .nullable(),
       }),
     },
   ],
@@ -603,6 +639,7 @@ export const jobContracts = [
   jobStatistics,
   jobDistribution,
   jobPassages,
+  jobCorrelations,
   jobTraces,
   jobBatches,
 ];

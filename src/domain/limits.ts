@@ -44,6 +44,9 @@ export const limits = {
   keptTraces: 1_000,
   /** First passages noted by a job; a kernel has a bit for each. */
   passagesPerJob: 20,
+  /** Observables whose covariances a job notes, and pairs × grid points × points of them. */
+  correlatedObservables: 20,
+  correlationCells: 50_000,
   sweepPoints: 1_000,
   /** Points of a sweep × reactions of its network. */
   sweepReactions: 200_000,

@@ -8,7 +8,7 @@
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 import type { BlockShare } from './statistics/blocks.ts';
 
-export type StreamPurpose = 'job' | 'pilot' | 'preview';
+export type StreamPurpose = 'job' | 'pilot' | 'preview' | 'modes';
 export type KernelName =
   | 'direct-scalar'
   | 'direct-simd'
@@ -46,6 +46,8 @@ export interface BatchTask {
   keptTraces: number;
   /** First passages to time; none when left out. */
   passages?: Passage[];
+  /** Pairs of counts, by their places among the network's observables, whose covariance is wanted; none when left out. */
+  pairs?: [number, number][];
   /** Fails the replicate that would exceed it; null for none. A property of the job, never of the batch. */
   eventBudgetPerReplicate: number | null;
   /** Stops the batch early after this many events in all, keeping complete replicates (pilots); null for none. */

@@ -110,7 +110,8 @@ class Collector {
       id,
       kind: point.prepared.observablePlaces[i]!.kind,
     }));
-    const shape = { observables, gridPoints: task.gridIntervals + 1 };
+    const { pairs = [] } = task;
+    const shape = { observables, gridPoints: task.gridIntervals + 1, ...(pairs.length > 0 ? { pairs } : {}) };
     this.#blocks = task.blocks ? new BlockCollector(shape, task.firstReplicate, point.prepared.passages.length) : null;
     this.#summary = this.#blocks?.summary ?? new Summary(shape);
   }

@@ -10,6 +10,7 @@ import {
   passagesDocument,
   quoteDocument,
   statisticsDocument,
+  correlationsDocument,
   type JobDocument,
   type QuoteDocument,
 } from '@/contracts/jobs.ts';
@@ -94,8 +95,11 @@ describe('the main path', () => {
     const distribution = (await (await get(`jobs/${id}/distribution?observable=X&time=9.9`)).json()) as {
       time: number;
       counts: number[];
+      modes: { pValue: number; moreThanOne: boolean };
     };
     expect(distribution.time).toBe(10);
+    expect(distribution.modes.moreThanOne).toBe(false);
+    expect(distribution.modes.pValue).toBeGreaterThan(0.01);
     expect(distribution.counts.reduce((sum, count) => sum + count, 0)).toBe(1_000);
 
     const traces = (await (await get(`jobs/${id}/traces?limit=3`)).json()) as { traces: { values: number[][] }[] };
@@ -136,6 +140,39 @@ describe('the main path', () => {
     const [observable] = statistics.observables;
     expect([observable!.mean[1], observable!.sd[1]]).toEqual([7, 0]);
     expect(observable!.mean[2]).toBeLessThan(90);
+  });
+
+  it('answers covariances asked for, exactly −1 correlated where A + B is kept, and refuses what is no pair of counts', async () => {
+    const turnover = {
+      species: [
+        { id: 'A', initialCount: 30 },
+        { id: 'B', initialCount: 0 },
+      ],
+      reactions: [
+        { id: 'there', equation: 'A -> B', rateLaw: { kind: 'massAction', constant: '1' } },
+        { id: 'back', equation: 'B -> A', rateLaw: { kind: 'massAction', constant: '2' } },
+      ],
+      observables: [{ id: 'share', expression: 'A / (A + B)' }],
+    };
+    const stored = await post('models', { name: 'Turnover of two', network: turnover });
+    const { version } = (await stored.json()) as { version: { id: string } };
+    const request = { modelVersionId: version.id, replicates: 200, horizon: 10, gridIntervals: 2 };
+    const { id } = await launched(await quoted({ ...request, outputs: { correlations: ['A', 'B'] } }));
+    await whenOver(id);
+    const found = correlationsDocument.parse(await (await get(`jobs/${id}/correlations`)).json());
+    const statistics = statisticsDocument.parse(await (await get(`jobs/${id}/statistics`)).json());
+    expect(found.pairs).toHaveLength(1);
+    const [{ observables, covariance, correlation, correlationStandardError }] = found.pairs as [
+      (typeof found.pairs)[number],
+    ];
+    expect(observables).toEqual(['A', 'B']);
+    expect(covariance[2]).toBeCloseTo(-(statistics.observables[0]!.sd[2]! ** 2), 9);
+    expect([covariance[0], correlation[0]]).toEqual([0, null]);
+    expect([correlation[2], correlationStandardError[2]]).toEqual([-1, 0]);
+    for (const correlations of [['A', 'C'], ['A', 'share'], ['A', 'A'], ['A']])
+      expect(
+        await problem(await post('quotes', { ...quoteRequest(bench), ...request, outputs: { correlations } })),
+      ).toMatchObject({ status: 422, code: 'invalid_input' });
   });
 
   it('answers first passages asked for, in the API and in the archive, the same after an extension', async () => {

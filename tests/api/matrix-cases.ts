@@ -99,6 +99,7 @@ export const cases: Record<string, Case> = {
   jobProgress: plain,
   jobStatistics: plain,
   jobPassages: plain,
+  jobCorrelations: plain,
   readSweep: { query: '?observable=A' },
   jobDistribution: { query: '?observable=A&time=1' },
   jobTraces: plain,

@@ -44,6 +44,7 @@ export async function makeArchive(options: {
   keptTraces?: number;
   gridIntervals?: number;
   sweep?: Sweep;
+  correlations?: string[];
 }): Promise<MadeArchive> {
   const { folder, replicates, document = archivedNetwork, batchSizes = [replicates] } = options;
   const seed = '20261201';
@@ -59,6 +60,7 @@ export async function makeArchive(options: {
     passages: [{ observable: 'Y', direction: 'rises_to', threshold: 12 }],
     eventBudgetPerReplicate: 1_000_000,
     ...(options.sweep ? { sweep: options.sweep } : {}),
+    ...(options.correlations ? { correlations: options.correlations } : {}),
   };
   const resolved = networksOf(document, inputs);
   if (!resolved.ok) throw new Error(resolved.problems[0]?.message);

@@ -5,7 +5,7 @@ import { replicatesPerBlock } from '@/engine/statistics/blocks.ts';
 import { momentsOf } from '@/engine/statistics/moments.ts';
 import { addSums, noSums, type PowerSums } from '@/engine/statistics/power-sums.ts';
 import { rankOf, standardProbabilities } from '@/engine/statistics/quantile.ts';
-import type { SummaryShape } from '@/engine/statistics/summary.ts';
+import { sumCells, type SummaryShape } from '@/engine/statistics/summary.ts';
 import type { ZipReader } from '@/formats/zip/zip-reader.ts';
 import { tableHeads } from '../result-tables.ts';
 import type { JobFile } from './job-file.ts';
@@ -19,7 +19,7 @@ export interface ListedBlock {
   digest: string;
 }
 
-interface Checking {
+export interface Checking {
   zip: ZipReader;
   job: JobFile;
   shape: SummaryShape;
@@ -27,20 +27,20 @@ interface Checking {
   problem: (text: string) => void;
 }
 
-const table = ({ zip }: Checking, name: keyof typeof tableHeads) => {
+export const table = ({ zip }: Checking, name: keyof typeof tableHeads) => {
   const path = `results/${name}.csv`;
   return readTable(path, zip.read(path), tableHeads[name]);
 };
 
 /** As tables write numbers: none where it does not exist. */
-const cellText = (value: number): string => (Number.isFinite(value) ? String(value) : '');
+export const cellText = (value: number): string => (Number.isFinite(value) ? String(value) : '');
 
 const wholeOf = (text: string): number => (/^\d{1,16}$/.test(text) ? Number(text) : NaN);
 
 /** blocks.csv, against the plan that the number of replicates asks for. */
 export async function listedBlocks(checking: Checking): Promise<ListedBlock[]> {
   const { job, shape, problem } = checking;
-  const cells = shape.observables.length * shape.gridPoints;
+  const cells = sumCells(shape);
   const size = replicatesPerBlock({ replicates: job.replicates, cells, points: job.points });
   const perPoint = Math.ceil(job.replicates / size);
   const blocks: ListedBlock[] = [];

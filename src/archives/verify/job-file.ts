@@ -38,6 +38,7 @@ const jobFile = z
     passages: z
       .array(z.object({ observable: z.string(), direction: z.enum(['rises_to', 'falls_to']), threshold: z.number() }))
       .max(limits.passagesPerJob),
+    correlations: z.array(z.string()).min(2).max(limits.correlatedObservables).optional(),
     eventBudgetPerReplicate: whole(Number.MAX_SAFE_INTEGER),
     points: whole(limits.sweepPoints).min(1),
     replicates: whole(limits.replicatesPerJob).min(1),

@@ -13,6 +13,7 @@ import { addBatch, emptyEnsemble, type Ensemble } from '../ensemble.ts';
 import { jobTask } from '../job-task.ts';
 import { csvPieces, resultTables } from '../result-tables.ts';
 import { tracesParquet } from '../traces-parquet.ts';
+import type { BlockCrossSums } from './check-covariances.ts';
 import type { ListedBlock, ReAdded } from './check-sums.ts';
 import type { JobFile } from './job-file.ts';
 import { readTable } from './read-table.ts';
@@ -27,6 +28,7 @@ interface ReRun {
   /** As listed, by point and then by replicate. */
   events: Float64Array;
   reAdded: ReAdded;
+  crossSums: BlockCrossSums;
   places: number[];
   problem: (text: string) => void;
   onBlock: (place: number) => void;
@@ -139,6 +141,11 @@ async function reRunBlock({ job, networks, shape, ...options }: ReRun, place: nu
     const { id } = shape.observables[Math.floor(differs / shape.gridPoints)]!;
     problem(`Run again, ${name} has other sums, first of ${id} at ${time}.`);
   }
+  const crossDiffers = (options.crossSums[place] ?? []).some((sums, cell) => {
+    const again = block!.sums.crossSums(Math.floor(cell / shape.gridPoints), cell % shape.gridPoints);
+    return sums.some((sum, power) => sum !== again[power]);
+  });
+  if (crossDiffers) problem(`Run again, ${name} has other sums of products.`);
   const replicate = result.eventsPerReplicate.findIndex(
     (count, i) => count !== options.events[point * job.replicates + firstReplicate + i],
   );

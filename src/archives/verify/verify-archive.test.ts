@@ -183,6 +183,43 @@ describe('an altered archive, its checksums made to fit', () => {
   });
 });
 
+describe('an archive with correlations', () => {
+  const correlations = ['X', 'Y'];
+
+  it('holds, its tables the same for any batches', async () => {
+    const { task } = await makeArchive({ folder, replicates, batchSizes: [250], correlations });
+    const ofBatches = await readFile(task.archiveFile);
+    const report = await verify(ofBatches);
+    expect(report.problems).toEqual([]);
+    expect(report.checked.join(' ')).toMatch(/36 numbers of covariances.csv.* every byte agrees/s);
+    const other = await makeArchive({ folder, replicates, batchSizes: [77, 300], correlations });
+    const [first, second] = [ofBatches, await readFile(other.task.archiveFile)].map((bytes) => unzipSync(bytes));
+    for (const table of ['covariances', 'block-cross-sums', 'blocks'])
+      expect(textOf(second![`results/${table}.csv`])).toBe(textOf(first![`results/${table}.csv`]));
+  });
+
+  it('is found altered: a covariance and a correlation by re-adding, a sum by running its block again', async () => {
+    const { task } = await makeArchive({ folder, replicates, batchSizes: [600], correlations });
+    const whole = await readFile(task.archiveFile);
+    const last = (cells: string[]) => cells[1] === 'X' && cells[3] === '4';
+    for (const column of [4, 5, 6, 7]) {
+      const altered = forged(whole, (files) => change(files, 'covariances', last, (cells) => (cells[column] += '1')));
+      expect((await verify(altered, [])).problems).toEqual([
+        expect.stringMatching(/of X and Y at 4 it has .* the blocks/),
+      ]);
+    }
+    const sumAltered = forged(whole, (files) =>
+      change(
+        files,
+        'block-cross-sums',
+        ([, first]) => first === '256',
+        (cells) => (cells[10] = String(Number(cells[10]) + 1)),
+      ),
+    );
+    expect((await verify(sumAltered, [1])).problems.join()).toMatch(/256 to 511 has other sums of products/);
+  });
+});
+
 describe('an archive whose checksums do not fit', () => {
   it('is named file by file', async () => {
     const files = unzipSync(zip);

@@ -6,10 +6,13 @@ import { createHash } from 'node:crypto';
 import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 import { networksOf } from '@/domain/jobs/networks-of.ts';
 import { prepareNetwork } from '@/engine/kernel/prepare-network.ts';
+import { limits } from '@/domain/limits.ts';
+import { correlatedPairs } from '../job-task.ts';
 import type { SummaryShape } from '@/engine/statistics/summary.ts';
 import { ZipError, ZipReader } from '@/formats/zip/zip-reader.ts';
 import { sha256Hex } from '../batch-file.ts';
 import { digestOf } from '../write-archive.ts';
+import { blockCrossSums, checkCovariances } from './check-covariances.ts';
 import * as checks from './check-sums.ts';
 import { readJobFile, readModelFile, type JobFile } from './job-file.ts';
 import { TableError } from './read-table.ts';
@@ -69,7 +72,12 @@ async function verify(
   const shape: SummaryShape = {
     observables: network.observables.map(({ id }, i) => ({ id, kind: prepared.observablePlaces[i]!.kind })),
     gridPoints: job.gridIntervals + 1,
+    ...(job.correlations ? { pairs: correlatedPairs(network, job.correlations) } : {}),
   };
+  if (shape.pairs?.some((pair) => pair.some((observable) => shape.observables[observable]?.kind !== 'count')))
+    throw new Stop('job.json asks for correlations of what is no count of the model.');
+  if ((shape.pairs ?? []).length * shape.gridPoints * job.points > limits.correlationCells)
+    throw new Stop('job.json asks for more correlations than a job has.');
   const checking = { zip, job, shape, problem };
   const blocks = await checks.listedBlocks(checking);
   report.blocks = blocks.length;
@@ -79,6 +87,10 @@ async function verify(
   const numbers = await checks.checkSummary(checking, reAdded.totals);
   const histograms = await checks.checkHistograms(checking, reAdded.totals);
   const quantiles = await checks.checkQuantiles(checking, histograms);
+  const crossSums = await blockCrossSums(checking, blocks);
+  const covariances = await checkCovariances(checking, blocks, { reAdded, crossSums });
+  if (report.problems.length === 0 && covariances > 0)
+    report.checked.push(`${covariances} numbers of covariances.csv follow from the blocks.`);
   if (report.problems.length === 0)
     report.checked.push(
       `${blocks.length} blocks re-added: ${numbers} numbers of summary.csv, ${quantiles} of quantiles.csv, ` +
@@ -86,7 +98,19 @@ async function verify(
     );
   const { onBlock = () => undefined } = options;
   const before = report.problems.length;
-  report.reRun = await reRun({ zip, job, networks, shape, blocks, events, reAdded, places, problem, onBlock });
+  report.reRun = await reRun({
+    zip,
+    job,
+    networks,
+    shape,
+    blocks,
+    events,
+    reAdded,
+    crossSums,
+    places,
+    problem,
+    onBlock,
+  });
   if (report.reRun === 0 || report.problems.length > before) return;
   report.checked.push(`${report.reRun} of ${blocks.length} blocks run again: digests, sums, events and traces agree.`);
   if (report.reRun === blocks.length) report.checked.push('All tables made again from them: every byte agrees.');

@@ -10,6 +10,7 @@ import type { FigureContent } from '@/components/charts/figure.ts';
 import { Notice } from '@/components/ui/Notice.tsx';
 import { Waiting } from '@/components/ui/Progress.tsx';
 import { jobDistribution, type JobDocument } from '@/contracts/jobs.ts';
+import type { ModeEvidence } from '@/engine/statistics/mode-evidence.ts';
 import { timeWithUnit } from './job-words.ts';
 import { ObservableSelect } from './ObservableSelect.tsx';
 import type { NamedObservable, Results } from './results-data.ts';
@@ -74,8 +75,22 @@ export function DistributionTab(props: {
       </div>
       {query.isError && <Notice tone="failure">{query.error.message}</Notice>}
       {content ? <Figure {...content} /> : !query.isError && <Waiting>Reading the distribution</Waiting>}
+      {data && <p className="mt-1 text-sm text-soft">{modesText(data.modes)}</p>}
     </>
   );
+}
+
+/** What the test says, and no more: not finding a second mode does not show that there is one only. */
+function modesText(modes: ModeEvidence | null): string {
+  if (!modes)
+    return 'Not tested for more than one mode: the dip test asks for whole counts below 4,096 from at least 20 replicates.';
+  const { dip, pValue, uniformSamples, moreThanOne } = modes;
+  const least = 1 / (uniformSamples + 1);
+  const p = pValue <= least * 1.5 ? `p ≤ ${numberText(least, 1)}` : `p = ${numberText(pValue, 2)}`;
+  const test = `Hartigan’s dip ${numberText(dip, 3)}, ${p} against ${countText(uniformSamples)} uniform samples`;
+  return moreThanOne
+    ? `Evidence for more than one mode at this time (${test}). One mode would be flagged in at most 1 of 100 such looks.`
+    : `No evidence for more than one mode at this time (${test}). A second mode that is small or near can go unseen.`;
 }
 
 function range(values: readonly number[]): string {

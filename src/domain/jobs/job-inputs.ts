@@ -31,6 +31,8 @@ export interface JobInputs {
   keptTraces: number;
   /** None when left out. */
   passages?: PassageInput[] | undefined;
+  /** Ids of observables, all counts, whose covariances are noted; none when left out. */
+  correlations?: string[] | undefined;
   /** Fails the replicate that would exceed it. */
   eventBudgetPerReplicate: number;
   /** Ends the job before `replicates` once a mean is known well enough; shapes no replicate. */

@@ -8,7 +8,12 @@ export const replicatesPerPoint = 2 ** 40;
 export const pointsPerSeed = 2 ** 24;
 
 /** Fixed for ever: a change would change every result. */
-const purposeWords: Record<StreamPurpose, bigint> = { job: 0n, pilot: 0x70696c6f74n, preview: 0x70726576696577n };
+const purposeWords: Record<StreamPurpose, bigint> = {
+  job: 0n,
+  pilot: 0x70696c6f74n,
+  preview: 0x70726576696577n,
+  modes: 0x6d6f646573n,
+};
 
 /** `seed` is a decimal string of an integer in [0, 2^64). Throws RangeError on anything else. */
 export function parseSeed(seed: string): bigint {

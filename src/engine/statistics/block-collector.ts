@@ -8,7 +8,7 @@ import {
   type Records,
 } from './blocks.ts';
 import { encodeSums } from './block-sums.ts';
-import { Summary, type ReplicateGroup, type SummaryShape } from './summary.ts';
+import { sumCells, Summary, type ReplicateGroup, type SummaryShape } from './summary.ts';
 
 interface Part {
   firstReplicate: number;
@@ -34,7 +34,7 @@ export class BlockCollector {
   constructor(shape: SummaryShape, firstReplicate: number, passages: number) {
     this.#shape = shape;
     this.#passages = passages;
-    this.#cells = shape.observables.length * shape.gridPoints;
+    this.#cells = sumCells(shape);
     this.#next = firstReplicate;
     this.summary = new Summary(shape);
     this.#leaf = { firstReplicate, summary: new Summary(shape) };

@@ -1,4 +1,5 @@
 /** Exact sums of the first four powers of every observable at every grid time, for a part of an ensemble. */
+import { CrossCells, type CrossSums } from './cross-cells.ts';
 import { ByteReader, ByteWriter } from './byte-codec.ts';
 import { addSums, noSums, type PowerSums } from './power-sums.ts';
 import { realSumScale } from './real-cells.ts';
@@ -6,7 +7,7 @@ import type { Summary, SummaryShape } from './summary.ts';
 
 const kinds = { small: 0, large: 1 } as const;
 
-/** Observable by observable, then by grid time: four sums each. */
+/** Observable by observable, then by grid time: four sums each; then those of the pairs. */
 export function encodeSums(summary: Summary): Uint8Array {
   const writer = new ByteWriter();
   for (let observable = 0; observable < summary.observables.length; observable++)
@@ -19,6 +20,7 @@ export function encodeSums(summary: Summary): Uint8Array {
         for (const sum of kind === 'count' ? summary.counts.sums(cell) : summary.reals.sums(cell))
           writeLarge(writer, sum);
     }
+  summary.cross.encode(writer);
   return writer.bytes();
 }
 
@@ -47,10 +49,12 @@ const trailingZeros = (value: bigint): number => {
 export class BlockSums {
   readonly #shape: SummaryShape;
   readonly #cells: PowerSums[];
+  readonly #cross: CrossCells;
 
   constructor(shape: SummaryShape) {
     this.#shape = shape;
     this.#cells = Array.from({ length: shape.observables.length * shape.gridPoints }, noSums);
+    this.#cross = new CrossCells((shape.pairs ?? []).length * shape.gridPoints);
   }
 
   /** Adds what `encodeSums` wrote of another part. Throws RangeError on other bytes. */
@@ -60,12 +64,18 @@ export class BlockSums {
       const sum = reader.byte() === kinds.small ? () => BigInt(reader.unsigned()) : () => readLarge(reader);
       addSums(cell, [sum(), sum(), sum(), sum()]);
     }
+    this.#cross.addEncoded(reader);
     if (!reader.atEnd) throw new RangeError('the sums have bytes left over');
   }
 
   /** Of a real observable in units of 2^-1074 (`scaleOf`). */
   sums(observable: number, gridPoint: number): PowerSums {
     return this.#cells[observable * this.#shape.gridPoints + gridPoint]!;
+  }
+
+  /** Of a pair, by its place in the shape. */
+  crossSums(pair: number, gridPoint: number): CrossSums {
+    return this.#cross.sums(pair * this.#shape.gridPoints + gridPoint);
   }
 
   encode(): Uint8Array {
@@ -78,6 +88,7 @@ export class BlockSums {
         else writeLarge(writer, sum);
       }
     }
+    this.#cross.encode(writer);
     return writer.bytes();
   }
 }

@@ -18,7 +18,7 @@ const sumRowsMost = 2 ** 19;
 
 /**
  * Replicates of each block but the last: 256 · 2^k with the least k that keeps blocks and rows of sums within bounds. `cells`:
- * observables × grid times. Grows with `replicates`, so what is summed for a prefix can be re-added for a longer one.
+ * (observables + pairs) × grid times. Grows with `replicates`, so what is summed for a prefix can be re-added for a longer one.
  */
 export function replicatesPerBlock(options: { replicates: number; cells: number; points?: number }): number {
   const { replicates, cells, points = 1 } = options;

@@ -8,6 +8,7 @@ import { splitMix64 } from '@/engine/random/splitmix64.ts';
 import { uniform53, Xoshiro256 } from '@/engine/random/xoshiro256.ts';
 import type { PassageInput } from '@/domain/jobs/job-inputs.ts';
 import type { PrecisionTarget } from '@/domain/jobs/precision.ts';
+import { prepareNetwork } from '@/engine/kernel/prepare-network.ts';
 import { largestLeapingNetwork } from '@/engine/leaping/tau-leaping.ts';
 import { limits } from '@/domain/limits.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
@@ -33,6 +34,7 @@ export function checkQuoteRequest(request: QuoteRequest, document: NetworkDocume
   const network = resolved.networks[0]!;
   const faults = [
     ...unknownPassages(request, network),
+    ...unfitCorrelations(request, network, resolved.networks.length),
     ...unfitStopping(request, network),
     ...unfitMethod(request, network),
     ...tooLarge(request, network, resolved.networks.length),
@@ -193,6 +195,29 @@ function unknownPassages(request: QuoteRequest, network: ResolvedNetwork): Input
           },
         ],
   );
+}
+
+/** Unknown, repeated or real-valued observables, and more pairs than are kept. */
+function unfitCorrelations(request: QuoteRequest, network: ResolvedNetwork, points: number): InputFault[] {
+  const chosen = request.outputs?.correlations;
+  if (!chosen) return [];
+  const places = prepareNetwork(network).observablePlaces;
+  const faults = chosen.flatMap((id, index): InputFault[] => {
+    const path = `outputs.correlations[${index}]`;
+    const observable = network.observables.findIndex((known) => known.id === id);
+    if (observable < 0)
+      return [{ path, code: 'unknown_observable', message: `“${id}” is no species or observable of this model.` }];
+    if (places[observable]!.kind !== 'count')
+      return [{ path, code: 'no_count', message: `“${id}” is no whole count; covariances are noted of counts.` }];
+    if (chosen.indexOf(id) !== index) return [{ path, code: 'repeated', message: `“${id}” stands there twice.` }];
+    return [];
+  });
+  const cells = ((chosen.length * (chosen.length - 1)) / 2) * (request.gridIntervals + 1) * points;
+  if (cells <= limits.correlationCells) return faults;
+  const message =
+    `The pairs at all grid times are ${cells.toLocaleString('en')} covariances; at most ` +
+    `${limits.correlationCells.toLocaleString('en')} are kept. Choose fewer observables or grid intervals.`;
+  return [...faults, { path: 'outputs.correlations', code: 'too_many_cells', message }];
 }
 
 /** Traces kept at each point when the request does not say: 20, or fewer where the grid is large. */

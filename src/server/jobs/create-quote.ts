@@ -125,6 +125,7 @@ function inputsOf(request: QuoteRequest, network: ResolvedNetwork, sweep: Sweep 
     ...(sweep ? { sweep } : {}),
     keptTraces: request.outputs?.keptTraces ?? defaultKeptTraces(request, network, pointsOf({ sweep })),
     passages: passagesOf(request),
+    ...(request.outputs?.correlations ? { correlations: request.outputs.correlations } : {}),
     ...(stopping ? { stopping } : {}),
     eventBudgetPerReplicate: limits.eventsPerReplicate,
   };
