@@ -3,6 +3,7 @@ import { distributionOption } from '@/charts/distribution-option.ts';
 import { lightTheme } from '@/charts/palette.ts';
 import { renderSvg } from '@/charts/render-svg.ts';
 import { timeCourseOption } from '@/charts/time-course-option.ts';
+import { approximateNote, withNote } from '@/charts/with-note.ts';
 import { tracesOption } from '@/charts/traces-option.ts';
 import { gridTimes } from '@/domain/jobs/result-outputs.ts';
 import { pointWords } from '@/domain/jobs/sweep.ts';
@@ -51,7 +52,8 @@ export function figuresOf(subject: ArchiveSubject, results: Results): Figure[] {
     // The archive and its report show the same picture, drawn once.
     const drawn = (option: Parameters<typeof renderSvg>[0]) => {
       let svg: string | undefined;
-      return () => (svg ??= tidy(renderSvg(option, { ...figureSize, theme: lightTheme })));
+      const shown = inputs.method === 'exact' ? option : withNote(option, approximateNote, lightTheme);
+      return () => (svg ??= tidy(renderSvg(shown, { ...figureSize, theme: lightTheme })));
     };
     const isCount = summary.shape.observables[place]!.kind === 'count';
     const end = times.at(-1)!;

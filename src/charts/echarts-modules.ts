@@ -1,6 +1,6 @@
 /** The parts of ECharts that the figures use, registered once, for the browser and the server alike. */
 import { BarChart, CustomChart, LineChart, ScatterChart } from 'echarts/charts';
-import { GridComponent, TooltipComponent } from 'echarts/components';
+import { GridComponent, TitleComponent, TooltipComponent } from 'echarts/components';
 import * as echarts from 'echarts/core';
 import { LabelLayout, LegacyGridContainLabel } from 'echarts/features';
 import { CanvasRenderer, SVGRenderer } from 'echarts/renderers';
@@ -11,6 +11,7 @@ echarts.use([
   CustomChart,
   ScatterChart,
   GridComponent,
+  TitleComponent,
   TooltipComponent,
   LabelLayout,
   LegacyGridContainLabel,

@@ -145,7 +145,7 @@ export const methodComparison = z.object({
   leap: methodPilot,
   leapDearer: z.boolean().nullable(),
   leapSlower: z.boolean().nullable(),
-  /** Means at the horizon; the difference is leaped less exact, with its 95 % interval (Welch). */
+  /** Means at the horizon, of a sweep's first point; the difference is leaped less exact, with its 95 % interval (Welch). */
   observables: z.array(
     z.object({
       id: z.string(),

@@ -13,6 +13,7 @@ import {
   type QuoteDocument,
 } from '@/contracts/jobs.ts';
 import type { NetworkDocument } from '@/domain/network/document.ts';
+import { bytesOf, forged, textOf } from '@tests/factories/archives.ts';
 import { bearerHeaders } from '@tests/factories/people.ts';
 import { callEndpoint } from '@tests/support/call-endpoint.ts';
 import {
@@ -115,6 +116,18 @@ describe('the quote of a leap job', () => {
     expect(await quoted({ method: 'exact', epsilon: undefined })).toMatchObject({ epsilon: null, comparison: null });
   });
 
+  it('compares a sweep per replicate of a point', async () => {
+    const target = { kind: 'initial_count', id: 'A' };
+    const sweep = { kind: 'grid', axes: [{ target, values: [molecules, 2 * molecules] }] };
+    const quote = await quoted({ sweep });
+    const { exact, leap } = quote.comparison!;
+    expect(leap.eventsPerReplicate).toEqual(quote.eventsPerReplicate);
+    expect(leap.microcredits).toBe(quote.microcredits.expected);
+    // On average over the points one and a half times what 60,000 molecules fire.
+    const events = 1.5 * (41.9652204428 / 50) * molecules;
+    expect(Math.abs(exact!.eventsPerReplicate.mean / events - 1)).toBeLessThan(0.01);
+  });
+
   it('refuses triggered changes with a sentence', async () => {
     const network: NetworkDocument = {
       ...isomerisation,
@@ -166,6 +179,21 @@ describe('a leap job', () => {
     await writeFile(file, bytes);
     const report = await verifyArchive({ file, choose: (blocks) => Array.from({ length: blocks }, (_, i) => i) });
     expect(report).toMatchObject({ problems: [], reRun: report.blocks });
+    // A figure says so by itself, wherever it is pasted.
+    expect(text('figures/B-time-course.svg')).toContain('tau-leaping, approximate');
+
+    // Another ε is found by running a block again, its checksums made to fit; an exact archive has none.
+    for (const [more, words] of [
+      [{ epsilon: 0.3 }, /differ|digest|not what/],
+      [{ method: 'exact' }, /epsilon/],
+    ] as const) {
+      const altered = forged(bytes, (files) => {
+        const job_ = JSON.parse(textOf(files['job.json'])) as object;
+        files['job.json'] = bytesOf(JSON.stringify({ ...job_, ...more }));
+      });
+      await writeFile(file, altered);
+      expect((await verifyArchive({ file, choose: () => [0] })).problems.join(' ')).toMatch(words);
+    }
   });
 
   it('is continued by an extension with the same ε, and by no other', async () => {

@@ -1,8 +1,13 @@
 /** What is bundled and run in Node and in a browser: a digest of everything that a batch answers, by model and kernel. */
 import { demoModels } from '@db/seeds/demo-models.ts';
 import { resolveNetwork } from '@/domain/network/resolve-network.ts';
+import type { ResolvedNetwork } from '@/domain/network/resolved.ts';
 import type { KernelName } from '@/engine/ensemble.ts';
+import { decayingDimerising } from '@tests/factories/networks.ts';
 import { runBatch } from '@/engine/run-batch.ts';
+
+/** Enough molecules for Poisson numbers of every size. */
+export const leaped = 'the decaying-dimerising set, leaped';
 
 /** By demo model, then by kernel. */
 export type Digests = Record<string, Partial<Record<KernelName, string>>>;
@@ -15,30 +20,36 @@ export async function engineDigests(): Promise<Digests> {
     const resolved = resolveNetwork(network);
     if (!resolved.ok) throw new Error(`${name} cannot run`);
     digests[name] = {};
-    for (const kernel of kernels) {
-      const result = await runBatch({
-        network: resolved.network,
-        horizon: 20,
-        gridIntervals: 40,
-        seed: '20261201',
-        purpose: 'job',
-        point: 0,
-        firstReplicate: 0,
-        replicateCount: 60,
-        keptTraces: 10,
-        eventBudgetPerReplicate: null,
-        eventBudgetPerBatch: null,
-        kernel,
-      });
-      digests[name][kernel] = digestOf([
-        result.summary.encode(),
-        bytesOf(result.eventsPerReplicate),
-        bytesOf(result.passageTimes),
-        ...result.traces.map(({ values }) => bytesOf(values)),
-      ]);
-    }
+    for (const kernel of kernels) digests[name][kernel] = await digestOfBatch(resolved.network, kernel);
   }
+  digests[leaped] = {};
+  for (const kernel of ['tau-leaping', 'tau-leaping-reference'] as const)
+    digests[leaped][kernel] = await digestOfBatch(decayingDimerising(), kernel, 0.03);
   return digests;
+}
+
+async function digestOfBatch(network: ResolvedNetwork, kernel: KernelName, epsilon?: number): Promise<string> {
+  const result = await runBatch({
+    network,
+    horizon: 20,
+    gridIntervals: 40,
+    seed: '20261201',
+    purpose: 'job',
+    point: 0,
+    firstReplicate: 0,
+    replicateCount: 60,
+    keptTraces: 10,
+    eventBudgetPerReplicate: null,
+    eventBudgetPerBatch: null,
+    kernel,
+    ...(epsilon === undefined ? {} : { epsilon }),
+  });
+  return digestOf([
+    result.summary.encode(),
+    bytesOf(result.eventsPerReplicate),
+    bytesOf(result.passageTimes),
+    ...result.traces.map(({ values }) => bytesOf(values)),
+  ]);
 }
 
 const bytesOf = ({ buffer, byteOffset, byteLength }: Float64Array): Uint8Array =>

@@ -1,6 +1,6 @@
 /**
  * The same job gives the same results on every machine and browser: one bundle of the engine, run in Node and in headless
- * Chromium, on every demo model and in every form of the direct method. This is our own promise; there is nothing outside
+ * Chromium, on every demo model and in every form of the direct method and of tau-leaping. This is our own promise; there is nothing outside
  * the project to compare with.
  */
 import { build } from 'esbuild';
@@ -12,7 +12,7 @@ import type { Browser } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { demoModels } from '@db/seeds/demo-models.ts';
 import { projectRoot } from '@/server/project-root.ts';
-import type { Digests } from './engine-digests.ts';
+import { leaped, type Digests } from './engine-digests.ts';
 import { openBrowser } from './browser.ts';
 
 let folder: string;
@@ -57,13 +57,13 @@ afterAll(async () => {
   await rm(folder, { recursive: true, force: true });
 });
 
-describe.each(demoModels.map(({ name }) => name))('%s', (name) => {
+describe.each([...demoModels.map(({ name }) => name), leaped])('%s', (name) => {
   it('has the same summary, events and traces in headless Chromium as in Node', () => {
     expect(inNode[name]).toBeDefined();
     expect(inBrowser[name]).toEqual(inNode[name]);
   });
 
-  it('has them from the SIMD kernel, the scalar kernel and the reference alike', () => {
+  it('has them from every kernel of its method and the reference alike', () => {
     expect(new Set(Object.values(inBrowser[name]!)).size).toBe(1);
   });
 });

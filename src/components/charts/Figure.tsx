@@ -1,11 +1,18 @@
 /** A figure's place on the page: the chart itself, and all of ECharts with it, is loaded when it comes into view. */
-import { lazy, Suspense, useEffect, useRef, useState } from 'react';
+import { createContext, lazy, Suspense, useContext, useEffect, useRef, useState } from 'react';
+import { withNote } from '@/charts/with-note.ts';
 import { Waiting } from '@/components/ui/Progress.tsx';
 import type { FigureContent } from './figure.ts';
 
 const Chart = lazy(() => import('./Chart.tsx'));
 
-export function Figure(content: FigureContent) {
+/** Words that stand inside every figure below; null for none. */
+export const FigureNote = createContext<string | null>(null);
+
+export function Figure(given: FigureContent) {
+  const note = useContext(FigureNote);
+  const content: FigureContent =
+    note === null ? given : { ...given, option: (theme) => withNote(given.option(theme), note, theme) };
   const place = useRef<HTMLDivElement>(null);
   const [seen, setSeen] = useState(false);
   useEffect(() => {

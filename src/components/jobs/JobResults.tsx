@@ -1,7 +1,9 @@
 /** The results of a job, as far as it has come: figures and numbers, each saying from how many replicates. */
 import { keepPreviousData, useQuery } from '@tanstack/react-query';
 import { useEffect, useMemo, useState } from 'react';
+import { approximateNote } from '@/charts/with-note.ts';
 import { callApi } from '@/components/api/call-api.ts';
+import { FigureNote } from '@/components/charts/Figure.tsx';
 import { Notice } from '@/components/ui/Notice.tsx';
 import { Waiting } from '@/components/ui/Progress.tsx';
 import { Tabs } from '@/components/ui/Tabs.tsx';
@@ -96,7 +98,9 @@ export function JobResults({ team, job, names, network }: Props) {
           The errors and intervals below are of sampling alone; what leaping shifts comes on top of them.
         </Notice>
       )}
-      <Tabs label="Results" tabs={tabIds.map((id) => ({ id, ...contents[id] }))} chosen={shownTab} onChoose={setTab} />
+      <FigureNote.Provider value={job.method === 'leap' ? approximateNote : null}>
+        <Tabs label="Results" tabs={tabIds.map((id) => ({ id, ...contents[id] }))} chosen={shownTab} onChoose={setTab} />
+      </FigureNote.Provider>
       <p className="mt-8 border-t border-rule pt-3 text-xs text-soft">{resultCaution}</p>
     </section>
   );

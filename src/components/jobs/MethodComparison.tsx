@@ -51,11 +51,11 @@ export function MethodComparison({
         <tbody>
           {rows.map(([what, ofExact, ofLeap]) => (
             <tr key={what}>
-              <th scope="row" className="!border-rule align-top !font-normal">
+              <th scope="row" className="!border-rule !align-top !font-normal">
                 {what}
               </th>
-              <td className="figure align-top">{ofExact}</td>
-              <td className="figure align-top font-semibold">{ofLeap}</td>
+              <td className="figure !align-top">{ofExact}</td>
+              <td className="figure !align-top font-semibold">{ofLeap}</td>
             </tr>
           ))}
         </tbody>
@@ -92,7 +92,7 @@ function Differences({ comparison: { observables } }: { comparison: Comparison }
     <>
       <table className="ruled mt-4 w-full text-sm">
         <caption className="text-left text-xs text-soft">
-          Means at the horizon: leaped less exact, with the 95 % interval of the pilots
+          Means at the horizon (of a sweep, at its first point): leaped less exact, with the 95 % interval of the pilots
         </caption>
         <thead>
           <tr>
@@ -108,11 +108,11 @@ function Differences({ comparison: { observables } }: { comparison: Comparison }
         <tbody>
           {shown.map(({ id, exactMean, difference, interval }) => (
             <tr key={id}>
-              <th scope="row" className="!border-rule align-top !font-normal [overflow-wrap:anywhere]">
+              <th scope="row" className="!border-rule !align-top !font-normal [overflow-wrap:anywhere]">
                 {id}
               </th>
-              <td className="figure align-top">{numberText(exactMean, 4)}</td>
-              <td className="figure align-top">
+              <td className="figure !align-top">{numberText(exactMean, 4)}</td>
+              <td className="figure !align-top">
                 <span className="font-semibold">{signed(difference)}</span>
                 <span className="block text-xs text-soft">
                   {interval ? `${signed(interval.low)} … ${signed(interval.high)}` : 'no interval'}

@@ -5,6 +5,7 @@ import { compareMeans, type MethodPilot } from '@/domain/jobs/method-comparison.
 import { predictEvents, priceEvents, type PilotSummary } from '@/domain/jobs/quote-estimate.ts';
 import { rateOf, type MethodFamily, type PriceBook } from '@/domain/pricing/price-book.ts';
 import type { JobInputs } from '@/domain/jobs/job-inputs.ts';
+import { pointsOf } from '@/domain/jobs/sweep.ts';
 import { runPilot, type PilotOptions } from './run-pilot.ts';
 
 /**
@@ -34,17 +35,20 @@ export async function compareMethods(
   };
 }
 
-function ofPilot(pilot: Pilot, { replicates, lane }: JobInputs, method: MethodFamily, book: PriceBook) {
+function ofPilot(pilot: Pilot, inputs: JobInputs, method: MethodFamily, book: PriceBook) {
+  const { replicates, lane } = inputs;
+  // A sweep's pilot counts a replicate of every point together.
+  const points = pointsOf(inputs);
   const rate = rateOf(book, lane, method);
   const summary: PilotSummary = { ...pilot.get(), oneSided: pilot.cutReplicates > 0 };
   return {
     pilotReplicates: pilot.replicates,
-    eventsPerReplicate: { mean: pilot.mean, sd: pilot.sd },
+    eventsPerReplicate: { mean: pilot.mean / points, sd: pilot.sd / points },
     /** A cut replicate counts with what it had, so events and price are then lower bounds. */
     oneSided: summary.oneSided,
     microcreditsPerMillionEvents: rate,
     microcredits: priceEvents(predictEvents(summary, replicates), rate).expected,
-    secondsPerReplicate: pilot.secondsPerReplicate,
+    secondsPerReplicate: pilot.secondsPerReplicate / points,
   };
 }
 
