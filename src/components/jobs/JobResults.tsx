@@ -99,7 +99,12 @@ export function JobResults({ team, job, names, network }: Props) {
         </Notice>
       )}
       <FigureNote.Provider value={job.method === 'leap' ? approximateNote : null}>
-        <Tabs label="Results" tabs={tabIds.map((id) => ({ id, ...contents[id] }))} chosen={shownTab} onChoose={setTab} />
+        <Tabs
+          label="Results"
+          tabs={tabIds.map((id) => ({ id, ...contents[id] }))}
+          chosen={shownTab}
+          onChoose={setTab}
+        />
       </FigureNote.Provider>
       <p className="mt-8 border-t border-rule pt-3 text-xs text-soft">{resultCaution}</p>
     </section>
