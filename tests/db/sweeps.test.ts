@@ -99,7 +99,7 @@ describe('a sweep', () => {
   // Immigration and death from 0 (Bailey 1964, chapter 8, from memory): Poisson with mean b(1 − e^−t), so P(no arrival by t) = e^−bt.
   // Ten checks at 4.4 standard errors: a false alarm in about 9,000 runs.
   it('tells one statistic at every point, with intervals that fit the closed forms', async () => {
-    const births = [0.05, 2];
+    const births = [0.5, 2];
     const job = await launch(bench, {
       replicates: 2_000,
       gridIntervals: 4,
