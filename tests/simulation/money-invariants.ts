@@ -17,7 +17,8 @@ const lastOfSegment = `sequence IN (SELECT max(sequence) FROM ledgerTransactions
   WHERE teamId = $teamId AND segmentId IS NOT NULL GROUP BY segmentId)`;
 
 /** Holds after every step, whatever was lost, repeated, reordered or cut off so far. */
-export async function expectInvariants({ teamId, fake }: MoneyWorld): Promise<void> {
+export async function expectInvariants(world: MoneyWorld): Promise<void> {
+  const { teamId, fake } = world;
   const [sums] = await select<Record<(typeof accounts)[number], number>>(
     `SELECT ${accountSums} FROM ledgerPostings WHERE teamId = $teamId`,
     teamId,
@@ -75,6 +76,34 @@ export async function expectInvariants({ teamId, fake }: MoneyWorld): Promise<vo
       });
   }
 
+  // What is frozen is frozen for an open dispute, and what a lost one took has its credit notes; no dispute takes more than it covers.
+  const disputes = await select<{
+    state: string;
+    totalMinor: number;
+    coveredMicrocredits: number;
+    frozenMicrocredits: number;
+    takenMicrocredits: number;
+    owedMinor: number | null;
+  }>(
+    `SELECT d.state, d.totalMinor, d.coveredMicrocredits, d.frozenMicrocredits, d.takenMicrocredits, r.totalMinor AS owedMinor
+     FROM disputes d LEFT JOIN receivables r ON r.disputeId = d.id WHERE d.teamId = $teamId`,
+    teamId,
+  );
+  const [taken] = await select<{ sum: number }>(
+    `SELECT coalesce(sum(amountMicrocredits), 0) AS sum FROM creditReturns WHERE teamId = $teamId AND cause = 'dispute'`,
+    teamId,
+  );
+  const over = (field: 'frozenMicrocredits' | 'takenMicrocredits') =>
+    disputes.reduce((sum, row) => sum + row[field], 0);
+  expect([over('frozenMicrocredits'), over('takenMicrocredits')], 'disputes').toEqual([frozen, taken!.sum]);
+  for (const { state, totalMinor, coveredMicrocredits, frozenMicrocredits, takenMicrocredits, owedMinor } of disputes) {
+    expect(frozenMicrocredits + takenMicrocredits).toBeLessThanOrEqual(coveredMicrocredits);
+    if (state !== 'open') expect(frozenMicrocredits).toBe(0);
+    if (state !== 'lost') expect([takenMicrocredits, owedMinor]).toEqual([0, null]);
+    expect(owedMinor ?? 0).toBeLessThanOrEqual(totalMinor);
+    if (takenMicrocredits === coveredMicrocredits) expect(owedMinor ?? 0, 'owed though all was taken').toBe(0);
+  }
+
   // A credit note never gives back more than its invoice took, nor the service more than our notes say.
   const invoices = await select<{ paymentIntentId: string; totalMinor: number; noted: number; fellDue: number }>(
     `SELECT t.paymentIntentId, i.totalMinor,
@@ -85,7 +114,7 @@ export async function expectInvariants({ teamId, fake }: MoneyWorld): Promise<vo
   );
   for (const { paymentIntentId, totalMinor, noted, fellDue } of invoices) {
     expect(noted, 'credit notes of an invoice').toBeLessThanOrEqual(totalMinor);
-    expect(refundedBy(fake, paymentIntentId), 'money sent back').toBeLessThanOrEqual(fellDue);
+    expect(world.refundedOf(paymentIntentId), 'money sent back').toBeLessThanOrEqual(fellDue);
   }
 }
 
@@ -100,20 +129,30 @@ export async function expectHealed(world: MoneyWorld): Promise<void> {
       .map(({ paymentIntentId }) => paymentIntentId)
       .sort(),
   );
+  const decided = Object.values(fake.store.state.disputes).map(({ id, status }) => [
+    id,
+    status === 'needs_response' ? 'open' : status,
+  ]);
+  const ours = await select<{ id: string; state: string }>(
+    'SELECT id, state FROM disputes WHERE teamId = $teamId',
+    teamId,
+  );
+  expect(ours.map(({ id, state }) => [id, state]).sort()).toEqual(decided.sort());
   const due = await select<{ paymentIntentId: string; totalMinor: number }>(
     `SELECT paymentIntentId, sum(totalMinor) AS totalMinor FROM creditReturns
      WHERE teamId = $teamId AND cause = 'refund' AND state = 'sent' GROUP BY paymentIntentId`,
     teamId,
   );
-  for (const { paymentIntentId, totalMinor } of due) expect(refundedBy(fake, paymentIntentId)).toBe(totalMinor);
-  const waiting = `SELECT id FROM creditReturns WHERE teamId = $teamId AND state NOT IN ('sent', 'taken')`;
-  expect(await select(waiting, teamId), 'refunds not sent').toEqual([]);
+  for (const { paymentIntentId, totalMinor } of due) expect(world.refundedOf(paymentIntentId)).toBe(totalMinor);
+  // The service refuses to refund what is disputed; such a refund waits for an operator or for the dispute's end.
+  const waiting = await select<{ state: string; paymentIntentId: string }>(
+    `SELECT state, paymentIntentId FROM creditReturns WHERE teamId = $teamId AND state NOT IN ('sent', 'taken')`,
+    teamId,
+  );
+  const disputed = new Set(Object.values(fake.store.state.disputes).map(({ payment_intent }) => payment_intent));
+  const unsent = waiting.filter(({ state, paymentIntentId }) => state !== 'failed' || !disputed.has(paymentIntentId));
+  expect(unsent, 'refunds not sent').toEqual([]);
 }
-
-const refundedBy = (fake: MoneyWorld['fake'], intentId: string): number =>
-  Object.values(fake.store.state.refunds)
-    .filter(({ payment_intent }) => payment_intent === intentId)
-    .reduce((sum, { amount }) => sum + amount, 0);
 
 /** Over all teams: every series of documents counts from 1 without a gap. */
 export async function expectGaplessSeries(): Promise<void> {

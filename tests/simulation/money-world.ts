@@ -4,6 +4,7 @@ import { inWriteTransaction } from '@db/in-write-transaction.ts';
 import { Invoice, TopUp } from '@db/models/billing.ts';
 import { Team } from '@db/models/people.ts';
 import { receivePaymentEvent } from '@/server/billing/receive-payment-event.ts';
+import { refreshDispute } from '@/server/billing/refresh-dispute.ts';
 import { refreshTopUp } from '@/server/billing/refresh-top-up.ts';
 import { refundPurchase } from '@/server/billing/refund-purchase.ts';
 import { sendOpenRefunds } from '@/server/billing/send-refund.ts';
@@ -13,6 +14,7 @@ import { holdCredits } from '@/server/ledger/hold-credits.ts';
 import { readSegment } from '@/server/ledger/read-segment.ts';
 import { releaseHold } from '@/server/ledger/release-hold.ts';
 import { settleCharge } from '@/server/ledger/settle-charge.ts';
+import { decideDispute, openDispute } from '@tests/fakes/payment/api-reversals.ts';
 import type { PaymentFake } from '@tests/fakes/payment/server.ts';
 import type { FakeSession, State } from '@tests/fakes/payment/state.ts';
 import { cards } from '@tests/support/payment-cards.ts';
@@ -36,6 +38,8 @@ export const actNames = [
   'release',
   'refund',
   'sendRefunds',
+  'dispute',
+  'decideDispute',
   'serviceFails',
   'crash',
 ] as const;
@@ -102,8 +106,7 @@ export class MoneyWorld {
       case 'deliverEvent':
         return this.#deliver(amount);
       case 'reconcile':
-        for (const topUp of await this.topUps()) await refreshTopUp(topUp.id);
-        return;
+        return this.#askAboutEverything();
       case 'hold': {
         const { heldMicrocredits, spentMicrocredits } = await readSegment(segment.segmentId);
         if (heldMicrocredits + spentMicrocredits === 0)
@@ -131,6 +134,24 @@ export class MoneyWorld {
       case 'sendRefunds':
         await sendOpenRefunds();
         return;
+      case 'dispute': {
+        const { intents, disputes } = this.fake.store.state;
+        const disputed = new Set(Object.values(disputes).map(({ payment_intent }) => payment_intent));
+        const paid = Object.values(intents).filter(
+          ({ id: each, status }) => status === 'succeeded' && !disputed.has(each),
+        );
+        const intent = paid[place % Math.max(1, paid.length)];
+        const left = intent ? intent.amount_received - this.refundedOf(intent.id) : 0;
+        if (intent && left > 0)
+          openDispute(this.fake.store, this.fake.webhooks, intent.id, amount % 2 ? left : 1 + (amount % left));
+        return;
+      }
+      case 'decideDispute': {
+        const open = Object.values(this.fake.store.state.disputes).filter(({ status }) => status === 'needs_response');
+        const dispute = open[place % Math.max(1, open.length)];
+        if (dispute) decideDispute(this.fake.store, this.fake.webhooks, dispute.id, amount % 2 ? 'won' : 'lost');
+        return;
+      }
       case 'serviceFails':
         // The SDK asks twice: one failure is healed by it, two are an outage; a hang is an answer that is lost.
         if (place % 2 === 0) this.fake.store.state.switches.failNext = 1 + (amount % 2);
@@ -150,8 +171,19 @@ export class MoneyWorld {
   /** Everything that was lost on the way arrives in the end. */
   async heal(): Promise<void> {
     Object.assign(this.fake.store.state.switches, { failNext: 0, hangNext: 0 });
-    for (const topUp of await this.topUps()) await refreshTopUp(topUp.id);
+    await this.#askAboutEverything();
     await sendOpenRefunds();
+  }
+
+  /** What the service sent back of a payment, minor units. */
+  refundedOf = (intentId: string): number =>
+    Object.values(this.fake.store.state.refunds)
+      .filter(({ payment_intent }) => payment_intent === intentId)
+      .reduce((sum, { amount }) => sum + amount, 0);
+
+  async #askAboutEverything(): Promise<void> {
+    for (const topUp of await this.topUps()) await refreshTopUp(topUp.id);
+    for (const disputeId of Object.keys(this.fake.store.state.disputes)) await refreshDispute(disputeId);
   }
 
   topUps = (): Promise<TopUp[]> => TopUp.findAll({ where: { teamId: this.teamId }, order: [['createdAt', 'ASC']] });

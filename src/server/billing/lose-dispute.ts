@@ -18,7 +18,11 @@ export async function loseDispute(dispute: Dispute): Promise<void> {
   const creditedMinor = await takeBack(dispute, frozen, 'decided');
   const { id: disputeId, teamId, invoiceId, currency } = dispute;
   const { coveredMicrocredits, takenMicrocredits, totalMinor: disputedMinor } = dispute;
-  const totalMinor = owedAfter({ disputedMinor, creditedMinor, coveredMicrocredits, takenMicrocredits });
+  const refusedMinor = await settleRefusedRefunds(invoiceId);
+  const totalMinor = Math.max(
+    0,
+    owedAfter({ disputedMinor, creditedMinor, coveredMicrocredits, takenMicrocredits }) - refusedMinor,
+  );
   const owed =
     totalMinor > 0
       ? await Receivable.create({
@@ -33,6 +37,17 @@ export async function loseDispute(dispute: Dispute): Promise<void> {
         })
       : null;
   await tellOfDispute(dispute, 'lost', owed);
+}
+
+/**
+ * Refunds that the service refused because the payment was disputed already: their credits have left and their notes are issued,
+ * and the bank has now given that money back. Answers how much, minor units.
+ */
+async function settleRefusedRefunds(invoiceId: string): Promise<number> {
+  const where = { invoiceId, cause: 'refund', state: 'failed' } as const;
+  const refused = await CreditReturn.findAll({ where });
+  await CreditReturn.update({ state: 'taken' }, { where });
+  return refused.reduce((sum, { totalMinor }) => sum + totalMinor, 0);
 }
 
 /** A job has given credits back after the loss: they are taken too, and less is owed. */
