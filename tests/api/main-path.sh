@@ -27,7 +27,9 @@ echo "model    $(field model.id <<<"$stored") version $(field version.number <<<
 quote=$(call POST quotes "{\"modelVersionId\":\"$version\",\"replicates\":2000,\"horizon\":10,\"gridIntervals\":20,\"method\":\"exact\",\"seed\":42,\"lane\":\"steady\"}")
 echo "quote    $(field quote.microcredits.expected <<<"$quote") microcredits, at most $(field quote.microcredits.high <<<"$quote")"
 
-job=$(call POST jobs "{\"quoteId\":\"$(field quote.id <<<"$quote")\",\"name\":\"Arrivals by script\"}" | field job.id)
+# The upper estimate would stop one job in forty; twice of it leaves room, and what is not used comes back.
+cap=$((2 * $(field quote.microcredits.high <<<"$quote")))
+job=$(call POST jobs "{\"quoteId\":\"$(field quote.id <<<"$quote")\",\"name\":\"Arrivals by script\",\"capMicrocredits\":$cap}" | field job.id)
 until state=$(call GET "jobs/$job" | field job.state) && [ "$state" != queued ] && [ "$state" != running ]; do sleep 0.2; done
 echo "job      $job $state, $(call GET "jobs/$job" | field job.chargedMicrocredits) microcredits charged"
 
